@@ -1,0 +1,5 @@
+"""``python -m pla`` is the ``fuseplan`` command."""
+
+from pla.cli.main import main
+
+main()

@@ -1,0 +1,144 @@
+"""The ``fuseplan`` command: finds the subcommand, and turns every failure into words.
+
+Subcommands live in modules of their own and are imported only when called, so that ``--help`` is
+quick. This module must import nothing heavier than click.
+"""
+
+from __future__ import annotations
+
+import importlib
+import sys
+from typing import Any, cast
+
+import click
+
+from pla.cli.output import choose_colour, emit_json, show_diagnostics
+from pla.errors import Diagnostic, FuseplanError
+
+__all__ = ["cli", "main"]
+
+INTERRUPTED = 130
+INTERNAL_FAULT = 3
+
+# name: (module, one line for the list of commands)
+COMMANDS = {
+    "check": ("pla.cli.check", "Read and check a design."),
+    "terms": ("pla.cli.terms", "Find the smallest set of shared product terms; no device."),
+    "plan": ("pla.cli.plan", "Minimize, fit, prove, write fuse file, tables and report."),
+    "device": ("pla.cli.device", "List, show and check device files."),
+    "inspect": ("pla.cli.inspect", "Hold a fuse file against the standard."),
+}
+
+
+class _LazyGroup(click.Group):
+    """A group that knows its commands by name and imports one only to run it."""
+
+    def list_commands(self, ctx: click.Context) -> list[str]:  # noqa: ARG002
+        return list(COMMANDS)
+
+    def get_command(self, ctx: click.Context, cmd_name: str) -> click.Command | None:  # noqa: ARG002
+        if cmd_name not in COMMANDS:
+            return None
+        module = importlib.import_module(COMMANDS[cmd_name][0])
+        return cast("click.Command", module.command)
+
+    def format_commands(self, ctx: click.Context, formatter: click.HelpFormatter) -> None:  # noqa: ARG002
+        with formatter.section("Commands"):
+            formatter.write_dl([(name, text) for name, (_, text) in COMMANDS.items()])
+
+    def resolve_command(
+        self, ctx: click.Context, args: list[str]
+    ) -> tuple[str | None, click.Command | None, list[str]]:
+        if args and not args[0].startswith("-") and args[0] not in COMMANDS:
+            import difflib
+
+            near = difflib.get_close_matches(args[0], COMMANDS, n=1)
+            hint = f" Did you mean {near[0]!r}?" if near else f" There are: {', '.join(COMMANDS)}."
+            ctx.fail(f"No such command {args[0]!r}.{hint}")
+        return super().resolve_command(ctx, args)
+
+
+def _show_version(ctx: click.Context, _param: click.Parameter, value: bool) -> None:
+    if not value or ctx.resilient_parsing:
+        return
+    from pla import __version__
+
+    click.echo(f"fuseplan {__version__}")
+    ctx.exit()
+
+
+@click.command(
+    cls=_LazyGroup,
+    context_settings={"help_option_names": ["-h", "--help"], "max_content_width": 100},
+    epilog=(
+        "Exit codes: 0 yes or done; 1 a clear no; 2 the input or the call is wrong; "
+        "3 an internal fault; 130 interrupted."
+    ),
+)
+@click.option(
+    "--color",
+    type=click.Choice(["auto", "always", "never"]),
+    default="auto",
+    help="Colour of diagnostics; NO_COLOR and FORCE_COLOR are honoured.",
+)
+@click.option("-q", "--quiet", is_flag=True, help="No warnings, no notes.")
+@click.option(
+    "--version",
+    is_flag=True,
+    is_eager=True,
+    expose_value=False,
+    callback=_show_version,
+    help="Show the version and stop.",
+)
+def cli(color: str, quiet: bool) -> None:
+    """Plan glue logic into a small programmable AND/OR array.
+
+    From a design file full of don't cares to a proven fuse file:
+
+    \b
+      fuseplan check  design.toml
+      fuseplan terms  design.toml
+      fuseplan plan   design.toml --device shared-12x32x6 -o out/
+    """
+    choose_colour(cast("Any", color), quiet=quiet)
+
+
+def main(args: list[str] | None = None) -> None:
+    """Run the command and leave the process with the exit code of the contract."""
+    sys.exit(run(sys.argv[1:] if args is None else args))
+
+
+def run(args: list[str]) -> int:
+    """Run the command and return its exit code; no exception leaves here."""
+    as_json = "--json" in args
+    try:
+        result = cli.main(args=args, prog_name="fuseplan", standalone_mode=False)
+    except FuseplanError as problem:
+        return _fail(problem.diagnostics, problem.exit_code, as_json=as_json)
+    except click.UsageError as problem:
+        if problem.ctx is not None and not as_json:
+            click.echo(problem.ctx.get_usage(), err=True)
+        return _fail(
+            [Diagnostic("USAGE", problem.format_message())], problem.exit_code, as_json=as_json
+        )
+    except click.ClickException as problem:
+        return _fail([Diagnostic("USAGE", problem.format_message())], 2, as_json=as_json)
+    except (click.Abort, KeyboardInterrupt):
+        click.echo("interrupted", err=True)
+        return INTERRUPTED
+    except BrokenPipeError:
+        # The reader of our output has gone (``| head``): not an error of ours.
+        sys.stderr.close()
+        return 0
+    except Exception as problem:  # noqa: BLE001 - no traceback may reach a user
+        text = f"internal fault: {type(problem).__name__}: {problem}"
+        hint = "please report this with the input that caused it; nothing was written"
+        return _fail([Diagnostic("INTERNAL", text, hint=hint)], INTERNAL_FAULT, as_json=as_json)
+    return result if isinstance(result, int) else 0
+
+
+def _fail(diagnostics: Any, exit_code: int, *, as_json: bool) -> int:
+    if as_json:
+        emit_json({"errors": [d.as_json() for d in diagnostics]})
+    show_diagnostics(diagnostics)
+    return exit_code

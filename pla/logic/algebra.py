@@ -1,0 +1,198 @@
+"""Set operations on covers, looking only at their inputs.
+
+Everything here works on cubes and never lists 2^n input combinations. The recursive methods split
+on the variable that most cubes depend on (the unate recursive paradigm of Brayton et al., *Logic
+Minimization Algorithms for VLSI Synthesis*, 1984, chapter 4). Arguments are single-output covers;
+output masks of arguments are ignored and results feed output 0 (mask 1).
+"""
+
+from __future__ import annotations
+
+import numpy as np
+
+from pla.logic.cubes import Cover, Cube
+
+__all__ = [
+    "complement",
+    "contains_cube",
+    "difference",
+    "find_common",
+    "find_outside",
+    "intersection",
+    "is_tautology",
+    "union",
+]
+
+_PAIRS_AT_ONCE = 1 << 20
+
+
+def union(n_inputs: int, *covers: Cover) -> Cover:
+    """All cubes of all covers, without those that lie in another."""
+    return Cover.joined(n_inputs, covers).feeding(1).absorbed()
+
+
+def intersection(a: Cover, b: Cover) -> Cover:
+    """Cubes whose union is the common part of `a` and `b`."""
+    parts: list[Cover] = []
+    step = max(1, _PAIRS_AT_ONCE // max(1, len(b)))
+    for start in range(0, len(a), step):
+        ones = a.ones[start : start + step, None] | b.ones[None, :]
+        zeros = a.zeros[start : start + step, None] | b.zeros[None, :]
+        live = (ones & zeros) == 0
+        found = ones[live]
+        parts.append(Cover(a.n_inputs, found, zeros[live], np.ones(len(found), dtype=np.uint64)))
+    return Cover.joined(a.n_inputs, parts).absorbed()
+
+
+def difference(a: Cover, b: Cover) -> Cover:
+    """Cubes whose union is the part of `a` outside `b`."""
+    if not len(a) or not len(b):
+        return a.feeding(1)
+    parts: list[Cover] = []
+    for cube in a:
+        near = b.take(b.meeting(cube))
+        if not len(near):
+            parts.append(Cover.of(a.n_inputs, [cube]).feeding(1))
+            continue
+        outside = _complement(_cofactor(near, cube.ones, cube.zeros))
+        if len(outside):
+            size = len(outside)
+            parts.append(
+                Cover(
+                    a.n_inputs,
+                    outside.ones | np.uint64(cube.ones),
+                    outside.zeros | np.uint64(cube.zeros),
+                    np.ones(size, dtype=np.uint64),
+                )
+            )
+    return Cover.joined(a.n_inputs, parts).absorbed()
+
+
+def complement(cover: Cover) -> Cover:
+    """Cubes whose union is every input combination outside `cover`."""
+    return _complement(cover.feeding(1).absorbed())
+
+
+def is_tautology(cover: Cover) -> bool:
+    """Whether the cubes together hold every input combination."""
+    return _uncovered(cover) is None
+
+
+def contains_cube(cover: Cover, cube: Cube) -> bool:
+    """Whether every input combination of `cube` is in `cover`."""
+    return find_outside(cube, cover) is None
+
+
+def find_outside(cube: Cube, cover: Cover) -> int | None:
+    """An input combination of `cube` that is not in `cover`, or ``None``."""
+    near = cover.take(cover.meeting(cube))
+    point = _uncovered(_cofactor(near, cube.ones, cube.zeros))
+    return None if point is None else (point & ~cube.zeros) | cube.ones
+
+
+def find_common(a: Cover, b: Cover) -> tuple[int, int] | None:
+    """Indexes of a cube of `a` and a cube of `b` that meet, the first by order, or ``None``."""
+    if not len(a) or not len(b):
+        return None
+    step = max(1, _PAIRS_AT_ONCE // len(b))
+    for start in range(0, len(a), step):
+        ones = a.ones[start : start + step, None] | b.ones[None, :]
+        zeros = a.zeros[start : start + step, None] | b.zeros[None, :]
+        live = (ones & zeros) == 0
+        if live.any():
+            i, j = divmod(int(live.argmax()), len(b))
+            return start + i, j
+    return None
+
+
+def _cofactor(cover: Cover, ones: int, zeros: int) -> Cover:
+    """The cubes of `cover` as seen inside a cube that all of them meet."""
+    fixed = np.uint64(~(ones | zeros) & (2**64 - 1))
+    return Cover(cover.n_inputs, cover.ones & fixed, cover.zeros & fixed, cover.outputs)
+
+
+def _split_variable(cover: Cover) -> int | None:
+    """The most binate variable, else the one most cubes depend on; ``None`` without literals."""
+    bits = np.arange(cover.n_inputs, dtype=np.uint64)
+    one = np.uint64(1)
+    plus = ((cover.ones[:, None] >> bits) & one).sum(axis=0).astype(np.int64)
+    minus = ((cover.zeros[:, None] >> bits) & one).sum(axis=0).astype(np.int64)
+    weight = np.minimum(plus, minus) * (2 * len(cover) + 1) + plus + minus
+    best = int(weight.argmax()) if cover.n_inputs else 0
+    return best if cover.n_inputs and weight[best] else None
+
+
+def _halves(cover: Cover, variable: int) -> tuple[Cover, Cover]:
+    bit = np.uint64(1 << variable)
+    low = cover.take(cover.ones & bit == 0)
+    high = cover.take(cover.zeros & bit == 0)
+    return _cofactor(low, 0, 1 << variable), _cofactor(high, 1 << variable, 0)
+
+
+def _uncovered(cover: Cover) -> int | None:
+    """A point in no cube of the cover, or ``None`` for a tautology."""
+    if not len(cover):
+        return 0
+    literals = cover.ones | cover.zeros
+    if (literals == 0).any():
+        return None
+    # Too few points in all cubes together to fill the space.
+    share = float(np.ldexp(1.0, -np.bitwise_count(literals).astype(np.int64)).sum())
+    variable = _split_variable(cover)
+    if variable is None:  # pragma: no cover - a cube without literals was found above
+        return None
+    bit = 1 << variable
+    plus = (cover.ones & np.uint64(bit)) != 0
+    minus = (cover.zeros & np.uint64(bit)) != 0
+    if not (plus.any() and minus.any()):
+        # Unate in every variable: a tautology only with a cube without literals.
+        low_all = int(np.bitwise_or.reduce(cover.ones))
+        return int(np.bitwise_or.reduce(cover.zeros)) & ~low_all
+    low, high = _halves(cover, variable)
+    first, second = (low, 0), (high, bit)
+    if share < 1.0 and len(high) < len(low):
+        first, second = second, first
+    for half, value in (first, second):
+        point = _uncovered(half)
+        if point is not None:
+            return (point & ~bit) | value
+    return None
+
+
+def _complement(cover: Cover) -> Cover:
+    n = cover.n_inputs
+    if not len(cover):
+        return Cover.universe(n)
+    if ((cover.ones | cover.zeros) == 0).any():
+        return Cover.of(n)
+    if len(cover) == 1:
+        (cube,) = cover
+        parts = []
+        done_ones, done_zeros = 0, 0
+        for i in range(n):
+            bit = 1 << i
+            if cube.ones & bit:
+                parts.append(Cube(done_ones, done_zeros | bit))
+                done_ones |= bit
+            elif cube.zeros & bit:
+                parts.append(Cube(done_ones | bit, done_zeros))
+                done_zeros |= bit
+        return Cover.of(n, parts)
+    variable = _split_variable(cover)
+    if variable is None:  # pragma: no cover - handled by the universal cube above
+        return Cover.of(n)
+    low, high = (_complement(half.merged()) for half in _halves(cover, variable))
+    return _merge_halves(low, high, variable)
+
+
+def _merge_halves(low: Cover, high: Cover, variable: int) -> Cover:
+    """Join the complements of both halves; cubes that stand in both lose the variable."""
+    n = low.n_inputs
+    bit = np.uint64(1 << variable)
+    mark_low = Cover(n, low.ones, low.zeros, np.full(len(low), 1, dtype=np.uint64))
+    mark_high = Cover(n, high.ones, high.zeros, np.full(len(high), 2, dtype=np.uint64))
+    both = (mark_low + mark_high).merged()
+    only_low, only_high = both.outputs == 1, both.outputs == 2
+    zeros = np.where(only_low, both.zeros | bit, both.zeros)
+    ones = np.where(only_high, both.ones | bit, both.ones)
+    return Cover(n, ones, zeros, np.ones(len(both), dtype=np.uint64))
