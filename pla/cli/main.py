@@ -91,7 +91,7 @@ def _show_version(ctx: click.Context, _param: click.Parameter, value: bool) -> N
     help="Show the version and stop.",
 )
 def cli(color: str, quiet: bool) -> None:
-    """Plan glue logic into a small programmable AND/OR array.
+    r"""Plan glue logic into a small programmable AND/OR array.
 
     From a design file full of don't cares to a proven fuse file:
 

@@ -25,7 +25,7 @@ _quiet = False
 
 def choose_colour(choice: ColourChoice, *, quiet: bool = False) -> None:
     """Settle for this process when to colour and whether to leave out notes and warnings."""
-    global _choice, _quiet  # noqa: PLW0603 - one terminal, one choice
+    global _choice, _quiet
     _choice, _quiet = choice, quiet
 
 

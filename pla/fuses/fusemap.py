@@ -57,7 +57,7 @@ class FuseMap:
 
     @property
     def checksum(self) -> int:
-        """Fuse checksum of JESD3: fuses packed eight to a byte, fuse 0 in bit 0; sum modulo 2^16."""
+        """JESD3 fuse checksum: eight fuses to a byte, fuse 0 in bit 0, summed modulo 2^16."""
         packed = np.packbits(np.frombuffer(self.states, dtype=np.uint8), bitorder="little")
         return int(packed.sum(dtype=np.uint64)) & 0xFFFF
 
