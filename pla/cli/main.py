@@ -13,12 +13,12 @@ from typing import Any, cast
 import click
 
 from pla.cli.output import choose_colour, emit_json, show_diagnostics
-from pla.errors import Diagnostic, FuseplanError
 
 __all__ = ["cli", "main"]
 
-INTERRUPTED = 130
+BAD_INPUT = 2
 INTERNAL_FAULT = 3
+INTERRUPTED = 130
 
 # name: (module, one line for the list of commands)
 COMMANDS = {
@@ -91,7 +91,7 @@ def _show_version(ctx: click.Context, _param: click.Parameter, value: bool) -> N
     help="Show the version and stop.",
 )
 def cli(color: str, quiet: bool) -> None:
-    r"""Plan glue logic into a small programmable AND/OR array.
+    """Plan glue logic into a small programmable AND/OR array.
 
     From a design file full of don't cares to a proven fuse file:
 
@@ -113,16 +113,6 @@ def run(args: list[str]) -> int:
     as_json = "--json" in args
     try:
         result = cli.main(args=args, prog_name="fuseplan", standalone_mode=False)
-    except FuseplanError as problem:
-        return _fail(problem.diagnostics, problem.exit_code, as_json=as_json)
-    except click.UsageError as problem:
-        if problem.ctx is not None and not as_json:
-            click.echo(problem.ctx.get_usage(), err=True)
-        return _fail(
-            [Diagnostic("USAGE", problem.format_message())], problem.exit_code, as_json=as_json
-        )
-    except click.ClickException as problem:
-        return _fail([Diagnostic("USAGE", problem.format_message())], 2, as_json=as_json)
     except (click.Abort, KeyboardInterrupt):
         click.echo("interrupted", err=True)
         return INTERRUPTED
@@ -131,13 +121,25 @@ def run(args: list[str]) -> int:
         sys.stderr.close()
         return 0
     except Exception as problem:  # noqa: BLE001 - no traceback may reach a user
-        text = f"internal fault: {type(problem).__name__}: {problem}"
-        hint = "please report this with the input that caused it; nothing was written"
-        return _fail([Diagnostic("INTERNAL", text, hint=hint)], INTERNAL_FAULT, as_json=as_json)
+        return _explain(problem, as_json=as_json)
     return result if isinstance(result, int) else 0
 
 
-def _fail(diagnostics: Any, exit_code: int, *, as_json: bool) -> int:
+def _explain(problem: Exception, *, as_json: bool) -> int:
+    """Show what went wrong and return the exit code that it stands for."""
+    from pla.errors import Diagnostic, FuseplanError
+
+    diagnostics: tuple[Diagnostic, ...]
+    if isinstance(problem, FuseplanError):
+        diagnostics, exit_code = problem.diagnostics, problem.exit_code
+    elif isinstance(problem, click.ClickException):
+        if isinstance(problem, click.UsageError) and problem.ctx is not None and not as_json:
+            click.echo(problem.ctx.get_usage(), err=True)
+        diagnostics, exit_code = (Diagnostic("USAGE", problem.format_message()),), BAD_INPUT
+    else:
+        text = f"internal fault: {type(problem).__name__}: {problem}"
+        hint = "please report this with the input that caused it; nothing was written"
+        diagnostics, exit_code = (Diagnostic("INTERNAL", text, hint=hint),), INTERNAL_FAULT
     if as_json:
         emit_json({"errors": [d.as_json() for d in diagnostics]})
     show_diagnostics(diagnostics)

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import json
 import os
 import sys
 from typing import TYPE_CHECKING, Any, Literal
@@ -46,6 +45,8 @@ def emit_text(text: str) -> None:
 
 def emit_json(document: Mapping[str, Any]) -> None:
     """The result of a command, for programs: one document with sorted keys, nothing else."""
+    import json
+
     full = {"schema_version": SCHEMA_VERSION, **document}
     click.echo(json.dumps(full, sort_keys=True, indent=2, ensure_ascii=False))
 
