@@ -15,12 +15,26 @@ from typing import TYPE_CHECKING, Literal
 if TYPE_CHECKING:
     from collections.abc import Iterator
 
-    from pla.errors import Location
+    from pla.errors import Diagnostic, Location
 
-__all__ = ["AndArray", "Block", "Cell", "Column", "Device", "Links", "Mode", "OrArray", "Shows"]
+__all__ = [
+    "AndArray",
+    "BlankRow",
+    "Block",
+    "Cell",
+    "Column",
+    "Device",
+    "Links",
+    "Mode",
+    "OrArray",
+    "Shows",
+]
 
 Shows = Literal["sum", "sum'", "none"]
 """What a pin shows or a feedback line carries in a mode."""
+
+BlankRow = Literal["dead", "true", "live"]
+"""What a row of a blank part is worth: ``dead`` always 0, ``true`` always 1, ``live`` neither."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -37,6 +51,11 @@ class Links:
     blank: Literal[0, 1]
     connected: Literal[0, 1]
     unused_term: Literal["blank", "dead"]
+
+    @property
+    def blank_connected(self) -> bool:
+        """Whether the links of an unprogrammed part join."""
+        return self.blank == self.connected
 
 
 @dataclass(frozen=True, slots=True)
@@ -67,6 +86,10 @@ class AndArray:
     def fuse(self, term: int, column: int) -> int:
         return self.rows[term] + column * self.column_step
 
+    def fuses_of(self, term: int) -> range:
+        """The links of one row, in order of the columns."""
+        return _strided(self.rows[term], len(self.columns), self.column_step)
+
 
 @dataclass(frozen=True, slots=True)
 class OrArray:
@@ -84,6 +107,14 @@ class OrArray:
 
     def fuse(self, term: int, column: int) -> int:
         return self.rows[term] + column * self.column_step
+
+    def fuses_of(self, term: int) -> range:
+        """The links of one row, in order of the columns."""
+        return _strided(self.rows[term], len(self.pins), self.column_step)
+
+
+def _strided(first: int, count: int, step: int) -> range:
+    return range(first, first + count * step, step)
 
 
 @dataclass(frozen=True, slots=True)
@@ -108,12 +139,18 @@ class Cell:
         kind: Name of its kind in the device file.
         links: Its configuration links.
         modes: The settings that are allowed.
+        bits: Names of the configuration links, in the order of `links`.
     """
 
     pin: int
     kind: str
     links: tuple[int, ...]
     modes: tuple[Mode, ...]
+    bits: tuple[str, ...] = ()
+
+    def mode_of(self, states: str) -> Mode | None:
+        """The mode that these states of the configuration links select, if they select one."""
+        return next((mode for mode in self.modes if mode.set == states), None)
 
 
 @dataclass(frozen=True, slots=True)
@@ -144,6 +181,7 @@ class Device:
         cells: Output cells in order of the file.
         spare: Fuses that do nothing, as ranges; they stay blank.
         location: Where it was read from.
+        warnings: What is doubtful in the description, in order of place.
     """
 
     name: str
@@ -160,6 +198,7 @@ class Device:
     cells: tuple[Cell, ...]
     spare: tuple[range, ...]
     location: Location
+    warnings: tuple[Diagnostic, ...] = ()
 
     @property
     def terms(self) -> int:
@@ -186,6 +225,38 @@ class Device:
             (c.pin, c.complement): i for i, c in enumerate(self.and_array.columns) if c is not None
         }
 
+    @cached_property
+    def paired_pins(self) -> tuple[int, ...]:
+        """Pins that have both a true and a complement line, ascending."""
+        return tuple(
+            sorted(
+                pin for pin, prime in self.column_of if not prime and (pin, True) in self.column_of
+            )
+        )
+
+    @property
+    def blank_row(self) -> BlankRow:
+        """What a row of a blank part is worth.
+
+        A row without a connected line is the empty product, 1. A row with a line and its
+        complement connected is 0. A row that connects no such pair depends on its inputs.
+        """
+        if not self.links.blank_connected or not self.column_of:
+            return "true"
+        return "dead" if self.paired_pins else "live"
+
+    def blank_mode(self, cell: Cell) -> Mode | None:
+        """The mode of a cell whose configuration links are all blank, if that is one."""
+        return cell.mode_of(str(self.links.blank) * len(cell.links))
+
     def blocks(self) -> Iterator[Block]:
-        """The fuse lists of a fuse file: together every fuse once, in order of address."""
-        raise NotImplementedError
+        """The fuse lists of a fuse file: together every fuse once, in order of address.
+
+        One for each row of the AND array, with its OR links where they follow at once; then one
+        for each further region that stands together: OR rows apart, configuration links, spare
+        fuses. In an array whose rows do not stand together the columns make the blocks, and
+        where neither does, the array as a whole.
+        """
+        from pla.device.blocks import blocks_of  # noqa: PLC0415 - `blocks` builds on this module
+
+        return blocks_of(self)

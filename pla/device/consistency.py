@@ -1,0 +1,254 @@
+"""Checks of a device description as a whole.
+
+A wrong device file scraps parts: every fuse has exactly one use, every pin exactly one role, and
+what contradicts itself is said with both places that do.
+"""
+
+from __future__ import annotations
+
+from collections import Counter
+from dataclasses import dataclass
+from itertools import chain
+from typing import TYPE_CHECKING
+
+if TYPE_CHECKING:
+    from collections.abc import Callable, Iterable, Sequence
+
+    from pla.device.model import Device
+    from pla.errors import Diagnostics, Location
+
+__all__ = [
+    "FuseClaim",
+    "PinClaim",
+    "check_fuses",
+    "check_pins",
+    "check_rows",
+    "check_sums",
+    "spans",
+]
+
+_SHOWN = 8
+
+
+@dataclass(frozen=True, slots=True)
+class FuseClaim:
+    """Fuses that one part of the description says are its own.
+
+    Attributes:
+        fuses: Their numbers, unchecked.
+        group: Claims of one group are at fault together: one error stands for all of them.
+        words: What the fuse at an index of `fuses` is.
+        where: The place that says so.
+    """
+
+    fuses: Sequence[int]
+    group: str
+    words: Callable[[int], str]
+    where: Callable[[], Location]
+
+
+@dataclass(frozen=True, slots=True)
+class PinClaim:
+    """A pin that one part of the description says has this role."""
+
+    pin: int
+    role: str
+    where: Callable[[], Location]
+
+
+def spans(numbers: Iterable[int], shown: int = _SHOWN) -> str:
+    """Ascending numbers as ``3, 5..7``; no more than `shown` of them."""
+    parts: list[list[int]] = []
+    for number in numbers:
+        if parts and parts[-1][1] == number - 1:
+            parts[-1][1] = number
+        else:
+            parts.append([number, number])
+    texts = [str(a) if a == b else f"{a}..{b}" for a, b in parts[:shown]]
+    if len(parts) > shown:
+        texts.append(f"and {len(parts) - shown} more ranges")
+    return ", ".join(texts)
+
+
+def check_fuses(
+    count: int, claims: Sequence[FuseClaim], at_count: Location, diagnostics: Diagnostics
+) -> None:
+    """Report fuses used twice, fuses without a use, and fuses that the device does not have."""
+    used = sorted(chain.from_iterable(claim.fuses for claim in claims))
+    if used == list(range(count)):
+        return
+    _report_out_of_range(count, claims, at_count, diagnostics)
+    _report_overlaps(claims, diagnostics)
+    idle = sorted(set(range(count)).difference(used))
+    if idle:
+        alone = len(idle) == 1
+        listed = spans(idle).split(", ")[0] if not alone else str(idle[0])
+        diagnostics.error(
+            "FUSE-GAP",
+            f"{_number(idle, 'fuse')} {spans(idle)} of {count} {'has' if alone else 'have'} no use",
+            at_count,
+            f"if {'it does' if alone else 'they do'} nothing, declare "
+            f'{"it" if alone else "them"}, as in spare = ["{listed}"]',
+        )
+
+
+def _report_out_of_range(
+    count: int, claims: Sequence[FuseClaim], at_count: Location, diagnostics: Diagnostics
+) -> None:
+    found: dict[str, tuple[FuseClaim, int]] = {}
+    number: Counter[str] = Counter()
+    for claim in claims:
+        for index, fuse in enumerate(claim.fuses):
+            if not 0 <= fuse < count:
+                found.setdefault(claim.group, (claim, index))
+                number[claim.group] += 1
+    for group, (claim, index) in found.items():
+        diagnostics.error(
+            "FUSE-RANGE",
+            f"fuse {claim.fuses[index]}, {claim.words(index)}, does not exist: fuses go from 0 to "
+            f"{count - 1}, as 'fuses'{_line(at_count)} says{_likewise(number[group] - 1)}",
+            claim.where(),
+        )
+
+
+def _report_overlaps(claims: Sequence[FuseClaim], diagnostics: Diagnostics) -> None:
+    first: dict[int, tuple[FuseClaim, int]] = {}
+    found: dict[tuple[str, str], tuple[tuple[FuseClaim, int], tuple[FuseClaim, int]]] = {}
+    number: Counter[tuple[str, str]] = Counter()
+    for claim in claims:
+        for index, fuse in enumerate(claim.fuses):
+            known = first.setdefault(fuse, (claim, index))
+            if known[0] is claim and known[1] == index:
+                continue
+            key = (known[0].group, claim.group)
+            found.setdefault(key, (known, (claim, index)))
+            number[key] += 1
+    for key, pair in found.items():
+        (one, i), (other, k) = sorted(pair, key=lambda use: _order(use[0].where()))
+        fuse = one.fuses[i]
+        diagnostics.error(
+            "FUSE-OVERLAP",
+            f"fuse {fuse} is {one.words(i)}{_line(one.where())} and {other.words(k)}"
+            f"{_likewise(number[key] - 1)}",
+            other.where(),
+        )
+
+
+def check_pins(
+    count: int, claims: Sequence[PinClaim], at_count: Location, diagnostics: Diagnostics
+) -> None:
+    """Report pins with two roles, pins without one, and pins that the device does not have."""
+    first: dict[int, PinClaim] = {}
+    for claim in claims:
+        if not 1 <= claim.pin <= count:
+            diagnostics.error(
+                "PIN-RANGE",
+                f"pin {claim.pin}, {claim.role}, does not exist: pins go from 1 to {count}, "
+                f"as 'pins'{_line(at_count)} says",
+                claim.where(),
+            )
+            continue
+        known = first.setdefault(claim.pin, claim)
+        if known is not claim:
+            one, other = sorted((known, claim), key=lambda c: _order(c.where()))
+            diagnostics.error(
+                "PIN-TWICE",
+                f"pin {claim.pin} is {one.role}{_line(one.where())} and {other.role}",
+                other.where(),
+            )
+    idle = [pin for pin in range(1, count + 1) if pin not in first]
+    if idle:
+        has = "has" if len(idle) == 1 else "have"
+        diagnostics.error(
+            "PIN-IDLE",
+            f"{_number(idle, 'pin')} {spans(idle)} of {count} {has} no role: "
+            "no column, no cell, no supply",
+            at_count,
+            f"if nothing is connected there, say unconnected = "
+            f"[{', '.join(map(str, idle[:_SHOWN]))}{', …' if len(idle) > _SHOWN else ''}]",
+        )
+
+
+def check_sums(
+    columns: Sequence[PinClaim], cells: Sequence[PinClaim], diagnostics: Diagnostics
+) -> None:
+    """Report OR columns without a cell, cells without an OR column, and columns given twice."""
+    first: dict[int, PinClaim] = {}
+    with_cell = {cell.pin for cell in cells}
+    for column in columns:
+        known = first.setdefault(column.pin, column)
+        if known is not column:
+            diagnostics.error(
+                "COLUMN-TWICE",
+                f"{column.role} is for pin {column.pin}, and so is {known.role}"
+                f"{_line(known.where())}",
+                column.where(),
+                "a sum has one column",
+            )
+        elif column.pin not in with_cell:
+            outputs = spans(sorted(with_cell)) or "none"
+            diagnostics.error(
+                "SUM-NO-CELL",
+                f"{column.role} is for pin {column.pin}, which has no cell; "
+                f"cells are on: {outputs}",
+                column.where(),
+                f"add {{ pin = {column.pin}, … }} to the cells of a [kind.NAME]",
+            )
+    for cell in cells:
+        if cell.pin not in first:
+            diagnostics.error(
+                "CELL-NO-SUM",
+                f"{cell.role} has no column in [or]; columns are for pins: "
+                f"{spans(sorted(first)) or 'none'}",
+                cell.where(),
+                f"add {cell.pin} to the columns of [or]",
+            )
+
+
+def check_rows(device: Device, at_unused: Location, diagnostics: Diagnostics) -> None:
+    """Report an unused row that would not stay out of the sums.
+
+    A row with a line and its complement connected is always 0, one with no line connected always
+    1 (the empty product). AND and OR links share their senses, so a blank row that is always 1
+    has no connected OR link and reaches no sum; one that is always 0 may reach every sum. What is
+    left, and fatal, are blank rows of an array in which no pin has both lines: they follow the
+    inputs, and all their OR links are connected.
+    """
+    unused = device.links.unused_term
+    if device.paired_pins:
+        return
+    if unused == "dead":
+        diagnostics.error(
+            "ROW-NOT-DEAD",
+            "unused_term is 'dead', but no pin has both a true and a complement line, "
+            "so no row can be made dead",
+            at_unused,
+            "a dead row has a line and its complement connected",
+        )
+    elif device.blank_row == "live":
+        diagnostics.error(
+            "ROW-LIVE",
+            "unused_term is 'blank', but a blank row is not dead: all its lines are connected, no "
+            "pin has both a true and a complement line, and its OR links are connected; every "
+            "unused row would add the AND of all lines to every sum",
+            at_unused,
+            "look again at the columns of [and], and at blank and connected",
+        )
+
+
+def _order(at: Location) -> tuple[int, int]:
+    return at.line or 0, at.column or 0
+
+
+def _line(at: Location) -> str:
+    return f" (line {at.line})" if at.line is not None else ""
+
+
+def _number(found: Sequence[int], noun: str) -> str:
+    return noun if len(found) == 1 else f"{len(found)} {noun}s:"
+
+
+def _likewise(more: int) -> str:
+    if more < 1:
+        return ""
+    return f"; likewise {more} more fuse{'s' if more > 1 else ''}"
