@@ -1,0 +1,44 @@
+"""How much work an answer may cost.
+
+Work is counted, not timed, so that the same input gives the same answer on every machine; the clock
+is only a safety net, and whoever was stopped by it says so.
+"""
+
+from __future__ import annotations
+
+import time
+from dataclasses import dataclass, field
+
+__all__ = ["Effort"]
+
+
+@dataclass(slots=True)
+class Effort:
+    """A budget that is used up along the way.
+
+    Attributes:
+        work: Simplex iterations, each weighed by the rows and columns it touches, in thousands.
+        nodes: Branching nodes of one integer program.
+        seconds: The safety net.
+        clock: Whether the safety net cut in: the answer may then not repeat.
+    """
+
+    work: float = 1_000_000.0
+    nodes: int = 5_000
+    seconds: float = 900.0
+    clock: bool = False
+    _started: float = field(default_factory=time.monotonic)
+
+    def spend(self, iterations: int, size: int, *, clock: bool = False) -> None:
+        self.work -= (iterations + 1) * size / 1000
+        self.clock = self.clock or clock
+
+    @property
+    def seconds_left(self) -> float:
+        return max(1.0, self.seconds - (time.monotonic() - self._started))
+
+    @property
+    def exhausted(self) -> bool:
+        if time.monotonic() - self._started > self.seconds:
+            self.clock = True
+        return self.clock or self.work <= 0
