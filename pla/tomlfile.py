@@ -251,7 +251,10 @@ class Section:
     def flag(self, key: str, *, default: None = None, required: bool = False) -> bool | None: ...
     def flag(self, key: str, *, default: bool | None = None, required: bool = False) -> bool | None:
         """``true`` or ``false``."""
-        return self._checked(key, lambda v: isinstance(v, bool), "true or false", default, required)
+        value: bool | None = self._checked(
+            key, lambda v: isinstance(v, bool), "true or false", default, required
+        )
+        return value
 
     def items(self, key: str, *, required: bool = False) -> list[Any] | None:
         """A list of anything; its elements stand at ``at(key, index)``."""
