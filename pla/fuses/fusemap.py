@@ -19,6 +19,9 @@ class FuseMap:
 
     Attributes:
         states: One byte for each fuse, 0 or 1; fuse 0 first.
+
+    Raises:
+        ValueError: For any other state.
     """
 
     states: bytes
@@ -51,7 +54,7 @@ class FuseMap:
         return FuseMap(bytes(copy))
 
     def text(self, first: int = 0, size: int | None = None) -> str:
-        """The states as ``0`` and ``1``."""
+        """The states of `size` fuses from `first`, by default to the last, as ``0`` and ``1``."""
         end = len(self.states) if size is None else first + size
         return self.states[first:end].translate(bytes.maketrans(b"\0\1", b"01")).decode("ascii")
 
@@ -65,3 +68,8 @@ class FuseMap:
     def opened(self) -> int:
         """How many links are open."""
         return self.states.count(1)
+
+    @property
+    def closed(self) -> int:
+        """How many links are closed."""
+        return self.states.count(0)

@@ -166,7 +166,7 @@ def _check_sum(findings: Findings, frame: Frame) -> int:
 _CONTROL = re.compile(rb"[\x00-\x08\x0b\x0c\x0e-\x1f\x7f]")
 _HIGH = re.compile(rb"[\x80-\xff]+")
 # A line that a program would hardly write into a note, but that stands there when the * before it
-# was lost; only at the very begin of a line, where fields are written.
+# was lost; only at the very start of a line, where fields are written.
 _SWALLOWED = re.compile(
     rb"[\r\n](L[0-9]+[ \t\r\n]+[01]|K[0-9]+[ \t\r\n]+[0-9A-F]|V[0-9]+[ \t\r\n]+[0-9A-Z]"
     rb"|Q[FPV][0-9]+[ \t\r\n]*\Z|[FGX][01][ \t\r\n]*\Z|C[0-9A-F]{4}[ \t\r\n]*\Z|N[ \t])"
@@ -240,7 +240,7 @@ def _check_text(findings: Findings, field: Field, name: str) -> None:
             "FIELD-IN-TEXT",
             field.body_offset + swallowed.start(1),
             name,
-            f"{shown(swallowed[1].strip(WHITE))} at the begin of a line looks like a field",
+            f"{shown(swallowed[1].strip(WHITE))} at the start of a line looks like a field",
             "is the * missing before it?",
         )
 

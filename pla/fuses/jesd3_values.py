@@ -156,7 +156,9 @@ def numbered_list(
         hint = None
         if rest[at : at + 1].isalpha() and b"\n" in rest[:at]:
             hint = "is the * missing that closes this field?"
-        expected = "white space" if at == 0 else f"one of {allowed.decode('ascii')}"
+        expected = "0 or 1" if allowed == b"01" else f"one of {allowed.decode('ascii')}"
+        if at == 0:
+            expected = "white space"
         findings.error(
             "BAD-CHARACTER",
             offset + at,

@@ -1,0 +1,108 @@
+"""What a fuse file says, for people."""
+
+from __future__ import annotations
+
+from collections import Counter
+from typing import TYPE_CHECKING
+
+from pla.fuses.jesd3_model import IDENTIFIERS
+
+if TYPE_CHECKING:
+    from collections.abc import Iterator, Sequence
+
+    from pla.fuses.jesd3 import FuseDiagnostic, FuseFile
+
+__all__ = ["inspection_text"]
+
+_VECTORS_SHOWN = 20
+_STATE = {0: "closed", 1: "open"}
+_SHOWN_ELSEWHERE = frozenset({"", "N", "QF", "QP", "QV", "F", "C", "G", "X", "V", "P"})
+
+
+def inspection_text(
+    file: FuseFile, departures: Sequence[FuseDiagnostic], devices: Sequence[str]
+) -> str:
+    """Contents, sums, devices of that size, and every departure from the standard."""
+    rows = [(label, text) for label, text in _rows(file, devices) if text]
+    width = max(len(label) for label, _ in rows)
+    lines = [f"{_safe(file.name)}: {_verdict(departures)}", ""]
+    for label, text in rows:
+        for number, line in enumerate(_safe(text).split("\n")):
+            lines.append(f"  {'' if number else label:<{width}}  {line}".rstrip())
+    if file.vectors:
+        lines += ["", "Test vectors"]
+        lines += [f"  {v.number:>5}  {v.conditions}" for v in file.vectors[:_VECTORS_SHOWN]]
+        left_out = len(file.vectors) - _VECTORS_SHOWN
+        if left_out > 0:
+            lines.append(f"  and {left_out} more")
+    if departures:
+        lines += ["", "Departures from the standard"]
+        for d in departures:
+            at = d.location
+            place = f"{at.line}:{at.column}: " if at is not None and at.line else ""
+            lines.append(f"  {place}{d.message} [{d.code}]")
+            if d.hint:
+                lines.append(f"    hint: {d.hint}")
+    return "\n".join(lines)
+
+
+def _verdict(departures: Sequence[FuseDiagnostic]) -> str:
+    if not departures:
+        return "keeps to the standard in every point"
+    number = len(departures)
+    return f"readable, with {number} departure{'s' if number > 1 else ''} from the standard"
+
+
+def _rows(file: FuseFile, devices: Sequence[str]) -> Iterator[tuple[str, str]]:
+    fuses = file.fuses
+    yield "design", file.design
+    for note in file.notes:
+        yield "note", note
+    yield "fuses", f"{len(fuses)}: {fuses.closed} closed, {fuses.opened} open"
+    if file.default is not None:
+        yield "default", f"{file.default} ({_STATE[file.default]}) for fuses in no list"
+    yield "pins", "not given" if file.pins is None else str(file.pins)
+    yield "vectors", _vectors(file)
+    yield "fuse checksum", _checksum(file)
+    yield "transmission sum", _sum(file)
+    if file.security is not None:
+        meaning = "is programmed; the part cannot be read back" if file.security else "stays blank"
+        yield "security fuse", f"{file.security}: {meaning}"
+    if file.pin_order is not None:
+        yield "pin sequence", " ".join(map(str, file.pin_order))
+    counts = Counter(field.identifier for field in file.fields[1:])
+    for identifier, number in counts.items():
+        if identifier not in _SHOWN_ELSEWHERE:
+            what = IDENTIFIERS.get(identifier, "unknown")
+            yield f"{identifier} fields", f"{number} ({what})"
+    size = f"{len(fuses)} fuses" + ("" if file.pins is None else f" and {file.pins} pins")
+    yield "devices", ", ".join(devices) or f"none in the catalogue has {size}"
+
+
+def _vectors(file: FuseFile) -> str:
+    limit = "" if file.vector_limit is None else f", at most {file.vector_limit} by QV"
+    level = "" if file.default_condition is None else f"; X is {file.default_condition}"
+    return f"{len(file.vectors) or 'none'}{limit}{level}"
+
+
+def _checksum(file: FuseFile) -> str:
+    computed = file.fuses.checksum
+    if file.given_checksum is None:
+        return f"not given; computed {computed:04X}"
+    return f"{file.given_checksum:04X} given, {computed:04X} computed: equal"
+
+
+def _sum(file: FuseFile) -> str:
+    given, computed = file.given_sum, file.computed_sum
+    if given is None:
+        return f"not given; computed {computed:04X}"
+    if given == computed:
+        return f"{given:04X} given, {computed:04X} computed: equal"
+    if given == 0:
+        return f"0000 given, which means not computed; computed {computed:04X}"
+    return f"{given:04X} given, {computed:04X} computed: NOT EQUAL"
+
+
+def _safe(text: str) -> str:
+    """Foreign text for a terminal: nothing in it may move the cursor or hide what follows."""
+    return "".join(c if c.isprintable() or c == "\n" else f"<{ord(c):02X}>" for c in text)
