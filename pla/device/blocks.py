@@ -102,7 +102,7 @@ def _mark_and_array(owner: list[str], device: Device) -> None:
             owner[fuse] = {
                 "row": f"term {term}",
                 "column": f"line {line}" if line else f"column {column}",
-                "array": "AND array",
+                "array": "AND and OR array" if grain == _grain(device.or_array) else "AND array",
             }[grain]
 
 
@@ -117,7 +117,7 @@ def _mark_or_array(owner: list[str], device: Device) -> None:
             owner[fuse] = {
                 "row": f"term {term}" if joined else f"OR links of term {term}",
                 "column": f"sum of pin {array.pins[column]}",
-                "array": "OR array",
+                "array": "AND and OR array" if grain == _grain(device.and_array) else "OR array",
             }[grain]
 
 

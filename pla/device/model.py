@@ -249,6 +249,10 @@ class Device:
         """The mode of a cell whose configuration links are all blank, if that is one."""
         return cell.mode_of(str(self.links.blank) * len(cell.links))
 
+    def idle_mode(self, cell: Cell) -> Mode:
+        """The mode of a cell that no output uses: blank if that is a mode, else its first one."""
+        return self.blank_mode(cell) or cell.modes[0]
+
     def blocks(self) -> Iterator[Block]:
         """The fuse lists of a fuse file: together every fuse once, in order of address.
 
