@@ -23,6 +23,9 @@ __all__ = ["Core", "Table", "greedy_cover", "incidence", "irredundant", "reduce_
 
 Matrix = np.ndarray[tuple[int, int], np.dtype[np.bool_]]
 
+MAX_COMPARED = 8_192
+"""Rows or columns up to which each is compared with each; above, only equal ones are joined."""
+
 
 @dataclass(frozen=True, slots=True, eq=False)
 class Table:
@@ -72,6 +75,8 @@ def incidence(primes: Cover, points: Words, phase: int) -> Matrix:
 def without_row_dominance(matrix: Matrix) -> NDArray[np.intp]:
     """Indexes of the rows that matter: no row that holds all columns of another, ascending."""
     distinct = _distinct(matrix)
+    if len(distinct) > MAX_COMPARED:
+        return distinct
     held = matrix[distinct].astype(np.float32)
     size = held.sum(axis=1)
     common = held @ held.T
@@ -90,6 +95,8 @@ def without_column_dominance(matrix: Matrix, cost: NDArray[np.float64]) -> NDArr
     order = np.lexsort((np.arange(len(size)), cost, -size))
     order = order[size[order] > 0]
     order = order[_distinct(matrix[:, order].T)]
+    if len(order) > MAX_COMPARED:
+        return np.sort(order)
     held = matrix[:, order].astype(np.float32)
     common = held.T @ held
     within = common == held.sum(axis=0)[:, None]

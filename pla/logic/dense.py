@@ -14,7 +14,7 @@ if TYPE_CHECKING:
 
     from pla.logic.cubes import Cover, Words
 
-__all__ = ["MAX_DENSE_INPUTS", "coordinates", "fed_outputs", "smallest_type"]
+__all__ = ["MAX_DENSE_INPUTS", "coordinates", "cube_slices", "fed_outputs", "smallest_type"]
 
 MAX_DENSE_INPUTS = 16
 
@@ -34,12 +34,18 @@ def fed_outputs(cover: Cover) -> NDArray[np.uint64]:
     whole = np.bitwise_count(cover.ones | cover.zeros) == n
     points = cover.take(whole)
     np.bitwise_or.at(array.reshape(-1), _flat(points.ones, n), points.outputs)
-    for cube in cover.take(~whole):
-        place = tuple(
-            1 if cube.ones >> i & 1 else 0 if cube.zeros >> i & 1 else slice(None) for i in range(n)
-        )
-        array[place] |= np.uint64(cube.outputs)
+    for k in np.flatnonzero(~whole):
+        array[cube_slices(cover, int(k))] |= cover.outputs[k]
     return array
+
+
+def cube_slices(cover: Cover, k: int) -> tuple[int | slice, ...]:
+    """The index of a dense array that picks the combinations of the cover's cube `k`."""
+    ones, zeros = int(cover.ones[k]), int(cover.zeros[k])
+    everything = slice(None)
+    return tuple(
+        1 if ones >> i & 1 else 0 if zeros >> i & 1 else everything for i in range(cover.n_inputs)
+    )
 
 
 def coordinates(chosen: NDArray[np.bool_]) -> Words:

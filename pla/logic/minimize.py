@@ -18,8 +18,8 @@ from pla.logic.phases import Polarity
 if TYPE_CHECKING:
     from collections.abc import Sequence
 
+    from pla.logic.block_minimum import BlockMinimum, Scope
     from pla.logic.function import Function
-    from pla.logic.minimize_block import BlockMinimum
     from pla.logic.search import Feasible
 
 __all__ = ["Minimum", "minimize", "ordered_terms"]
@@ -35,8 +35,8 @@ class Minimum:
         lower_bound: No cover, in any allowed polarities, has fewer terms.
         proven_by: ``certificate`` where the bound was checked in exact arithmetic, ``solver`` where
             it rests on floating point, ``None`` where count and bound do not meet.
-        connections_proven: Whether no cover of so many terms *in these polarities* has fewer
-            literals and OR links, by the solver's word.
+        connections: Where no cover of so many terms has fewer literals and OR links, by the
+            solver's word: in any polarities or in these; ``None`` where that is not known.
         primes: Prime implicants of all allowed polarities together; ``None`` if not all were made.
         clock: Whether the safety net of the clock cut in, so that the answer may not repeat.
     """
@@ -45,7 +45,7 @@ class Minimum:
     complemented: tuple[bool, ...]
     lower_bound: int
     proven_by: Literal["certificate", "solver"] | None
-    connections_proven: bool
+    connections: Scope | None
     primes: int | None
     clock: bool
 
@@ -106,7 +106,7 @@ def minimize(
         tuple(complemented),
         sum(a.trusted for a in answers),
         _proof(answers),
-        all(a.connections_proven for a in answers),
+        _scope(answers),
         None if any(a.primes is None for a in answers) else sum(a.primes or 0 for a in answers),
         budget.clock,
     )
@@ -119,7 +119,8 @@ def ordered_terms(cover: Cover) -> Cover:
         text = cube.text(cover.n_inputs)
         return (-cube.outputs.bit_count(), text.translate({ord("1"): "0", ord("0"): "1"}))
 
-    return Cover.of(cover.n_inputs, sorted(cover, key=key))
+    cubes: list[Cube] = sorted(cover, key=key)
+    return Cover.of(cover.n_inputs, cubes)
 
 
 def _proof(answers: Sequence[BlockMinimum]) -> Literal["certificate", "solver"] | None:
@@ -128,6 +129,13 @@ def _proof(answers: Sequence[BlockMinimum]) -> Literal["certificate", "solver"] 
     if all(len(a.cover) == a.trusted for a in answers):
         return "solver"
     return None
+
+
+def _scope(answers: Sequence[BlockMinimum]) -> Scope | None:
+    scopes = {a.connections for a in answers}
+    if None in scopes:
+        return None
+    return "these polarities" if "these polarities" in scopes else "all polarities"
 
 
 def _check(cover: Cover, complemented: Sequence[bool], function: Function) -> None:

@@ -2,52 +2,43 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 import numpy as np
 
-from pla.logic.connections import fewest_connections
+from pla.logic.block_minimum import BlockMinimum, Scope
+from pla.logic.connections import (
+    Connected,
+    fewest_connections,
+    without_superfluous_links,
+)
+from pla.logic.covering import MAX_COMPARED
+from pla.logic.cubes import Cover
 from pla.logic.dense import MAX_DENSE_INPUTS, coordinates, fed_outputs
 from pla.logic.lattice import dense_primes, lattice_bytes
-from pla.logic.phases import Phase, phase_function, phases_of
+from pla.logic.lazy import LazyProgram
+from pla.logic.phases import phase_function, phases_of
 from pla.logic.search import search_polarities
 from pla.logic.selection import TableProgram, table_of
+from pla.logic.wide import minimize_wide
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
 
-    from pla.logic.cubes import Cover, Words
+    from numpy.typing import NDArray
+
+    from pla.logic.cubes import Words
     from pla.logic.effort import Effort
     from pla.logic.function import Function
-    from pla.logic.phases import Polarity
-    from pla.logic.search import Feasible
+    from pla.logic.phases import Phase, Polarity
+    from pla.logic.search import Feasible, Program
 
-__all__ = ["BlockMinimum", "minimize_block"]
+__all__ = ["minimize_block"]
 
 MAX_PHASES = 64
 MAX_LATTICE_BYTES = 1 << 29
-
-
-@dataclass(frozen=True, slots=True)
-class BlockMinimum:
-    """The answer for one block.
-
-    Attributes:
-        cover: Terms over the block's inputs; output masks speak of the block's outputs.
-        complemented: Polarity of each output.
-        exact: Lower bound verified in integers.
-        trusted: Lower bound that may rest on the solver; at least `exact`.
-        connections_proven: See `pla.logic.minimize.Minimum`.
-        primes: How many primes there are; ``None`` if they were not all made.
-    """
-
-    cover: Cover
-    complemented: tuple[bool, ...]
-    exact: int
-    trusted: int
-    connections_proven: bool
-    primes: int | None
+MAX_PRODUCTS = 60_000_000_000
+MAX_ENTRIES = 120_000_000
 
 
 def minimize_block(
@@ -57,60 +48,87 @@ def minimize_block(
     feasible: Feasible | None = None,
 ) -> BlockMinimum:
     """The fewest terms for a block over all allowed polarities, then the fewest connections."""
-    return _exact(function, polarities, effort, feasible)
+    phases = phases_of(polarities)
+    fits = function.n_inputs <= MAX_DENSE_INPUTS and len(phases) <= MAX_PHASES
+    if fits and lattice_bytes(function.n_inputs, len(phases)) <= MAX_LATTICE_BYTES:
+        return _by_primes(function, polarities, phases, effort, feasible)
+    return minimize_wide(function, polarities, effort, feasible)
 
 
-def _exact(
+def _by_primes(
     function: Function,
     polarities: Sequence[Polarity],
+    phases: Sequence[Phase],
     effort: Effort,
     feasible: Feasible | None,
 ) -> BlockMinimum:
-    phases = phases_of(polarities)
     on, off = phase_function(function, phases)
     primes = dense_primes(off, len(phases))
-    required = _required(on, len(phases))
+    primes = primes.take(np.argsort(np.bitwise_count(primes.ones | primes.zeros), kind="stable"))
+    fed = fed_outputs(on)
+    demanded = [
+        np.asarray(fed >> np.uint64(b) & np.uint64(1)).astype(bool) for b in range(len(phases))
+    ]
+    required = [coordinates(d) for d in demanded]
     literals = np.bitwise_count(primes.ones | primes.zeros).astype(np.float64)
-    program = TableProgram(table_of(primes, required), literals, phases, function.n_outputs, effort)
+    table = table_of(primes, required) if _table_fits(primes, required) else None
+    program: Program
+    if table is not None:
+        program = TableProgram(table, literals, phases, function.n_outputs, effort)
+    else:
+        program = LazyProgram(primes, demanded, literals, phases, function.n_outputs, effort)
     only = tuple(None if p.true and p.complement else p.complement for p in polarities)
     found = search_polarities(program, function.n_outputs, only, feasible or (lambda _: True))
-    chosen, candidates, wanted = in_polarity(
-        primes, primes.take(found.columns), required, phases, found.complemented
-    )
-    connected = fewest_connections(candidates, wanted, chosen, effort)
+    start = _linked(primes.take(found.columns), demanded, phases, found.complemented)
+    connected = start
+    scope: Scope | None = None
+    if table is not None:
+        if feasible is None:
+            connected = fewest_connections(primes, table, phases, start, only, effort)
+            scope = "all polarities" if connected.proven else None
+        if scope is None:
+            settled = connected.complemented
+            connected = fewest_connections(primes, table, phases, connected, settled, effort)
+            scope = "these polarities" if connected.proven else None
     return BlockMinimum(
-        connected.cover,
-        found.complemented,
+        _by_output(connected.cover, phases, connected.complemented),
+        connected.complemented,
         found.exact,
         found.trusted,
-        connected.proven,
+        scope,
         len(primes),
     )
 
 
-def in_polarity(
-    primes: Cover,
-    chosen: Cover,
-    required: Sequence[Words],
-    phases: Sequence[Phase],
-    complemented: Sequence[bool],
-) -> tuple[Cover, Cover, list[Words]]:
-    """Chosen cubes, primes and required combinations in terms of outputs instead of phases."""
-    number = {phase: bit for bit, phase in enumerate(phases)}
-    bits = [number[Phase(j, bool(c))] for j, c in enumerate(complemented)]
-
-    def renamed(cover: Cover) -> Cover:
-        outputs = np.zeros_like(cover.outputs)
-        for j, bit in enumerate(bits):
-            outputs |= (cover.outputs >> np.uint64(bit) & np.uint64(1)) << np.uint64(j)
-        return type(cover)(cover.n_inputs, cover.ones, cover.zeros, outputs).fed()
-
-    return renamed(chosen), renamed(primes), [required[bit] for bit in bits]
-
-
-def _required(on: Cover, n_phases: int) -> list[Words]:
-    fed = fed_outputs(on)
-    return [
-        coordinates(np.asarray(fed >> np.uint64(bit) & np.uint64(1)).astype(bool))
-        for bit in range(n_phases)
+def _table_fits(primes: Cover, required: Sequence[Words]) -> bool:
+    """Whether comparing all rows and all columns of the table with each other is affordable."""
+    if len(primes) > MAX_COMPARED or any(len(points) > MAX_COMPARED for points in required):
+        return False
+    rows = [len(points) for points in required]
+    columns = [
+        int((primes.outputs >> np.uint64(b) & np.uint64(1)).sum()) for b in range(len(required))
     ]
+    products = sum(r * r * p for r, p in zip(rows, columns, strict=True))
+    return products <= MAX_PRODUCTS and sum(rows) * len(primes) <= MAX_ENTRIES
+
+
+def _linked(
+    chosen: Cover,
+    demanded: Sequence[NDArray[np.bool_]],
+    phases: Sequence[Phase],
+    complemented: tuple[bool, ...],
+) -> Connected:
+    """A cover that feeds only the chosen phases, and those by no link too many."""
+    live = sum(1 << b for b, p in enumerate(phases) if complemented[p.output] == p.complemented)
+    outputs = chosen.outputs & np.uint64(live)
+    cover = Cover(chosen.n_inputs, chosen.ones, chosen.zeros, outputs).fed()
+    return Connected(without_superfluous_links(cover, demanded), complemented, False)
+
+
+def _by_output(cover: Cover, phases: Sequence[Phase], complemented: Sequence[bool]) -> Cover:
+    """The cover with masks that speak of outputs instead of phases."""
+    outputs = np.zeros_like(cover.outputs)
+    for bit, phase in enumerate(phases):
+        if complemented[phase.output] == phase.complemented:
+            outputs |= (cover.outputs >> np.uint64(bit) & np.uint64(1)) << np.uint64(phase.output)
+    return Cover(cover.n_inputs, cover.ones, cover.zeros, outputs).fed()
