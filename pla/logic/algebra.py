@@ -10,9 +10,11 @@ from __future__ import annotations
 
 import numpy as np
 
+from pla.logic import points
 from pla.logic.cubes import Cover, Cube
 
 __all__ = [
+    "compact",
     "complement",
     "contains_cube",
     "difference",
@@ -20,6 +22,7 @@ __all__ = [
     "find_outside",
     "intersection",
     "is_tautology",
+    "size",
     "union",
 ]
 
@@ -33,6 +36,11 @@ def union(n_inputs: int, *covers: Cover) -> Cover:
 
 def intersection(a: Cover, b: Cover) -> Cover:
     """Cubes whose union is the common part of `a` and `b`."""
+    if len(a) * len(b) > _PAIRS_AT_ONCE:
+        bits = points.support(a, b)
+        if points.pays(bits, a, b):
+            held = points.points_of_cover(a, bits) & points.points_of_cover(b, bits)
+            return points.cover_of_points(a.n_inputs, held, bits)
     parts: list[Cover] = []
     step = max(1, _PAIRS_AT_ONCE // max(1, len(b)))
     for start in range(0, len(a), step):
@@ -48,6 +56,10 @@ def difference(a: Cover, b: Cover) -> Cover:
     """Cubes whose union is the part of `a` outside `b`."""
     if not len(a) or not len(b):
         return a.feeding(1)
+    bits = points.support(a, b)
+    if points.pays(bits, a, b):
+        held = points.points_of_cover(a, bits) & ~points.points_of_cover(b, bits)
+        return points.cover_of_points(a.n_inputs, held, bits)
     parts: list[Cover] = []
     for cube in a:
         near = b.take(b.meeting(cube))
@@ -71,6 +83,38 @@ def difference(a: Cover, b: Cover) -> Cover:
 def complement(cover: Cover) -> Cover:
     """Cubes whose union is every input combination outside `cover`."""
     return _complement(cover.feeding(1).absorbed())
+
+
+def size(cover: Cover) -> int:
+    """How many input combinations the cubes hold together, each counted once."""
+    outside = _complement(cover.feeding(1).absorbed())
+    n = cover.n_inputs
+    return (1 << n) - sum(1 << (n - cube.literals) for cube in outside)
+
+
+def compact(cover: Cover) -> Cover:
+    """Join cubes that differ in one literal only and feed the same outputs, input by input.
+
+    Quick and not a minimum: it takes the bulk out of lists of single input combinations. Output
+    masks are kept, and for each output the input combinations that the cubes hold.
+    """
+    joined = cover.merged()
+    for place in range(cover.n_inputs):
+        bit = np.uint64(1 << place)
+        literal = (joined.ones & bit != 0) | (joined.zeros & bit != 0)
+        if np.count_nonzero(literal) < 2:
+            continue
+        plain = joined.take(~literal)
+        held = joined.take(literal)
+        positive = held.ones & bit != 0
+        ones, zeros = held.ones & ~bit, held.zeros & ~bit
+        order = np.lexsort((positive, ones, zeros, held.outputs))
+        keys = (ones[order], zeros[order], held.outputs[order])
+        first = np.concatenate((np.logical_and.reduce([k[1:] == k[:-1] for k in keys]), [False]))
+        second = np.concatenate(([False], first[:-1]))
+        raised = Cover(cover.n_inputs, *(k[first] for k in keys))
+        joined = (plain + held.take(order[~(first | second)]) + raised).merged()
+    return joined
 
 
 def is_tautology(cover: Cover) -> bool:
@@ -160,11 +204,15 @@ def _uncovered(cover: Cover) -> int | None:
 
 
 def _complement(cover: Cover) -> Cover:
+    """Disjoint cubes that hold every input combination outside `cover`."""
     n = cover.n_inputs
     if not len(cover):
         return Cover.universe(n)
     if ((cover.ones | cover.zeros) == 0).any():
         return Cover.of(n)
+    bits = points.support(cover)
+    if points.pays(bits, cover):
+        return points.cover_of_points(n, ~points.points_of_cover(cover, bits), bits)
     if len(cover) == 1:
         (cube,) = cover
         parts = []

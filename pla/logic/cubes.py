@@ -23,6 +23,8 @@ __all__ = ["MAX_INPUTS", "MAX_OUTPUTS", "Cover", "Cube", "Words"]
 MAX_INPUTS = 64
 MAX_OUTPUTS = 64
 
+_KIND_COST = 4000  # comparing two kinds costs as much as so many pairs of cubes
+
 Words = np.ndarray[tuple[int], np.dtype[np.uint64]]
 
 
@@ -157,10 +159,12 @@ class Cover:
         k = len(ordered)
         if k < 2:
             return ordered
-        size = np.bitwise_count(ordered.ones | ordered.zeros)
+        literals = ordered.ones | ordered.zeros
+        kinds, kind = np.unique(literals, return_inverse=True)
+        if len(kinds) ** 2 * _KIND_COST < k * k:
+            return ordered.take(_outside_wider_kinds(ordered, kinds, kind))
         kept = np.ones(k, dtype=bool)
-        order = np.argsort(size, kind="stable")
-        for index in order:
+        for index in np.argsort(np.bitwise_count(literals), kind="stable"):
             if not kept[index]:
                 continue
             ones, zeros, outs = (w[index] for w in (ordered.ones, ordered.zeros, ordered.outputs))
@@ -209,3 +213,29 @@ class Cover:
     def links(self) -> int:
         """Connections: literals plus OR links."""
         return self.literals + int(np.bitwise_count(self.outputs).sum())
+
+
+def _outside_wider_kinds(
+    cover: Cover, kinds: NDArray[np.uint64], kind: NDArray[np.intp]
+) -> NDArray[np.bool_]:
+    """``bool[k]``: which cubes lie in no other cube, by looking up the cubes of each wider kind.
+
+    Args:
+        cover: Cubes with different inputs.
+        kinds: The sets of inputs that cubes have literals of, as masks.
+        kind: Which of these each cube has.
+    """
+    kept = np.ones(len(cover), dtype=bool)
+    members = [np.flatnonzero(kind == i) for i in range(len(kinds))]
+    for wide, wide_mask in enumerate(kinds):
+        # Cubes of one kind are told apart by their positive literals.
+        wider = members[wide][np.argsort(cover.ones[members[wide]])]
+        ones, outputs = cover.ones[wider], cover.outputs[wider]
+        for narrow, narrow_mask in enumerate(kinds):
+            if narrow == wide or wide_mask & ~narrow_mask:
+                continue
+            inner = members[narrow]
+            wanted = cover.ones[inner] & wide_mask
+            at = np.minimum(np.searchsorted(ones, wanted), len(ones) - 1)
+            kept[inner[(ones[at] == wanted) & (cover.outputs[inner] & ~outputs[at] == 0)]] = False
+    return kept
