@@ -1,0 +1,261 @@
+"""The declared inputs and outputs, and what names stand for."""
+
+from __future__ import annotations
+
+import re
+from dataclasses import dataclass, field
+from functools import cached_property
+from typing import TYPE_CHECKING, Literal
+
+from pla.behaviour.problem import Problem
+from pla.tomlfile import did_you_mean
+
+if TYPE_CHECKING:
+    from collections.abc import Iterable, Iterator
+
+    from pla.errors import Location
+
+__all__ = ["RESERVED", "Field", "Role", "Signal", "Signals", "split_name"]
+
+Role = Literal["input", "output"]
+
+RESERVED = ("in", "not", "and", "or", "xor", "others")
+
+_NAME = re.compile(r"([A-Za-z_][A-Za-z0-9_]*)(?:\[([0-9]{1,6})(?::([0-9]{1,6}))?\])?")
+
+
+@dataclass(frozen=True, slots=True)
+class Signal:
+    """An input or output as declared: a single bit or a bus.
+
+    Attributes:
+        name: Without brackets.
+        role: Input or output.
+        first: Position of its highest bit among all bits of its role.
+        high: Highest bit; 0 for a single bit.
+        low: Lowest bit that reaches the device; bits below it read 0.
+        is_bus: Whether its bits have numbers.
+        active_low: The pins carry the complement.
+        impossible: Value demanded of an output for impossible inputs.
+        location: Where it is declared.
+    """
+
+    name: str
+    role: Role
+    first: int
+    high: int
+    low: int
+    is_bus: bool
+    active_low: bool
+    impossible: Literal[0, 1] | None
+    location: Location
+
+    @property
+    def size(self) -> int:
+        """How many bits reach the device."""
+        return self.high - self.low + 1
+
+    @property
+    def span(self) -> str:
+        """As a bus is written in full: ``step[3:0]``."""
+        return f"{self.name}[{self.high}:{self.low}]" if self.is_bus else self.name
+
+    def bit_name(self, bit: int) -> str:
+        return f"{self.name}[{bit}]" if self.is_bus else self.name
+
+    def bit_names(self) -> Iterator[str]:
+        """From the highest down."""
+        return (self.bit_name(bit) for bit in range(self.high, self.low - 1, -1))
+
+    def index(self, bit: int) -> int | None:
+        """Position among all bits of its role; ``None`` if the bit does not reach the device."""
+        return None if bit < self.low else self.first + self.high - bit
+
+
+@dataclass(frozen=True, slots=True)
+class Field:
+    """Bits that together carry a number.
+
+    Attributes:
+        name: As written.
+        role: Whether they are inputs or outputs.
+        bits: For each bit, most significant first, its position among all bits of its role;
+            ``None`` for a bit that does not reach the device and reads 0.
+        is_bit: It was written as one bit, not as a bus or part of one.
+    """
+
+    name: str
+    role: Role
+    bits: tuple[int | None, ...]
+    is_bit: bool
+
+    @property
+    def width(self) -> int:
+        return len(self.bits)
+
+    @property
+    def unreached(self) -> int:
+        """How many of the lowest bits do not reach the device."""
+        return self.bits.count(None)
+
+    @property
+    def mask(self) -> int:
+        """The bits that reach the device, as a mask."""
+        return sum(1 << i for i in self.bits if i is not None)
+
+
+def split_name(text: str) -> tuple[str, int | None, int | None] | None:
+    """Take ``bus``, ``bus[i]`` or ``bus[h:l]`` apart; ``None`` if it is none of these."""
+    found = _NAME.fullmatch(text)
+    if not found:
+        return None
+    name, high, low = found.groups()
+    return name, None if high is None else int(high), None if low is None else int(low)
+
+
+@dataclass(frozen=True)
+class Signals:
+    """All inputs and outputs of a design.
+
+    Attributes:
+        inputs: In order of declaration.
+        outputs: In order of declaration.
+        broken: Names whose declaration is wrong.
+    """
+
+    inputs: tuple[Signal, ...]
+    outputs: tuple[Signal, ...]
+    broken: frozenset[str] = field(default_factory=frozenset)
+
+    @cached_property
+    def by_name(self) -> dict[str, Signal]:
+        return {s.name: s for s in (*self.outputs, *self.inputs)}
+
+    @cached_property
+    def input_names(self) -> tuple[str, ...]:
+        return tuple(name for s in self.inputs for name in s.bit_names())
+
+    @cached_property
+    def output_names(self) -> tuple[str, ...]:
+        return tuple(name for s in self.outputs for name in s.bit_names())
+
+    @property
+    def n_inputs(self) -> int:
+        return len(self.input_names)
+
+    @property
+    def n_outputs(self) -> int:
+        return len(self.output_names)
+
+    def names(self, role: Role | None = None) -> list[str]:
+        """Names to choose from, for messages."""
+        listed: Iterable[Signal] = (*self.inputs, *self.outputs)
+        return [s.name for s in listed if role is None or s.role == role]
+
+    def find(self, text: str, role: Role | None = None) -> Field:
+        """What a written name stands for.
+
+        Args:
+            text: ``bus``, ``bus[i]``, ``bus[h:l]`` or the name of a single bit.
+            role: Which role is wanted; ``None`` for either.
+
+        Raises:
+            Problem: If it stands for nothing, or for the other role.
+        """
+        parts = split_name(text)
+        if parts is None:
+            raise Problem(
+                "NAME-SYNTAX",
+                f"{text!r} is not a name, expected name, bus[bit] or bus[high:low]",
+                "names are made of the letters A to Z and a to z, digits and underscores",
+            )
+        return self.select(*parts, role=role)
+
+    def select(
+        self, name: str, high: int | None, low: int | None, *, role: Role | None = None
+    ) -> Field:
+        """The same from a name and bit numbers; see `find`."""
+        signal = self.by_name.get(name)
+        if signal is None:
+            wanted = role or "input or output"
+            raise Problem(
+                "NAME-UNKNOWN",
+                f"there is no {wanted} {name!r}",
+                did_you_mean(name, self.names(role)),
+                known=name in self.broken,
+            )
+        if role is not None and signal.role != role:
+            raise Problem(
+                "NAME-ROLE",
+                f"{name!r} is an {signal.role}, expected an {role}",
+                did_you_mean(name, self.names(role)),
+            )
+        if high is None:
+            if not signal.is_bus:
+                return Field(name, signal.role, (signal.first,), is_bit=True)
+            return self._field(name, signal, signal.high, 0, is_bit=False)
+        text = f"{name}[{high}]" if low is None else f"{name}[{high}:{low}]"
+        if not signal.is_bus:
+            raise Problem(
+                "NAME-NOT-BUS",
+                f"{text!r}: {name} is a single bit, not a bus",
+                f"write {name}",
+            )
+        if low is not None and high < low:
+            raise Problem(
+                "PART-REVERSED",
+                f"the part {text!r} runs from low to high, expected the higher bit first",
+                f"write {name}[{low}:{high}]",
+            )
+        if high > signal.high:
+            raise Problem(
+                "BIT-RANGE",
+                f"{text!r}: there is no bit {high} in {signal.span}",
+                f"its bits are {signal.high} down to {signal.low}",
+            )
+        if high < signal.low:
+            raise Problem(
+                "BIT-UNREACHED",
+                f"{text!r}: only bits {signal.high} down to {signal.low} reach the device",
+            )
+        return self._field(text, signal, high, high if low is None else low, is_bit=low is None)
+
+    @staticmethod
+    def _field(text: str, signal: Signal, high: int, low: int, *, is_bit: bool) -> Field:
+        bits = tuple(signal.index(bit) for bit in range(high, low - 1, -1))
+        return Field(text, signal.role, bits, is_bit=is_bit)
+
+    def show_point(self, point: int, mask: int) -> str:
+        """An input combination in words, as far as `mask` goes: ``step = 12, start = 0``."""
+        shown = []
+        for signal in self.inputs:
+            held = [
+                bit
+                for bit in range(signal.high, signal.low - 1, -1)
+                if mask >> (signal.first + signal.high - bit) & 1
+            ]
+            if not held:
+                continue
+            values = {b: point >> (signal.first + signal.high - b) & 1 for b in held}
+            if len(held) == signal.size:
+                number = sum(value << bit for bit, value in values.items())
+                text = f"0x{number:0{(signal.high + 4) // 4}X}" if signal.high > 7 else str(number)
+                shown.append(f"{signal.name} = {text}")
+            else:
+                shown += [f"{signal.bit_name(bit)} = {value}" for bit, value in values.items()]
+        return ", ".join(shown) or "any input"
+
+    def show_names(self, mask: int) -> str:
+        """The inputs of a mask in words, whole buses by their name."""
+        shown = []
+        for signal in self.inputs:
+            held = [
+                bit
+                for bit in range(signal.high, signal.low - 1, -1)
+                if mask >> (signal.first + signal.high - bit) & 1
+            ]
+            if len(held) == signal.size:
+                shown.append(signal.name)
+            else:
+                shown += [signal.bit_name(bit) for bit in held]
+        return ", ".join(shown)
