@@ -11,16 +11,15 @@ from pla.device.limits import known_keys
 from pla.device.model import AndArray, Column, OrArray
 
 if TYPE_CHECKING:
-    from collections.abc import Iterator, Mapping
+    from collections.abc import Iterator
 
     from pla.errors import Location
     from pla.tomlfile import Section
 
-__all__ = ["ReadAndArray", "ReadOrArray", "read_and_array", "read_or_array"]
+__all__ = ["MAX_TERMS", "ReadAndArray", "ReadOrArray", "read_and_array", "read_or_array"]
 
 MAX_TERMS = 65_536
 _LINE = re.compile(r"([1-9][0-9]{0,5})('?)")
-_AND_LATER: Mapping[str, str] = {}
 
 
 @dataclass(frozen=True, slots=True)
@@ -57,7 +56,7 @@ class ReadAndArray:
 
     def _words(self, term: int, column: int) -> str:
         line = self.array.columns[column]
-        return f"AND row {term} column {column} ({f'line {line}' if line else 'no line'})"
+        return f"AND row {term} column {column} {f'for {line}' if line else 'with no line'}"
 
 
 @dataclass(frozen=True, slots=True)
@@ -74,7 +73,7 @@ class ReadOrArray:
                 self.array.fuses_of(term),
                 "OR",
                 lambda column, term=term: (  # type: ignore[misc]
-                    f"OR row {term} column {column} (pin {self.array.pins[column]})"
+                    f"OR row {term} column {column} for pin {self.array.pins[column]}"
                 ),
                 lambda term=term: _at_row(self.section, term),  # type: ignore[misc]
             )
@@ -96,7 +95,7 @@ def read_and_array(section: Section) -> ReadAndArray | None:
     known_keys(
         section,
         ["columns", "terms", "first_fuse", "term_step", "rows", "column_step"],
-        _AND_LATER,
+        {},
     )
     columns = _read_lines(section)
     terms = section.integer("terms", low=1, high=MAX_TERMS, required=True)
@@ -109,7 +108,10 @@ def read_and_array(section: Section) -> ReadAndArray | None:
 
 
 def read_or_array(section: Section, terms: int | None) -> ReadOrArray | None:
-    """The OR array of so many rows, or ``None`` if something in it is wrong."""
+    """The OR array of so many rows, or ``None`` if something in it is wrong.
+
+    `terms` is ``None`` if their number is not known; what is wrong with that is reported elsewhere.
+    """
     known_keys(section, ["columns", "first_fuse", "term_step", "rows", "column_step"], {})
     columns = _read_sums(section)
     rows = _read_rows(section, terms)

@@ -57,7 +57,11 @@ class ReadCell:
 
 def read_kinds(top: Section) -> list[ReadCell] | None:
     """The cells of all kinds, or ``None`` if something in them is wrong."""
-    kinds = top.section("kind", required=True)
+    if "kind" not in top:
+        hint = "add [kind.NAME]: bits, modes and cells of the outputs"
+        top.error("KEY-MISSING", "the file has no [kind.NAME]", None, hint)
+        return None
+    kinds = top.section("kind")
     if kinds is None:
         return None
     if not list(kinds):
@@ -80,8 +84,8 @@ def _read_kind(name: str, kind: Section) -> list[ReadCell] | None:
     bits = _read_bits(kind)
     modes = _read_modes(kind, bits)
     cells: list[ReadCell] = []
-    good = bits is not None and modes is not None
     sections = kind.sections("cells", required=True)
+    good = bits is not None and modes is not None and len(sections) == _listed(kind, "cells")
     if "cells" in kind and not sections and kind.data["cells"] == []:
         kind.error("KIND-EMPTY", f"{kind.title} has no cells", kind.at("cells"))
     for section in sections:
@@ -97,6 +101,11 @@ def _read_kind(name: str, kind: Section) -> list[ReadCell] | None:
         else:
             cells.append(ReadCell(Cell(pin, name, links, modes, bits), section))
     return cells if good and cells else None
+
+
+def _listed(kind: Section, key: str) -> int:
+    value = kind.data.get(key)
+    return len(value) if isinstance(value, list) else 0
 
 
 def _read_bits(kind: Section) -> tuple[str, ...] | None:
@@ -139,7 +148,7 @@ def _read_modes(kind: Section, bits: tuple[str, ...] | None) -> tuple[Mode, ...]
     if "modes" in kind and kind.data["modes"] == []:
         kind.error("KIND-EMPTY", f"{kind.title} has no modes", kind.at("modes"))
     modes: list[Mode] = []
-    good = bool(sections)
+    good = bool(sections) and len(sections) == _listed(kind, "modes")
     first: dict[str, Section] = {}
     for section in sections:
         mode = _read_mode(section, bits)
@@ -152,7 +161,7 @@ def _read_modes(kind: Section, bits: tuple[str, ...] | None) -> tuple[Mode, ...]
             section.error(
                 "MODE-TWICE",
                 f'two modes of {kind.title} have set = "{mode.set}": this one and the one '
-                f"on line {known.at('pin').line}",
+                f"on line {known.at('pin').line} of the file",
                 section.at("set") if "set" in section else section.where,
                 "each mode has states of its own",
             )

@@ -77,18 +77,20 @@ def check_fuses(
     used = sorted(chain.from_iterable(claim.fuses for claim in claims))
     if used == list(range(count)):
         return
+    before = len(diagnostics.found)
     _report_out_of_range(count, claims, at_count, diagnostics)
     _report_overlaps(claims, diagnostics)
     idle = sorted(set(range(count)).difference(used))
     if idle:
-        alone = len(idle) == 1
-        listed = spans(idle).split(", ")[0] if not alone else str(idle[0])
+        has, them = ("has", "it does nothing") if len(idle) == 1 else ("have", "they do nothing")
+        example = spans(idle).partition(",")[0]
         diagnostics.error(
             "FUSE-GAP",
-            f"{_number(idle, 'fuse')} {spans(idle)} of {count} {'has' if alone else 'have'} no use",
+            f"{len(idle)} of {count} fuses {has} no use: {spans(idle)}",
             at_count,
-            f"if {'it does' if alone else 'they do'} nothing, declare "
-            f'{"it" if alone else "them"}, as in spare = ["{listed}"]',
+            f'if {them}, say so, as in spare = ["{example}"]'
+            if len(diagnostics.found) == before
+            else "perhaps the other side of the wrong numbers that are shown as well",
         )
 
 
@@ -106,7 +108,7 @@ def _report_out_of_range(
         diagnostics.error(
             "FUSE-RANGE",
             f"fuse {claim.fuses[index]}, {claim.words(index)}, does not exist: fuses go from 0 to "
-            f"{count - 1}, as 'fuses'{_line(at_count)} says{_likewise(number[group] - 1)}",
+            f"{count - 1}, as 'fuses' says{_line(at_count)}{_likewise(number[group] - 1)}",
             claim.where(),
         )
 
@@ -144,28 +146,30 @@ def check_pins(
             diagnostics.error(
                 "PIN-RANGE",
                 f"pin {claim.pin}, {claim.role}, does not exist: pins go from 1 to {count}, "
-                f"as 'pins'{_line(at_count)} says",
+                f"as 'pins' says{_line(at_count)}",
                 claim.where(),
             )
             continue
         known = first.setdefault(claim.pin, claim)
         if known is not claim:
             one, other = sorted((known, claim), key=lambda c: _order(c.where()))
+            again = f"and {other.role}" if one.role != other.role else "and here again"
             diagnostics.error(
                 "PIN-TWICE",
-                f"pin {claim.pin} is {one.role}{_line(one.where())} and {other.role}",
+                f"pin {claim.pin} is {one.role}{_line(one.where())} {again}",
                 other.where(),
+                "a pin has one role",
             )
     idle = [pin for pin in range(1, count + 1) if pin not in first]
     if idle:
         has = "has" if len(idle) == 1 else "have"
+        shown = ", ".join(map(str, idle[:_SHOWN])) + (", …" if len(idle) > _SHOWN else "")
         diagnostics.error(
             "PIN-IDLE",
-            f"{_number(idle, 'pin')} {spans(idle)} of {count} {has} no role: "
-            "no column, no cell, no supply",
+            f"{len(idle)} of {count} pins {has} no role: {spans(idle)}; "
+            "expected an input column, a cell or a supply",
             at_count,
-            f"if nothing is connected there, say unconnected = "
-            f"[{', '.join(map(str, idle[:_SHOWN]))}{', …' if len(idle) > _SHOWN else ''}]",
+            f"if nothing is connected there, say unconnected = [{shown}]",
         )
 
 
@@ -241,11 +245,7 @@ def _order(at: Location) -> tuple[int, int]:
 
 
 def _line(at: Location) -> str:
-    return f" (line {at.line})" if at.line is not None else ""
-
-
-def _number(found: Sequence[int], noun: str) -> str:
-    return noun if len(found) == 1 else f"{len(found)} {noun}s:"
+    return f" (line {at.line} of the file)" if at.line is not None else ""
 
 
 def _likewise(more: int) -> str:

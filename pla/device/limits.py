@@ -67,7 +67,9 @@ CELL_LATER = {
 }
 
 
-def not_yet(section: Section, what: str, location: Location, found: str) -> None:
+def not_yet(
+    section: Section, what: str, location: Location, found: str, hint: str | None = None
+) -> None:
     """Report something that a device file may say but this version cannot use.
 
     `what` is the subject with its verb, such as ``registers are``.
@@ -76,7 +78,7 @@ def not_yet(section: Section, what: str, location: Location, found: str) -> None
         LATER,
         f"{found}: {what} not supported yet",
         location,
-        "this version plans for arrays with shared OR gates and combinational outputs",
+        hint or "this version plans for arrays with shared OR gates and combinational outputs",
     )
 
 

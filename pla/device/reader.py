@@ -5,7 +5,7 @@ from __future__ import annotations
 import re
 from typing import TYPE_CHECKING, Literal, cast
 
-from pla.device.arrays import read_and_array, read_or_array
+from pla.device.arrays import MAX_TERMS, read_and_array, read_or_array
 from pla.device.cells import read_kinds
 from pla.device.consistency import (
     FuseClaim,
@@ -74,10 +74,10 @@ def device_from(file: TomlFile) -> Device:
     ground = top.integer("ground", low=1, required=True)
     power = top.integer("power", low=1, required=True)
     unconnected = top.integers("unconnected", low=1) if "unconnected" in top else []
-    spare = top.ranges("spare", low=0, high=None if fuses is None else fuses - 1)
+    spare = _read_spare(top, fuses)
     links = _read_links(top)
     and_array = _read_and(top)
-    or_array = _read_or(top, and_array)
+    or_array = _read_or(top)
     cells = read_kinds(top)
 
     if any(d.code == LATER for d in diagnostics.found):
@@ -95,13 +95,12 @@ def device_from(file: TomlFile) -> Device:
         check_pins(pins, claims, top.at("pins"), diagnostics)
     if or_array and cells:
         check_sums(or_array.pin_claims(), [_cell_claim(c) for c in cells], diagnostics)
-    if fuses and and_array and or_array and cells and (spare is not None or "spare" not in top):
-        ranges = spare or []
-        _check_fuses(top, fuses, and_array, or_array, cells, ranges)
+    if fuses and and_array and or_array and cells and spare is not None:
+        _check_fuses(top, fuses, and_array, or_array, cells, spare)
     if and_array:
         _warn_of_single_lines(and_array, diagnostics)
     if not (name and technology and pins and fuses and ground and power) or not (
-        unconnected is not None and links and and_array and or_array and cells
+        unconnected is not None and spare is not None and links and and_array and or_array and cells
     ):
         diagnostics.stop_on_error()
         raise AssertionError("a missing part of a device was not reported")
@@ -118,7 +117,7 @@ def device_from(file: TomlFile) -> Device:
         and_array=and_array.array,
         or_array=or_array.array,
         cells=tuple(c.cell for c in cells),
-        spare=tuple(r for r, _ in spare or []),
+        spare=tuple(r for r, _ in spare),
         location=top.where,
         warnings=diagnostics.warnings,
     )
@@ -139,8 +138,41 @@ def _read_name(top: Section) -> str | None:
     return name
 
 
+def _read_spare(top: Section, fuses: int | None) -> list[tuple[range, Location]] | None:
+    """The spare fuses, without those that the device does not have; these are reported."""
+    if "spare" not in top:
+        return []
+    ranges = top.ranges("spare", low=0)
+    if ranges is None or fuses is None:
+        return None
+    for numbers, at in ranges:
+        if numbers[-1] >= fuses:
+            shown = f"{numbers[0]}..{numbers[-1]}" if len(numbers) > 1 else str(numbers[0])
+            top.error(
+                "FUSE-RANGE",
+                f"spare {shown} does not exist as a whole: fuses go from 0 to {fuses - 1}, "
+                f"as 'fuses' says (line {top.at('fuses').line} of the file)",
+                at,
+            )
+    return [(range(r.start, min(r.stop, fuses)), at) for r, at in ranges if r.start < fuses]
+
+
+def _table(top: Section, key: str, holds: str) -> Section | None:
+    if key not in top:
+        top.error("KEY-MISSING", f"the file has no [{key}]", None, f"add [{key}]: {holds}")
+        return None
+    return top.section(key)
+
+
+def _declared_terms(top: Section) -> int | None:
+    """The number of terms, even where the AND array is wrong in another way."""
+    section = top.data.get("and")
+    terms = section.get("terms") if isinstance(section, dict) else None
+    return terms if isinstance(terms, int) and 1 <= terms <= MAX_TERMS else None
+
+
 def _read_links(top: Section) -> Links | None:
-    section = top.section("links", required=True)
+    section = _table(top, "links", "blank, connected, unused_term")
     if section is None:
         return None
     known_keys(section, ["blank", "connected", "unused_term"], {})
@@ -166,18 +198,18 @@ def _read_links(top: Section) -> Links | None:
 
 
 def _read_and(top: Section) -> ReadAndArray | None:
-    section = top.section("and", required=True)
+    section = _table(top, "and", "the columns, number and fuses of the product terms")
     return None if section is None else read_and_array(section)
 
 
-def _read_or(top: Section, and_array: ReadAndArray | None) -> ReadOrArray | None:
+def _read_or(top: Section) -> ReadOrArray | None:
     if "or" not in top:
-        not_yet(top, OWN_TERMS, top.where, "the file has no [or]")
+        found = "the file has no [or]"
+        hint = "if the device has a shared OR array, add [or] with its columns and rows"
+        not_yet(top, OWN_TERMS, top.where, found, hint)
         return None
     section = top.section("or")
-    if section is None:
-        return None
-    return read_or_array(section, len(and_array.array.rows) if and_array else None)
+    return None if section is None else read_or_array(section, _declared_terms(top))
 
 
 def _unconnected_claims(top: Section, pins: list[int]) -> list[PinClaim]:
