@@ -280,7 +280,7 @@ def _legend(device: Device) -> Iterator[str]:
 
 def _links_of(cell: Cell) -> list[str]:
     return [
-        f"{bit} of pin {cell.pin} {fuse}".replace(" ", _KEEP)
+        f"pin {cell.pin} {bit}: {fuse}".replace(" ", _KEEP)
         for bit, fuse in zip(cell.bits, cell.links, strict=True)
     ]
 

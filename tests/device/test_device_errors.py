@@ -4,6 +4,8 @@
 from __future__ import annotations
 
 import pytest
+from hypothesis import given
+from hypothesis import strategies as st
 
 from pla.device.reader import device_from, read_device
 from pla.errors import InputError
@@ -63,6 +65,15 @@ def errors_of(text):
         f"{d.location.line}:{d.location.column} {d.code} {d.message}"
         for d in caught.value.diagnostics
     ]
+
+
+def refusal(text):
+    """The diagnostics with which a text is refused; ``None`` if it is taken."""
+    try:
+        device_from(parse_toml(text, "tiny.toml"))
+    except InputError as caught:
+        return caught.diagnostics
+    return None
 
 
 def test_the_file_that_the_cases_spoil_is_good():
@@ -859,3 +870,44 @@ def test_huge_ranges_are_refused_at_once():
         "8:10 FUSE-RANGE spare 34..99999999999999 does not exist as a whole: fuses go from 0 to "
         "35, as 'fuses' says (line 4 of the file)"
     ]
+
+
+ODD_VALUES = [
+    "true",
+    "1.5",
+    "-1",
+    '""',
+    '"x"',
+    "[]",
+    "[[]]",
+    "[{}]",
+    "{}",
+    "{ a = 1 }",
+    "1979-05-27",
+    "0",
+    str(10**30),
+]
+
+
+@pytest.mark.parametrize("odd", ODD_VALUES)
+def test_no_odd_value_gets_past_or_brings_the_reader_down(odd):
+    """Each value of the file in turn becomes something else; it is refused in words."""
+    lines = TINY.splitlines()
+    for number, line in enumerate(lines):
+        key, equals, value = line.partition(" = ")
+        if not equals or key.lstrip().startswith("{") or value in (odd, "["):
+            continue
+        text = "\n".join([*lines[:number], f"{key} = {odd}", *lines[number + 1 :]])
+        if (key, odd) in {("unconnected", "[]"), ("blank", "0"), ("bits", "[]")}:
+            continue
+        found = refusal(text)
+        if found is None:
+            assert (key, odd) == ("name", '"x"'), line
+        else:
+            assert all(d.location.line is not None for d in found)
+
+
+@given(st.integers(0, len(TINY) - 1), st.sampled_from("0123456789\"'[]{}=.,x \n#-"))
+def test_no_slip_of_a_key_brings_the_reader_down(position, character):
+    text = TINY[:position] + character + TINY[position + 1 :]
+    assert refusal(text) != ()

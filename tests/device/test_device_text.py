@@ -48,6 +48,12 @@ cells = [ { pin = 4 } ]
 """
 
 
+OR_AMONG_AND = """\
+columns = "4 5"
+rows = [8, 9, 20, 21]
+column_step = 2"""
+
+
 def small(technology="one-time", blank=0, connected=0, unused="blank"):
     text = (
         SMALL.replace("TECHNOLOGY", technology)
@@ -149,6 +155,37 @@ def test_fuses_of_an_array_laid_out_by_columns():
     ]
     assert fuse_table(device)[0] == ("0..7", "8", "lines 1 to 2', 2 fuses each")
     assert "0..6 by 2" in draw(device)
+
+
+def test_fuses_of_rows_that_alternate_are_one_list():
+    text = SMALL.replace("TECHNOLOGY", "one-time").replace("UNUSED", "blank")
+    text = text.replace("BLANK", "0").replace("CONNECTED", "0").replace("fuses = 10", "fuses = 20")
+    text = text.replace(
+        "terms = 2\nfirst_fuse = 0\nterm_step = 1", "terms = 4\nrows = [0, 1, 8, 9]"
+    )
+    text = text.replace("first_fuse = 8", "first_fuse = 16")
+    device = device_from(parse_toml(text, "alternate.toml"))
+    assert [(b.first, b.size, b.what) for b in device.blocks()] == [
+        (0, 16, "AND array"),
+        (16, 1, "OR links of term 0"),
+        (17, 1, "OR links of term 1"),
+        (18, 1, "OR links of term 2"),
+        (19, 1, "OR links of term 3"),
+    ]
+
+
+def test_arrays_that_alternate_are_one_list():
+    text = SMALL.replace("TECHNOLOGY", "one-time").replace("UNUSED", "blank")
+    text = text.replace("BLANK", "0").replace("CONNECTED", "0").replace("fuses = 10", "fuses = 24")
+    text = text.replace(
+        "terms = 2\nfirst_fuse = 0\nterm_step = 1", "terms = 4\nrows = [0, 1, 12, 13]"
+    )
+    text = text.replace('columns = "4"\nfirst_fuse = 8\nterm_step = 1', OR_AMONG_AND)
+    text = text.replace("unconnected = [5]\n", "").replace(
+        "{ pin = 4 }", "{ pin = 4 }, { pin = 5 }"
+    )
+    device = device_from(parse_toml(text, "alternate.toml"))
+    assert [(b.first, b.size, b.what) for b in device.blocks()] == [(0, 24, "AND and OR array")]
 
 
 def test_list_shows_every_device(capsys):
