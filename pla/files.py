@@ -6,7 +6,6 @@ import errno
 import os
 import shutil
 import sys
-import tempfile
 from pathlib import Path
 from typing import TYPE_CHECKING
 
@@ -105,11 +104,10 @@ def _create(target: Path, files: Mapping[str, bytes], order: Sequence[str]) -> N
     if not parent.is_dir():
         message = f"the folder {parent} in which it shall be made does not exist"
         raise _refused("NO-FOLDER", target, message, "make that folder first")
-    aside = Path(tempfile.mkdtemp(prefix=f".{place.name}.", dir=parent))
+    aside = _unused(parent, place.name)
     try:
+        aside.mkdir()
         _write_all(aside, files, order)
-        # A temporary folder is private; a result is as open as any folder that the user makes.
-        aside.chmod(0o777 & ~_umask())
         try:
             aside.rename(place)
         except OSError as problem:
@@ -129,10 +127,11 @@ def _exchange(
     target: Path, files: Mapping[str, bytes], order: Sequence[str], last: str | None
 ) -> None:
     # Within the target, so that it is on the same disk whatever is mounted where.
-    aside = Path(tempfile.mkdtemp(prefix=".fuseplan.", dir=target))
+    aside = _unused(target, "fuseplan")
     new, old = aside / "new", aside / "old"
     keep = False
     try:
+        aside.mkdir()
         new.mkdir()
         old.mkdir()
         _write_all(new, files, order)
@@ -161,6 +160,15 @@ def _exchange(
     finally:
         if not keep:
             shutil.rmtree(aside, ignore_errors=True)
+
+
+def _unused(parent: Path, stem: str) -> Path:
+    """A name that nothing has.
+
+    It is known before the folder is made, so that an interruption at any moment finds what to
+    remove.
+    """
+    return parent / f".{stem}.{os.urandom(8).hex()}"
 
 
 def _withdraw(target: Path, name: str, old: Path) -> None:
@@ -238,12 +246,6 @@ def _sync_folder(folder: Path) -> None:
             raise
     finally:
         os.close(handle)
-
-
-def _umask() -> int:
-    mask = os.umask(0o077)
-    os.umask(mask)
-    return mask
 
 
 def _reason(problem: BaseException) -> str:

@@ -72,7 +72,8 @@ def cut(raw: bytes, file: str) -> Frame:
 
     digits = _SUM.match(data, stop + 1) if has_end else _SUM_ALONE.match(data, closed)
     if not has_end:
-        stop = closed if digits else len(data.rstrip(b"\0\t\r\n \x1a"))
+        # A lost ETX stood right before the digits, behind the last line end.
+        stop = digits.start(1) if digits else len(data.rstrip(b"\0\t\r\n \x1a"))
     left = closed + len(_BEFORE_IDENTIFIER.match(data[closed:stop])[0])  # type: ignore[index]
     end_of_sum = digits.end(1) if digits else stop + has_end
     return Frame(

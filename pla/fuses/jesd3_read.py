@@ -191,15 +191,8 @@ def _check_fields(findings: Findings, frame: Frame) -> None:
     fields, data = frame.fields, frame.data
     close = fields[0].offset - 1
     for number, field in enumerate(fields):
-        between = data[close + 1 : field.offset]
+        _check_between(findings, data, close + 1, field.offset)
         close = field.body_offset + len(field.body)
-        if between.translate(None, WHITE):
-            findings.warning(
-                "STRAY-BYTES",
-                field.offset - len(between.lstrip(WHITE)),
-                None,
-                f"{shown(between.strip(WHITE))} between two fields means nothing and is ignored",
-            )
         identifier = field.identifier
         if number == 0 or identifier == "N":
             _check_text(findings, field, "N" if number else "design specification")
@@ -223,6 +216,16 @@ def _check_fields(findings: Findings, frame: Frame) -> None:
             if not pattern.fullmatch(field.body):
                 message = f"{shown(field.body)} found, {expected} expected; the field is ignored"
                 findings.warning("BAD-FIELD", field.body_offset, name_of(field), message)
+    _check_between(
+        findings, data, close + 1, frame.end if frame.unclosed is None else frame.unclosed
+    )
+
+
+def _check_between(findings: Findings, data: bytes, first: int, stop: int) -> None:
+    between = data[first:stop].lstrip(WHITE)
+    if between:
+        message = f"{shown(between.rstrip(WHITE))} outside all fields means nothing and is ignored"
+        findings.warning("STRAY-BYTES", stop - len(between), None, message)
 
 
 def _check_text(findings: Findings, field: Field, name: str) -> None:
