@@ -2,7 +2,9 @@
 
 from __future__ import annotations
 
+import re
 import textwrap
+from itertools import pairwise
 from typing import TYPE_CHECKING
 
 from tabulate import tabulate
@@ -191,37 +193,66 @@ def _place_of_cell(cell: Cell, column: int) -> str:
 
 def fuse_table(device: Device) -> list[tuple[str, str, str]]:
     """Fuse ranges in order of address: first and last, how many, what they do."""
-    groups: list[list[Block]] = []
+    units: list[list[Block]] = []
     for block in device.blocks():
-        if groups and _alike(groups[-1][-1], block):
-            groups[-1].append(block)
+        if block.what == "spare" and units and units[-1][-1].what != "spare":
+            units[-1].append(block)
         else:
-            groups.append([block])
-    return [_fuse_row(device, group) for group in groups]
+            units.append([block])
+    groups: list[list[list[Block]]] = []
+    for unit in units:
+        if groups and _continues(groups[-1], unit):
+            groups[-1].append(unit)
+        else:
+            groups.append([unit])
+    return [row for group in groups for row in _fuse_rows(device, group)]
 
 
-def _alike(one: Block, next_one: Block) -> bool:
-    """Whether two blocks that follow each other differ only in what is counted."""
-    stem, _, last = one.what.rpartition(" ")
-    next_stem, _, _ = next_one.what.rpartition(" ")
-    return bool(stem) and last != "array" and stem == next_stem and one.size == next_one.size
+def _continues(group: Sequence[Sequence[Block]], unit: Sequence[Block]) -> bool:
+    """Whether a block, with the spare fuses after it, goes on with the counting of a group."""
+    stems = [_counted(known[0].what) for known in (*group[-2:], unit)]
+    if not stems[-1][0] or len({stem for stem, _ in stems}) > 1:
+        return False
+    if [block.size for block in group[-1]] != [block.size for block in unit]:
+        return False
+    numbers = [int(number) for _, number in stems if number.isdigit()]
+    steps = {b - a for a, b in pairwise(numbers)}
+    return not stems[-1][0].endswith("term") or steps in ({1}, {-1})
 
 
-def _fuse_row(device: Device, group: Sequence[Block]) -> tuple[str, str, str]:
-    first, last = group[0], group[-1]
-    size = sum(block.size for block in group)
-    what = first.what
-    if len(group) > 1:
-        stem, _, counted = first.what.rpartition(" ")
-        plural = (
-            stem.replace("term", "terms")
-            .replace("line", "lines")
-            .replace("sum of pin", "sums of pins")
-        )
-        what = f"{plural} {counted} to {last.what.rpartition(' ')[2]}, {first.size} fuses each"
-    if first.what.startswith("term "):
-        ands, ors = len(device.and_array.columns), len(device.or_array.pins)
-        what += ": AND links" if first.size == ands else f": {ands} AND links, {ors} OR links"
+def _counted(what: str) -> tuple[str, str]:
+    """``OR links of term 3`` as its stem and its number; no stem where nothing is counted."""
+    stem, _, number = what.rpartition(" ")
+    return ("", "") if number == "array" else (stem, number)
+
+
+def _fuse_rows(device: Device, group: Sequence[Sequence[Block]]) -> Iterator[tuple[str, str, str]]:
+    if len(group) == 1:
+        for block in group[0]:
+            yield _fuse_row([block], block.what + _parts(device, block))
+        return
+    first, last = group[0][0], group[-1][0]
+    stem, number = _counted(first.what)
+    plural = re.sub(r"\b(term|line|sum|pin)\b", r"\1s", stem)
+    what = f"{plural} {number} to {_counted(last.what)[1]}, {_fuses(first.size)} each"
+    after = f"; {group[0][1].size} spare after each" if len(group[0]) > 1 else ""
+    yield _fuse_row([b for unit in group for b in unit], what + _parts(device, first) + after)
+
+
+def _fuses(number: int) -> str:
+    return "1 fuse" if number == 1 else f"{number} fuses"
+
+
+def _parts(device: Device, block: Block) -> str:
+    if not block.what.startswith("term "):
+        return ""
+    ands, ors = len(device.and_array.columns), len(device.or_array.pins)
+    return ": AND links" if block.size == ands else f": {ands} AND links, {ors} OR links"
+
+
+def _fuse_row(blocks: Sequence[Block], what: str) -> tuple[str, str, str]:
+    first, last = blocks[0], blocks[-1]
+    size = sum(block.size for block in blocks)
     return f"{first.first}..{last.first + last.size - 1}", str(size), what
 
 

@@ -157,6 +157,47 @@ def test_fuses_of_an_array_laid_out_by_columns():
     assert "0..6 by 2" in draw(device)
 
 
+@pytest.mark.parametrize(
+    ("rows", "table"),
+    [
+        pytest.param(
+            "rows = [0, 6, 12]",
+            [
+                ("0..17", "18", "terms 0 to 2, 4 fuses each: AND links; 2 spare after each"),
+                ("18..20", "3", "OR links of terms 0 to 2, 1 fuse each"),
+            ],
+            id="padded",
+        ),
+        pytest.param(
+            "rows = [12, 6, 0]",
+            [
+                ("0..17", "18", "terms 2 to 0, 4 fuses each: AND links; 2 spare after each"),
+                ("18..20", "3", "OR links of terms 0 to 2, 1 fuse each"),
+            ],
+            id="backwards",
+        ),
+        pytest.param(
+            "rows = [6, 0, 12]",
+            [
+                ("0..11", "12", "terms 1 to 0, 4 fuses each: AND links; 2 spare after each"),
+                ("12..15", "4", "term 2: AND links"),
+                ("16..17", "2", "spare"),
+                ("18..20", "3", "OR links of terms 0 to 2, 1 fuse each"),
+            ],
+            id="out-of-order",
+        ),
+    ],
+)
+def test_fuse_table_of_padded_rows(rows, table):
+    text = SMALL.replace("TECHNOLOGY", "one-time").replace("UNUSED", "blank")
+    text = text.replace("BLANK", "0").replace("CONNECTED", "0").replace("fuses = 10", "fuses = 21")
+    text = text.replace(
+        "terms = 2\nfirst_fuse = 0\nterm_step = 1\ncolumn_step = 2", f"terms = 3\n{rows}"
+    ).replace("first_fuse = 8", "first_fuse = 18")
+    text = text.replace("ground = 3", 'ground = 3\nspare = ["4..5", "10..11", "16..17"]')
+    assert fuse_table(device_from(parse_toml(text, "padded.toml"))) == table
+
+
 def test_fuses_of_rows_that_alternate_are_one_list():
     text = SMALL.replace("TECHNOLOGY", "one-time").replace("UNUSED", "blank")
     text = text.replace("BLANK", "0").replace("CONNECTED", "0").replace("fuses = 10", "fuses = 20")
