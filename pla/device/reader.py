@@ -17,7 +17,7 @@ from pla.device.consistency import (
 )
 from pla.device.limits import DROP, FEEDBACK, LATER, OWN_TERMS, TOP_LATER, known_keys, not_yet
 from pla.device.model import Device, Links
-from pla.errors import Diagnostics
+from pla.errors import Diagnostic, Diagnostics, InternalError
 from pla.tomlfile import Section, read_toml
 
 if TYPE_CHECKING:
@@ -84,15 +84,8 @@ def device_from(file: TomlFile) -> Device:
         # What is left out would show up as gaps and idle pins, which would only mislead.
         diagnostics.stop_on_error()
     if pins and ground and power and unconnected is not None and and_array and cells:
-        claims = [
-            PinClaim(ground, "ground", lambda: top.at("ground")),
-            PinClaim(power, "power", lambda: top.at("power")),
-            *_unconnected_claims(top, unconnected),
-            *_input_claims(and_array, cells),
-            *(cell.pin_claim() for cell in cells),
-        ]
-        _report_feedback(and_array, cells)
-        check_pins(pins, claims, top.at("pins"), diagnostics)
+        supplies = {"ground": ground, "power": power}
+        _check_pins(top, pins, supplies, unconnected, and_array, cells)
     if or_array and cells:
         check_sums(or_array.pin_claims(), [_cell_claim(c) for c in cells], diagnostics)
     if fuses and and_array and or_array and cells and spare is not None:
@@ -103,7 +96,8 @@ def device_from(file: TomlFile) -> Device:
         unconnected is not None and spare is not None and links and and_array and or_array and cells
     ):
         diagnostics.stop_on_error()
-        raise AssertionError("a missing part of a device was not reported")
+        fault = "a part of the device file is missing, and no error says so"
+        raise InternalError([Diagnostic("INTERNAL", fault, top.where)])
     device = Device(
         name=name,
         summary=summary,
@@ -210,6 +204,24 @@ def _read_or(top: Section) -> ReadOrArray | None:
         return None
     section = top.section("or")
     return None if section is None else read_or_array(section, _declared_terms(top))
+
+
+def _check_pins(
+    top: Section,
+    pins: int,
+    supplies: dict[str, int],
+    unconnected: list[int],
+    and_array: ReadAndArray,
+    cells: list[ReadCell],
+) -> None:
+    claims = [
+        *(PinClaim(pin, key, lambda key=key: top.at(key)) for key, pin in supplies.items()),  # type: ignore[misc]
+        *_unconnected_claims(top, unconnected),
+        *_input_claims(and_array, cells),
+        *(cell.pin_claim() for cell in cells),
+    ]
+    _report_feedback(and_array, cells)
+    check_pins(pins, claims, top.at("pins"), top.diagnostics)
 
 
 def _unconnected_claims(top: Section, pins: list[int]) -> list[PinClaim]:
