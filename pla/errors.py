@@ -20,6 +20,7 @@ __all__ = [
     "InternalError",
     "Location",
     "RefusalError",
+    "by_place",
 ]
 
 Severity = Literal["error", "warning"]
@@ -150,10 +151,11 @@ class Diagnostics:
             InputError: If at least one error was collected.
         """
         if self.errors:
-            raise InputError(sorted(self.errors, key=_place))
+            raise InputError(sorted(self.errors, key=by_place))
 
 
-def _place(diagnostic: Diagnostic) -> tuple[str, int, int]:
+def by_place(diagnostic: Diagnostic) -> tuple[str, int, int]:
+    """Sorts diagnostics by file, line and column."""
     at = diagnostic.location
     if at is None:
         return ("", 0, 0)

@@ -38,10 +38,12 @@ class Row:
     Attributes:
         values: What the outputs do.
         place: Where it stands; called only to report something.
+        is_written: A user wrote it; otherwise it follows from something else.
     """
 
     values: Values
     place: Callable[[], Location]
+    is_written: bool = True
 
 
 @dataclass(frozen=True, slots=True)
@@ -75,6 +77,7 @@ class Listing:
         others: Values of the possible inputs not listed.
         reasons: What makes a don't care of a row, and of `others`.
         others_key: How the user says what the others are.
+        conflict_hint: How to mend two rows that contradict each other.
     """
 
     where: Location
@@ -88,6 +91,7 @@ class Listing:
     others: Values | None
     reasons: tuple[Reason, Reason]
     others_key: str
+    conflict_hint: str | None = None
 
 
 @dataclass(slots=True)
@@ -116,6 +120,7 @@ class ListingBuilder:
         others: Values | None,
         reasons: tuple[Reason, Reason],
         others_key: str,
+        conflict_hint: str | None = None,
     ) -> Listing:
         return Listing(
             where=where,
@@ -129,6 +134,7 @@ class ListingBuilder:
             others=others,
             reasons=reasons,
             others_key=others_key,
+            conflict_hint=conflict_hint,
         )
 
 
@@ -207,7 +213,11 @@ def _warn_of_idle_rows(
     alive[owner] = True
     listed = np.zeros(len(listing.rows), dtype=bool)
     listed[listing.owner] = True
-    idle = [i for i in np.flatnonzero(listed & ~alive) if any(listing.rows[i].values[:2])]
+    idle = [
+        i
+        for i in np.flatnonzero(listed & ~alive)
+        if listing.rows[i].is_written and any(listing.rows[i].values[:2])
+    ]
     for index in idle[:_MOST_SHOWN]:
         diagnostics.warning(
             "ROW-IMPOSSIBLE",
@@ -251,7 +261,7 @@ def _report_conflicts(
             f"{signals.output_names[differ]!r} gets two values for {example}: {shown[1]} from this "
             f"{listing.what}, {shown[0]} from the {listing.what} at {earlier}",
             listing.rows[second].place(),
-            f"the other is: {source}" if source else None,
+            listing.conflict_hint or (f"the other is: {source}" if source else None),
         )
     return not conflicts
 

@@ -23,6 +23,7 @@ __all__ = [
     "intersection",
     "is_tautology",
     "size",
+    "support",
     "union",
 ]
 
@@ -83,6 +84,11 @@ def difference(a: Cover, b: Cover) -> Cover:
 def complement(cover: Cover) -> Cover:
     """Cubes whose union is every input combination outside `cover`."""
     return _complement(cover.feeding(1).absorbed())
+
+
+def support(*covers: Cover) -> int:
+    """Mask of the inputs that any cube has a literal of."""
+    return points.support(*covers)
 
 
 def size(cover: Cover) -> int:

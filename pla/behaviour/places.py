@@ -1,0 +1,60 @@
+"""Reading ``[place.DEVICE]``: pins that are decided beforehand."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+from pla.behaviour.model import Place
+from pla.behaviour.problem import Problem
+
+if TYPE_CHECKING:
+    from pla.behaviour.signals import Signals
+    from pla.tomlfile import Section
+
+__all__ = ["read_places"]
+
+
+def read_places(section: Section | None, signals: Signals) -> dict[str, tuple[Place, ...]]:
+    """The pins for each device; what is wrong goes to the section's diagnostics."""
+    found: dict[str, tuple[Place, ...]] = {}
+    for device in section or ():
+        table = section.section(device) if section is not None else None
+        if table is not None:
+            found[device] = _read_device(table, signals)
+    return found
+
+
+def _read_device(table: Section, signals: Signals) -> tuple[Place, ...]:
+    places: list[Place] = []
+    pins: dict[int, str] = {}
+    for name in table:
+        at = table.key_at(name)
+        try:
+            field = signals.find(name)
+        except Problem as problem:
+            if not problem.known:
+                table.error(problem.code, problem.message, at, problem.hint)
+            continue
+        if not field.is_bit:
+            bus = name.partition("[")[0]
+            table.error(
+                "BUS-AS-BIT",
+                f"{name!r} has {field.width} bits, expected one bit for one pin",
+                at,
+                f'give each bit a pin: "{bus}[0]" = …',
+            )
+            continue
+        pin = table.integer(name, low=1)
+        if pin is None:
+            continue
+        if pin in pins:
+            table.error(
+                "PIN-TWICE",
+                f"pin {pin} is given to {name} and to {pins[pin]}",
+                table.at(name),
+                "each pin carries one signal",
+            )
+            continue
+        pins[pin] = name
+        places.append(Place(name, pin, at))
+    return tuple(places)

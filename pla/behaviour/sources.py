@@ -1,0 +1,170 @@
+"""Where the rows of a truth table come from: text in the design file, or a CSV file."""
+
+from __future__ import annotations
+
+import csv
+import re
+from dataclasses import dataclass
+from typing import TYPE_CHECKING, Protocol
+
+from pla.errors import Diagnostic, InputError, Location
+
+if TYPE_CHECKING:
+    from collections.abc import Callable
+
+    from pla.textfile import SourceText
+
+__all__ = ["CsvRows", "InlineRows", "RowSource", "read_csv", "read_inline"]
+
+_CELL = re.compile(r"[^\s|]+")
+
+
+class RowSource(Protocol):
+    """Cells in rows, and their places."""
+
+    @property
+    def header(self) -> list[list[str]]:
+        """The column names, in groups that bars part; one group if there are no bars."""
+
+    @property
+    def rows(self) -> list[list[list[str]]]:
+        """The cells of each row, in groups likewise."""
+
+    @property
+    def has_bars(self) -> bool:
+        """Whether groups mean something."""
+
+    def at(self, row: int, cell: int) -> Location:
+        """The place of a cell, counted over all groups; row -1 is the header.
+
+        Past the last cell it is the end of the row.
+        """
+
+
+@dataclass(frozen=True, slots=True)
+class InlineRows:
+    """A table in a string: columns parted by blanks, inputs and outputs by a bar.
+
+    Attributes:
+        header: See `RowSource`.
+        rows: See `RowSource`.
+        lines: (offset, text) of the header's line and of each row's.
+        place: The place of a character of the string.
+    """
+
+    header: list[list[str]]
+    rows: list[list[list[str]]]
+    lines: list[tuple[int, str]]
+    place: Callable[[int], Location]
+    has_bars: bool = True
+
+    def at(self, row: int, cell: int) -> Location:
+        offset, text = self.lines[row + 1]
+        starts = [found.start() for found in _CELL.finditer(text)]
+        return self.place(offset + (starts[cell] if cell < len(starts) else len(text.rstrip())))
+
+
+@dataclass(frozen=True, slots=True)
+class CsvRows:
+    """A CSV file.
+
+    Attributes:
+        header: See `RowSource`.
+        rows: See `RowSource`.
+        lines: 1-based line on which the header and each row start.
+        source: The text of the file.
+        separator: ``,`` or ``;``.
+    """
+
+    header: list[list[str]]
+    rows: list[list[list[str]]]
+    lines: list[int]
+    source: SourceText
+    separator: str
+    has_bars: bool = False
+
+    def at(self, row: int, cell: int) -> Location:
+        line = self.lines[row + 1]
+        text = "\n".join(self.source.lines[line - 1 :])
+        start = quoted = count = 0
+        for offset, sign in enumerate(text):
+            if sign == '"':
+                quoted = not quoted
+            elif not quoted and sign == self.separator and count < cell:
+                count, start = count + 1, offset + 1
+            elif not quoted and sign == "\n":
+                text = text[:offset]
+                break
+        if count < cell:
+            start = len(text)
+        else:
+            while text[start : start + 1] in (" ", "\t"):
+                start += 1
+        before = text[:start]
+        column = start - (before.rfind("\n") + 1) + 1
+        return self.source.location_of(line + before.count("\n"), column)
+
+
+def read_inline(text: str, place: Callable[[int], Location]) -> InlineRows:
+    """The rows of a table in a string; blank lines are left out.
+
+    Raises:
+        InputError: If there is nothing in it.
+    """
+    lines: list[tuple[int, str]] = []
+    offset = 0
+    for line in text.split("\n"):
+        if line.strip():
+            lines.append((offset, line))
+        offset += len(line) + 1
+    cells = [[_CELL.findall(group) for group in line.split("|")] for _, line in lines]
+    if not cells:
+        raise InputError([_empty(place(0))])
+    return InlineRows(cells[0], cells[1:], lines, place)
+
+
+def read_csv(source: SourceText) -> CsvRows:
+    """The rows of a CSV file as spreadsheets save it: comma or semicolon, quotes.
+
+    Empty rows, and empty cells behind the last column, are left out.
+
+    Raises:
+        InputError: If there is nothing in it, or quotes do not match.
+    """
+    first = next((line for line in source.lines if line.strip(" \t,;")), "")
+    bare = re.sub(r'"[^"]*"', "", first)
+    separator = ";" if ";" in bare else ","
+    if ";" in bare and "," in bare:
+        at = source.location_of(source.lines.index(first) + 1, 1)
+        message = "the header has commas and semicolons, expected one kind of separator"
+        raise InputError([Diagnostic("CSV-SEPARATOR", message, at)])
+    reader = csv.reader(source.text.split("\n"), delimiter=separator, strict=True)
+    rows: list[list[str]] = []
+    lines: list[int] = []
+    before = 0
+    try:
+        for row in reader:
+            cells = [cell.strip() for cell in row]
+            if any(cells):
+                rows.append(cells)
+                lines.append(before + 1)
+            before = reader.line_num
+    except csv.Error as fault:
+        at = source.location_of(min(before + 1, len(source.lines)), 1)
+        message = f"not CSV: {fault}"
+        hint = "a cell in quotes ends with a quote in front of the next separator"
+        raise InputError([Diagnostic("CSV-SYNTAX", message, at, hint)]) from None
+    if not rows:
+        raise InputError([_empty(source.location(0))])
+    width = len(rows[0])
+    while not rows[0][width - 1]:
+        width -= 1
+    for row in rows:
+        while len(row) > width and not row[-1]:
+            row.pop()
+    return CsvRows([rows[0]], [[row] for row in rows[1:]], lines, source, separator)
+
+
+def _empty(at: Location) -> Diagnostic:
+    hint = "the first row names the columns, inputs before outputs"
+    return Diagnostic("TABLE-EMPTY", "the table is empty, expected a header and rows", at, hint)
