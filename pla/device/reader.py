@@ -113,11 +113,16 @@ def device_from(file: TomlFile) -> Device:
         cells=tuple(c.cell for c in cells),
         spare=tuple(r for r, _ in spare),
         location=top.where,
-        warnings=diagnostics.warnings,
+        warnings=tuple(sorted(diagnostics.warnings, key=_place)),
     )
     check_rows(device, top.file.at(("links", "unused_term")), diagnostics)
     diagnostics.stop_on_error()
     return device
+
+
+def _place(diagnostic: Diagnostic) -> tuple[int, int]:
+    at = diagnostic.location
+    return (at.line or 0, at.column or 0) if at else (0, 0)
 
 
 def _read_name(top: Section) -> str | None:

@@ -810,6 +810,15 @@ WARNINGS = [
         ['29:58 MODE-SAME modes "0" and "1" of [kind.out] do the same: the pin shows sum'],
         id="same-mode",
     ),
+    pytest.param(
+        [('"sum\'"', '"sum"'), ("1 1' 2 2' 5 5'", "1 1' 2 . 5 .")],
+        [
+            "16:17 LINE-SINGLE pin 2 has a true line but no complement line: a term can ask only for the pin high",
+            "16:21 LINE-SINGLE pin 5 has a true line but no complement line: a term can ask only for the pin high",
+            '29:58 MODE-SAME modes "0" and "1" of [kind.out] do the same: the pin shows sum',
+        ],
+        id="several-in-order",
+    ),
 ]
 
 
