@@ -11,6 +11,7 @@ import numpy as np
 from pla.fuses.fusemap import FuseMap
 from pla.fuses.jesd3_model import MAX_FUSES
 from pla.fuses.jesd3_values import (
+    BEYOND,
     WHITE,
     bit,
     decimal,
@@ -182,7 +183,7 @@ def _place(
     if end > size:
         beyond = max(size - first, 0)
         # An address with more digits than any device has is not worth repeating.
-        missing = f"fuse {first + beyond}" if first < 10**9 else "a fuse past 999999999"
+        missing = f"fuse {first + beyond}" if first < BEYOND else "a fuse past 999999999"
         findings.error(
             "NO-SUCH-FUSE",
             read.offset_of(beyond) if beyond else field.offset,

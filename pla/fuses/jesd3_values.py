@@ -12,9 +12,11 @@ if TYPE_CHECKING:
     from pla.fuses.jesd3_model import Field
 
 __all__ = [
+    "BEYOND",
     "WHITE",
     "as_number",
     "bit",
+    "count",
     "decimal",
     "name_of",
     "numbered_list",
@@ -25,7 +27,8 @@ __all__ = [
 
 WHITE = b" \t\r\n"
 _NUMBER = re.compile(rb"[ \t\r\n]*([0-9]+)")
-_BEYOND = 10**9
+BEYOND = 10**9
+"""Stands for every number that is larger: no count or address of a real file gets there."""
 
 
 def name_of(field: Field) -> str:
@@ -46,7 +49,7 @@ def shown(octets: bytes) -> str:
 def as_number(digits: bytes) -> int:
     """The value of decimal digits; everything from 10^9 on is 10^9, so that length is no attack."""
     significant = digits.lstrip(b"0")
-    return int(significant or b"0") if len(significant) <= 9 else _BEYOND
+    return int(significant or b"0") if len(significant) <= 9 else BEYOND
 
 
 def word(
@@ -72,8 +75,21 @@ _BIT = re.compile(rb"[01]")
 
 
 def decimal(findings: Findings, field: Field) -> int | None:
+    """A number that the caller bounds: it may be `BEYOND`."""
     value = word(findings, field, _DECIMAL, "a decimal number")
     return None if value is None else as_number(value)
+
+
+def count(findings: Findings, field: Field, least: int = 1) -> int | None:
+    """A number that a device or a test can have."""
+    value = decimal(findings, field)
+    if value is None or least <= value < BEYOND:
+        return value
+    message = (
+        f"{shown(field.body.strip(WHITE))} found, a number from {least} to {BEYOND - 1} expected"
+    )
+    findings.error("BAD-VALUE", field.body_offset, name_of(field), message)
+    return None
 
 
 def bit(findings: Findings, field: Field) -> int | None:

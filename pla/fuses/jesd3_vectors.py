@@ -9,9 +9,10 @@ from typing import TYPE_CHECKING
 
 from pla.fuses.jesd3_model import CONDITIONS, Vector
 from pla.fuses.jesd3_values import (
+    BEYOND,
     WHITE,
     as_number,
-    decimal,
+    count,
     name_of,
     numbered_list,
     single,
@@ -49,8 +50,8 @@ class Tests:
 
 def read_tests(findings: Findings, fields: Sequence[Field]) -> Tests:
     """The test vectors in the order in which they are applied."""
-    said = single(findings, fields, "QP", decimal)
-    limit = single(findings, fields, "QV", decimal)
+    said = single(findings, fields, "QP", count)
+    limit = single(findings, fields, "QV", _limit)
     pins = said[0] if said else None
     written = [field for field in fields if field.identifier == "V"]
     width = pins
@@ -60,6 +61,10 @@ def read_tests(findings: Findings, fields: Sequence[Field]) -> Tests:
         if parts is None:
             continue
         number, text, offset = parts
+        if number == BEYOND:
+            message = f"the vector's number is larger than {BEYOND - 1}"
+            findings.error("BAD-NUMBER", field.body_offset, "V", message)
+            continue
         conditions = text.translate(None, WHITE).decode("ascii")
         if width is None:
             width = len(conditions)
@@ -90,6 +95,11 @@ def read_tests(findings: Findings, fields: Sequence[Field]) -> Tests:
     _check_numbers(findings, kept, limit[0] if limit else None)
     order = _pin_order(findings, fields, written, width)
     return Tests(pins, limit[0] if limit else None, order, tuple(kept[n][0] for n in sorted(kept)))
+
+
+def _limit(findings: Findings, field: Field) -> int | None:
+    """QV; 0 is a lawful way to say that there are no vectors."""
+    return count(findings, field, least=0)
 
 
 def _check_numbers(
@@ -147,8 +157,9 @@ def _pin_order(
             )
         elif twice:
             findings.error("PIN-SEQUENCE", field.offset, "P", f"pin {twice[0]} stands here twice")
-        elif 0 in pins:
-            findings.error("PIN-SEQUENCE", field.offset, "P", "pin 0 found; pins count from 1")
+        elif not all(1 <= pin < BEYOND for pin in pins):
+            message = f"pins count from 1, to {BEYOND - 1} at most"
+            findings.error("PIN-SEQUENCE", field.offset, "P", message)
         else:
             order = pins
     return order

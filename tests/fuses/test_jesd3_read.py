@@ -506,6 +506,27 @@ ERRORS = [
         id="no condition",
     ),
     pytest.param(
+        b"\x02x*QP0*QF1*F0*\x030000",
+        "BAD-VALUE",
+        (1, 6),
+        "'0' found, a number from 1 to 999999999 expected",
+        id="QP0",
+    ),
+    pytest.param(
+        b"\x02x*QV12345678901*QF1*F0*\x030000",
+        "BAD-VALUE",
+        (1, 6),
+        "'12345678901' found, a number from 0",
+        id="QV without end",
+    ),
+    pytest.param(
+        b"\x02x*QP2*QF1*F0*V12345678901 01*\x030000",
+        "BAD-NUMBER",
+        (1, 16),
+        "number is larger than 999999999",
+        id="vector number without end",
+    ),
+    pytest.param(
         b"\x02x*QP2*QF1*F0*V 01*\x030000",
         "EMPTY-LIST",
         (1, 15),
@@ -540,7 +561,7 @@ ERRORS = [
         id="P too long",
     ),
     pytest.param(
-        b"\x02x*QP2*QF1*F0*P 0 1*\x030000", "PIN-SEQUENCE", (1, 15), "pin 0 found", id="pin 0"
+        b"\x02x*QP2*QF1*F0*P 0 1*\x030000", "PIN-SEQUENCE", (1, 15), "pins count from 1", id="pin 0"
     ),
     pytest.param(
         b"\x02x*QP2*QF1*F0*P 1 2*P 2 1*\x030000",
