@@ -3,12 +3,13 @@
 from __future__ import annotations
 
 from bisect import bisect_right
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from functools import cached_property
 
 from pla.errors import Diagnostic, InputError, Location
+from pla.files import read_bytes
 
-__all__ = ["SourceText", "read_bytes", "read_text"]
+__all__ = ["SourceText", "read_text"]
 
 
 @dataclass(frozen=True)
@@ -46,30 +47,6 @@ class SourceText:
         return Location(self.file, line, column, source)
 
 
-def read_bytes(path: str, *, named_at: Location | None = None) -> bytes:
-    """Everything in a file.
-
-    Args:
-        path: Where it is.
-        named_at: The place that names this file, if another file does.
-
-    Raises:
-        InputError: If it does not exist, is a folder, or cannot be read.
-    """
-    at = named_at or Location(path)
-    try:
-        with open(path, "rb") as stream:  # noqa: PTH123 - the name is kept as the user gave it
-            return stream.read()
-    except FileNotFoundError:
-        problem = Diagnostic("FILE-MISSING", f"there is no file {path!r}", at)
-    except IsADirectoryError:
-        problem = Diagnostic("FILE-IS-FOLDER", f"{path!r} is a folder, expected a file", at)
-    except (OSError, ValueError) as fault:
-        reason = getattr(fault, "strerror", None) or str(fault)
-        problem = Diagnostic("FILE-UNREADABLE", f"{path!r} cannot be read: {reason}", at)
-    raise InputError([problem])
-
-
 def read_text(path: str, *, named_at: Location | None = None) -> SourceText:
     """The text of a UTF-8 file; a byte-order mark and CR LF line ends are accepted.
 
@@ -80,7 +57,14 @@ def read_text(path: str, *, named_at: Location | None = None) -> SourceText:
     Raises:
         InputError: If it cannot be read or is not UTF-8.
     """
-    raw = read_bytes(path, named_at=named_at)
+    try:
+        raw = read_bytes(path)
+    except InputError as fault:
+        if named_at is None:
+            raise
+        raise InputError(
+            replace(d, message=f"{path}: {d.message}", location=named_at) for d in fault.diagnostics
+        ) from None
     try:
         text = raw.decode("utf-8-sig")
     except UnicodeDecodeError as fault:

@@ -1,0 +1,104 @@
+"""What a design asks for, for people."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+from pla.report.behaviour_counts import OutputCounts, count_outputs
+
+if TYPE_CHECKING:
+    from collections.abc import Iterator, Sequence
+
+    from pla.behaviour.model import Behaviour, Input, Output
+
+__all__ = ["behaviour_text"]
+
+_FORMS = {
+    "cases": "table",
+    "minterms": "minterm list",
+    "logic": "equation",
+    "address_map": "address map",
+}
+_REASONS = {
+    "never": "impossible",
+    "others": "others",
+    "x": "rows with x",
+    "dont_care": "dont_care",
+    "elsewhere": "elsewhere",
+}
+
+
+def behaviour_text(behaviour: Behaviour) -> str:
+    """Title, signals, and for each output how many input combinations ask for what."""
+    from tabulate import tabulate  # noqa: PLC0415 - slow to import
+
+    title = behaviour.name
+    if behaviour.revision:
+        title += f", revision {behaviour.revision}"
+    counts = count_outputs(behaviour)
+    rows = [
+        [
+            output.name,
+            f"{_FORMS[output.form]}, line {output.described.line}",
+            *_shares(count),
+            ", ".join(_sources(count)),
+        ]
+        for output, count in zip(behaviour.outputs, counts, strict=True)
+    ]
+    header = ["output", "described by", "1", "0", "free", "of", "why free"]
+    table = tabulate(
+        rows,
+        header,
+        tablefmt="simple",
+        disable_numparse=True,
+        colalign=["left", "left", "right", "right", "right", "right", "left"],
+    )
+    lines = [
+        title,
+        "",
+        f"  inputs   {len(behaviour.inputs):>2}  {_signals(behaviour.inputs)}",
+        f"  outputs  {len(behaviour.outputs):>2}  {_signals(behaviour.outputs)}",
+        "",
+        f"Input combinations that ask for 1, for 0 and for nothing, of {counts[0].total} in all;",
+        "each row is reduced to the smallest power of two that shows it exactly.",
+        "",
+        *(line.rstrip() for line in table.split("\n")),
+        "",
+        "No errors." if not behaviour.warnings else f"No errors, {_warnings(behaviour)}.",
+    ]
+    return "\n".join(lines)
+
+
+def _warnings(behaviour: Behaviour) -> str:
+    count = len(behaviour.warnings)
+    return "1 warning" if count == 1 else f"{count} warnings"
+
+
+def _shares(count: OutputCounts) -> Iterator[str]:
+    numbers = [count.one, count.zero, count.free, count.total]
+    while not any(number & 1 for number in numbers):
+        numbers = [number >> 1 for number in numbers]
+    return map(str, numbers)
+
+
+def _sources(count: OutputCounts) -> Iterator[str]:
+    for reason, size in count.reasons:
+        top, bottom = size, count.total
+        while not (top | bottom) & 1:
+            top, bottom = top >> 1, bottom >> 1
+        yield f"{_REASONS[reason]} {top}/{bottom}"
+
+
+def _signals(bits: Sequence[Input | Output]) -> str:
+    """Names in order, the bits of a bus as one."""
+    shown: list[str] = []
+    groups: dict[str, list[Input | Output]] = {}
+    for bit in bits:
+        groups.setdefault(bit.name.partition("[")[0], []).append(bit)
+    for name, group in groups.items():
+        first, last = group[0].name, group[-1].name
+        text = first
+        if len(group) > 1:
+            text = f"{name}[{first[len(name) + 1 : -1]}:{last[len(name) + 1 : -1]}]"
+        shown.append(f"{text} (active low)" if group[0].active_low else text)
+    return ", ".join(shown)
