@@ -203,6 +203,34 @@ def test_disk_that_stays_broken_never_mixes(tmp_path, monkeypatch):
     assert codes == {"CANNOT-WRITE", "HALF-WRITTEN"}
 
 
+@pytest.mark.parametrize("second", [OSError(errno.EIO, "I/O error"), KeyboardInterrupt()], ids=repr)
+def test_fault_while_undoing_a_fault_loses_nothing(tmp_path, monkeypatch, second):
+    """At the last step all is in place; then each step of the undoing fails in its turn."""
+    calls = calls_of(tmp_path, force=True)
+    stopped = 0
+    for later in range(1, 8):
+        target = tmp_path / f"out{later}"
+        fill(target)
+        with monkeypatch.context() as patch:
+            Fault(patch, calls, OSError(errno.EIO, "I/O error"))
+            Fault(patch, calls + later, second)
+            with pytest.raises((InputError, KeyboardInterrupt)):
+                write_folder(str(target), NEW, "dryer.jed", force=True)
+        left = contents(target)
+        asides = [name for name, data in left.items() if data is None]
+        if not asides:
+            assert left == OLD
+            continue
+        stopped += 1
+        kept = contents(target / asides[0] / "old")
+        for name in ("dryer.jed", "report.md"):
+            assert OLD[name] in (left.get(name), kept.get(name)), later
+        if "dryer.jed" in left:
+            complete = NEW if left["dryer.jed"] == NEW["dryer.jed"] else OLD
+            assert all(left[name] == data for name, data in complete.items()), later
+    assert stopped >= 5
+
+
 def test_disk_full_while_writing(tmp_path, monkeypatch):
     class Full(io.BytesIO):
         def write(self, _data):
