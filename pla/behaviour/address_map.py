@@ -98,9 +98,11 @@ def _read_selects(
     table = section.section("select", required=True)
     outputs: list[Field] = []
     selects: list[Select] = []
+    claims.incomplete |= table is None
     if table is None:
         return outputs, selects
     if not table.data:
+        claims.incomplete = True
         table.error("SELECT-EMPTY", "'select' names no output")
     for name in table:
         output = one_output(table, name, signals, claims, "address_map")

@@ -37,6 +37,7 @@ def read_cases(section: Section, signals: Signals, claims: Claims) -> Descriptio
     section.unknown_keys(("rows", "file", *refused))
     source = _source(section)
     if source is None:
+        claims.incomplete = True
         return None
     table = _Table(source, signals, diagnostics)
     table.read_header(claims)
@@ -44,11 +45,10 @@ def read_cases(section: Section, signals: Signals, claims: Claims) -> Descriptio
         table.read_rows()
     if len(diagnostics.errors) > before:
         return None
-    listing = table.listing()
     return Description(
         outputs=tuple(bit for f in table.outputs for bit in f.bits if bit is not None),
         needs={},
-        solve=lambda never, _: resolve(listing, never, signals, diagnostics),
+        solve=lambda never, _: resolve(table.listing(), never, signals, diagnostics),
     )
 
 
@@ -111,17 +111,18 @@ class _Table:
             try:
                 column = self.column(name)
             except Problem as problem:
+                claims.incomplete = True
                 self.error(problem, -1, index)
                 continue
-            for bit in column.bits:
-                if bit is not None and seen.setdefault((column.role, bit), name) is not name:
-                    earlier = seen[column.role, bit]
-                    text = f"the column {name!r} shares bits with the column {earlier!r}"
-                    self.error(Problem("COLUMN-TWICE", text), -1, index)
-                    break
-            if names.index(name) < index:
-                text = f"the column {name!r} stands twice"
+            keys = [(column.role, bit) for bit in column.bits if bit is not None]
+            earlier = next((seen[key] for key in keys if key in seen), None)
+            if earlier is not None:
+                text = f"the column {name!r} shares bits with the column {earlier!r}"
+                if earlier == name:
+                    text = f"the column {name!r} stands twice"
                 self.error(Problem("COLUMN-TWICE", text), -1, index)
+                continue
+            seen |= dict.fromkeys(keys, name)
             if column.role == "output":
                 claims.claim(column, self.source.at(-1, index), "cases")
                 self.outputs.append(column)
@@ -134,6 +135,7 @@ class _Table:
             return
         for role, columns in (("input", self.inputs), ("output", self.outputs)):
             if not columns:
+                claims.incomplete = True
                 example = "such as: step | fan" if self.source.has_bars else "such as: step,fan"
                 text = f"the header names no {role}"
                 self.error(Problem("HEADER", text, example), -1, len(names))
@@ -183,14 +185,11 @@ class _Table:
             return False
         if [len(group) for group in groups] != sizes:
             text = f"the bars part the row otherwise than the header: {self.show_header()}"
-            at = next(
-                (
-                    sum(sizes[: i + 1])
-                    for i, (group, size) in enumerate(zip(groups, sizes, strict=False))
-                    if len(group) != size
-                ),
-                0,
-            )
+            at = 0
+            for group, size in zip(groups, sizes, strict=False):
+                at += min(len(group), size)
+                if len(group) != size:
+                    break
             self.error(Problem("ROW-BARS", text), row, min(at, len(cells) - 1))
             return False
         return True
@@ -203,7 +202,9 @@ class _Table:
     def input_cubes(
         self, row: int, cells: list[str], caches: list[dict[str, list[Masks]]], warned: set[int]
     ) -> list[Masks] | None:
-        cubes: list[Masks] | None = [(0, 0)]
+        fixed_ones = fixed_zeros = 0
+        several: list[list[Masks]] = []
+        count = 1
         for index, (column, cache) in enumerate(zip(self.inputs, caches, strict=True)):
             text = cells[index]
             masks = cache.get(text)
@@ -212,21 +213,25 @@ class _Table:
                     masks = cache[text] = input_cell(column, self.filled(text, column))
                 except Problem as problem:
                     self.error(problem, row, index)
-                    cubes = None
+                    count = 0
                     continue
                 if column.unreached and text.isalnum() and not text.startswith("0b"):
                     self.warn_of_granule(row, index, column, warned)
-            if cubes is None:
-                continue
-            if len(cubes) * len(masks) > _MOST_CUBES:
-                text = "the ranges of this row make too many cubes"
-                self.error(Problem("ROW-LARGE", text, "split the table"), row, index)
-                cubes = None
-            elif len(masks) == 1:
-                ((ones, zeros),) = masks
-                cubes = [(a | ones, b | zeros) for a, b in cubes]
+            if len(masks) == 1:
+                fixed_ones |= masks[0][0]
+                fixed_zeros |= masks[0][1]
             else:
-                cubes = [(a | ones, b | zeros) for a, b in cubes for ones, zeros in masks]
+                several.append(masks)
+                count *= len(masks)
+        if count > _MOST_CUBES:
+            text = "the ranges of this row make too many cubes"
+            self.error(Problem("ROW-LARGE", text, "split the table"), row, 0)
+            count = 0
+        if not count:
+            return None
+        cubes = [(fixed_ones, fixed_zeros)]
+        for masks in several:
+            cubes = [(a | ones, b | zeros) for a, b in cubes for ones, zeros in masks]
         return cubes
 
     def filled(self, text: str, column: Field) -> str:

@@ -122,7 +122,7 @@ def read_never(section: Section | None, signals: Signals) -> Cover | None:
     conditions = [read_condition(section, path, text, signals, "input") for path, text in entries]
     found = nothing
     for condition in conditions:
-        sets = None if condition is None else condition.value(_no_outputs)
+        sets = None if condition is None or signals.too_many else condition.value(_no_outputs)
         if sets is None:
             return None
         found = algebra.union(signals.n_inputs, found, sets[0])

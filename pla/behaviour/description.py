@@ -29,11 +29,13 @@ class Claims:
         signals: What is declared.
         diagnostics: Takes what is described twice.
         places: For each output position, where its description stands, and the kind of section.
+        incomplete: Some section does not tell which outputs it describes, which has its own error.
     """
 
     signals: Signals
     diagnostics: Diagnostics
     places: dict[int, tuple[Location, Form]] = field(default_factory=dict)
+    incomplete: bool = False
 
     def claim(self, described: Field, at: Location, form: Form) -> None:
         """Note where an output is described; report it if that is the second time."""

@@ -14,8 +14,13 @@ from pla.behaviour.spans import span_of
 from pla.behaviour.unsupported import refuse_unsupported
 
 if TYPE_CHECKING:
+    from collections.abc import Callable
+
+    from pla.behaviour.equations import Sets
+    from pla.behaviour.listing import Solved
     from pla.behaviour.signals import Signals
     from pla.errors import Location
+    from pla.logic.cubes import Cover
     from pla.tomlfile import Section
 
 __all__ = ["one_output", "read_minterms"]
@@ -51,20 +56,21 @@ def read_minterms(top: Section, name: str, signals: Signals, claims: Claims) -> 
             builder.add(cubes, Row(values, partial(_same, at)))
     if len(diagnostics.errors) > before:
         return None
-    listing = builder.build(
-        where=section.key_at("of"),
-        what="entry",
-        inputs=inputs.mask,
-        outputs=output.mask,
-        others=None if others is None else same_value(output.mask, others),
-        reasons=("dont_care", "others"),
-        others_key='others = 0, 1 or "x"',
-    )
-    return Description(
-        outputs=tuple(bit for bit in output.bits if bit is not None),
-        needs={},
-        solve=lambda never, _: resolve(listing, never, signals, diagnostics),
-    )
+
+    def solve(never: Cover, _: Callable[[int], Sets]) -> Solved | None:
+        listing = builder.build(
+            where=section.key_at("of"),
+            what="entry",
+            inputs=inputs.mask,
+            outputs=output.mask,
+            others=None if others is None else same_value(output.mask, others),
+            reasons=("dont_care", "others"),
+            others_key='others = 0, 1 or "x"',
+        )
+        return resolve(listing, never, signals, diagnostics)
+
+    outputs = tuple(bit for bit in output.bits if bit is not None)
+    return Description(outputs, {}, solve)
 
 
 def one_output(
@@ -75,6 +81,7 @@ def one_output(
     try:
         output = signals.find(name, "output")
     except Problem as problem:
+        claims.incomplete = True
         if not problem.known:
             section.diagnostics.error(problem.code, problem.message, at, problem.hint)
         return None

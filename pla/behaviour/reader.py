@@ -70,10 +70,13 @@ def behaviour_of(file: TomlFile) -> Behaviour:
     signals = read_signals(top)
     claims = Claims(signals, diagnostics)
     never = read_never(top.section("never"), signals)
+    claims.incomplete = bool(refused)
     descriptions = _read_descriptions(top, signals, claims)
     places = read_places(top.section("place"), signals)
     _report_undescribed(signals, claims, diagnostics)
-    solved = [] if never is None else solve_all(descriptions, never, signals, diagnostics)
+    solved: list[Solved] = []
+    if never is not None and not signals.too_many:
+        solved = solve_all(descriptions, never, signals, diagnostics)
     diagnostics.stop_on_error()
     if never is None:  # pragma: no cover - there was an error
         raise AssertionError
@@ -113,6 +116,8 @@ def _read_descriptions(top: Section, signals: Signals, claims: Claims) -> list[D
 
 
 def _report_undescribed(signals: Signals, claims: Claims, diagnostics: Diagnostics) -> None:
+    if claims.incomplete:
+        return  # the errors about that section say enough
     for signal in signals.outputs:
         bits = range(signal.first, signal.first + signal.size)
         missing = [bit for bit in bits if bit not in claims.places]

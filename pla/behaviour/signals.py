@@ -8,6 +8,7 @@ from functools import cached_property
 from typing import TYPE_CHECKING, Literal
 
 from pla.behaviour.problem import Problem
+from pla.logic.cubes import MAX_INPUTS, MAX_OUTPUTS
 from pla.tomlfile import did_you_mean
 
 if TYPE_CHECKING:
@@ -146,6 +147,11 @@ class Signals:
     @property
     def n_outputs(self) -> int:
         return len(self.output_names)
+
+    @property
+    def too_many(self) -> bool:
+        """Whether there are more bits than covers can hold; the declarations have that error."""
+        return self.n_inputs > MAX_INPUTS or self.n_outputs > MAX_OUTPUTS
 
     def names(self, role: Role | None = None) -> list[str]:
         """Names to choose from, for messages."""
