@@ -131,14 +131,18 @@ def read_csv(source: SourceText) -> CsvRows:
     Raises:
         InputError: If there is nothing in it, or quotes do not match.
     """
-    first = next((line for line in source.lines if line.strip(" \t,;")), "")
+    first = next((line for line in source.lines if line.strip(" \t,;")), None)
+    if first is None:
+        raise InputError([_empty(source.location(0))])
     bare = re.sub(r'"[^"]*"', "", first)
     separator = ";" if ";" in bare else ","
     if ";" in bare and "," in bare:
         at = source.location_of(source.lines.index(first) + 1, 1)
         message = "the header has commas and semicolons, expected one kind of separator"
         raise InputError([Diagnostic("CSV-SEPARATOR", message, at)])
-    reader = csv.reader(source.text.split("\n"), delimiter=separator, strict=True)
+    reader = csv.reader(
+        source.text.split("\n"), delimiter=separator, skipinitialspace=True, strict=True
+    )
     rows: list[list[str]] = []
     lines: list[int] = []
     before = 0
@@ -154,8 +158,6 @@ def read_csv(source: SourceText) -> CsvRows:
         message = f"not CSV: {fault}"
         hint = "a cell in quotes ends with a quote in front of the next separator"
         raise InputError([Diagnostic("CSV-SYNTAX", message, at, hint)]) from None
-    if not rows:
-        raise InputError([_empty(source.location(0))])
     width = len(rows[0])
     while not rows[0][width - 1]:
         width -= 1
