@@ -29,9 +29,9 @@ if TYPE_CHECKING:
 
 __all__ = ["Connected", "fewest_connections", "without_superfluous_links"]
 
-MAX_LINKS = 20_000
+MAX_LINKS = 3_000
 MAX_FREE_LINKS = 400
-MAX_NODES = 500
+MAX_NODES = 20
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -72,9 +72,7 @@ def fewest_connections(
     free = any(d is None for d in open_polarities)
     if model.links > (MAX_FREE_LINKS if free else MAX_LINKS):
         return start
-    outcome = solve_integer(
-        model.load(), model.start(start), min(effort.nodes, MAX_NODES), effort.seconds_left
-    )
+    outcome = solve_integer(model.load(), model.start(start), MAX_NODES, effort.seconds_left)
     effort.spend(outcome.work, model.size, clock=outcome.clock)
     best = start
     if outcome.x is not None:

@@ -18,20 +18,24 @@ class Effort:
 
     Attributes:
         work: Simplex iterations, each weighed by the rows and columns it touches, in thousands.
-        nodes: Branching nodes of one integer program.
+        nodes: Branching nodes of one integer program of a thousand rows and columns.
         seconds: The safety net.
         clock: Whether the safety net cut in: the answer may then not repeat.
     """
 
     work: float = 1_000_000.0
-    nodes: int = 5_000
-    seconds: float = 900.0
+    nodes: int = 1_500
+    seconds: float = 600.0
     clock: bool = False
     _started: float = field(default_factory=time.monotonic)
 
     def spend(self, iterations: int, size: int, *, clock: bool = False) -> None:
         self.work -= (iterations + 1) * size / 1000
         self.clock = self.clock or clock
+
+    def nodes_for(self, size: int) -> int:
+        """Branching nodes for a program of this many rows and columns."""
+        return max(20, self.nodes * 1000 // max(1000, size))
 
     @property
     def seconds_left(self) -> float:

@@ -64,6 +64,7 @@ def minimize(
     *,
     feasible: Feasible | None = None,
     effort: Effort | None = None,
+    connections: bool = True,
 ) -> Minimum:
     """Find the fewest product terms, then the fewest connections.
 
@@ -73,6 +74,7 @@ def minimize(
         feasible: Which polarities the outputs can have together, where the device limits that;
             a partly decided choice is feasible when it can be completed.
         effort: The budget; by default enough for all that is practical.
+        connections: Whether the second objective matters; without it only the count is sought.
 
     Returns:
         The best cover, always complete and checked, and its lower bound.
@@ -84,7 +86,10 @@ def minimize(
     allowed = tuple(polarities or [Polarity()] * function.n_outputs)
     parts = blocks_of(function, allowed)
     answers = [
-        minimize_block(part.function, [allowed[j] for j in part.outputs], budget) for part in parts
+        minimize_block(
+            part.function, [allowed[j] for j in part.outputs], budget, connections=connections
+        )
+        for part in parts
     ]
     complemented = [False] * function.n_outputs
     for part, answer in zip(parts, answers, strict=True):
@@ -92,7 +97,7 @@ def minimize(
             complemented[j] = inverted
     if feasible is not None and not feasible(tuple(complemented)):
         # The device ties the outputs' polarities together: no part can be settled alone.
-        whole = minimize_block(function, allowed, budget, feasible)
+        whole = minimize_block(function, allowed, budget, feasible, connections=connections)
         answers, complemented = [whole], list(whole.complemented)
         cover = whole.cover
     else:

@@ -46,12 +46,14 @@ def minimize_block(
     polarities: Sequence[Polarity],
     effort: Effort,
     feasible: Feasible | None = None,
+    *,
+    connections: bool = True,
 ) -> BlockMinimum:
     """The fewest terms for a block over all allowed polarities, then the fewest connections."""
     phases = phases_of(polarities)
     fits = function.n_inputs <= MAX_DENSE_INPUTS and len(phases) <= MAX_PHASES
     if fits and lattice_bytes(function.n_inputs, len(phases)) <= MAX_LATTICE_BYTES:
-        return _by_primes(function, polarities, phases, effort, feasible)
+        return _by_primes(function, polarities, phases, effort, feasible, connections)
     return minimize_wide(function, polarities, effort, feasible)
 
 
@@ -61,6 +63,7 @@ def _by_primes(
     phases: Sequence[Phase],
     effort: Effort,
     feasible: Feasible | None,
+    connections: bool,
 ) -> BlockMinimum:
     on, off = phase_function(function, phases)
     primes = dense_primes(off, len(phases))
@@ -82,12 +85,12 @@ def _by_primes(
     start = _linked(primes.take(found.columns), demanded, phases, found.complemented)
     connected = start
     scope: Scope | None = None
-    if table is not None:
+    if table is not None and connections:
         if feasible is None:
             connected = fewest_connections(primes, table, phases, start, only, effort)
             scope = "all polarities" if connected.proven else None
-        if scope is None:
-            settled = connected.complemented
+        settled = connected.complemented
+        if scope is None and (None in only or feasible is not None):
             connected = fewest_connections(primes, table, phases, connected, settled, effort)
             scope = "these polarities" if connected.proven else None
     return BlockMinimum(

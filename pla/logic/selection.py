@@ -131,7 +131,7 @@ def smallest_cover(
     )
     start = np.zeros(columns)
     start[inner] = 1.0
-    outcome = solve_integer(solver, start, effort.nodes, effort.seconds_left)
+    outcome = solve_integer(solver, start, effort.nodes_for(rows + columns), effort.seconds_left)
     effort.spend(outcome.work, rows + columns, clock=outcome.clock)
     trusted = bound
     if outcome.x is not None:
