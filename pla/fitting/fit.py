@@ -14,7 +14,7 @@ from pla.fitting.polarity import allowed_polarities, mode_for, tied_polarities
 from pla.logic.minimize import minimize
 
 if TYPE_CHECKING:
-    from collections.abc import Iterable, Mapping, Sequence
+    from collections.abc import Iterable, Mapping, MutableMapping, Sequence
 
     from pla.behaviour.model import Behaviour
     from pla.device.model import Cell, Device
@@ -33,6 +33,7 @@ def fit(
     device: Device,
     wish: PolarityWish = "free",
     effort: Effort | None = None,
+    known: MutableMapping[tuple[Polarity, ...], Minimum] | None = None,
 ) -> Fit:
     """Find the smallest cover that the device can hold and put everything in its place.
 
@@ -41,6 +42,8 @@ def fit(
         device: A shared OR array.
         wish: Polarities that the user allows.
         effort: The budget for minimizing.
+        known: Minima of this behaviour by polarities, to be used again and added to; only where
+            the device does not tie polarities together.
 
     Returns:
         The plan, or every reason why there is none.
@@ -70,9 +73,13 @@ def fit(
         nothing = tuple(allowed)
         return Fit(behaviour, device, nothing, None, None, tuple(reasons), needed, pins, outputs)
     polarities = [p for p in allowed if p is not None]
-    minimum = minimize(
-        behaviour.function, polarities, feasible=_within(feasible, polarities), effort=effort
-    )
+    minima = {} if known is None or feasible is not None else known
+    key = tuple(polarities)
+    if key not in minima:
+        minima[key] = minimize(
+            behaviour.function, polarities, feasible=_within(feasible, polarities), effort=effort
+        )
+    minimum = minima[key]
     return _place(behaviour, device, polarities, minimum, places, cells, outputs)
 
 

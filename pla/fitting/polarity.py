@@ -10,13 +10,13 @@ from pla.logic.phases import Polarity
 if TYPE_CHECKING:
     from collections.abc import Sequence
 
-    from pla.behaviour.model import Output
+    from pla.behaviour.model import Behaviour, Output
     from pla.device.model import Cell, Device, Mode
     from pla.fitting.model import PolarityWish
     from pla.logic.relaxation import Decisions
     from pla.logic.search import Feasible
 
-__all__ = ["allowed_polarities", "mode_for", "tied_polarities"]
+__all__ = ["allowed_polarities", "mode_for", "tied_polarities", "wished_polarities"]
 
 
 def mode_for(cell: Cell, active_low: bool, complemented: bool) -> Mode | None:
@@ -50,6 +50,11 @@ def allowed_polarities(
         complement = complement and wish == "free"
         allowed.append(Polarity(true, complement) if true or complement else None)
     return allowed
+
+
+def wished_polarities(behaviour: Behaviour, wish: PolarityWish) -> list[Polarity]:
+    """The polarities of every output where no device limits them."""
+    return [Polarity(complement=wish == "free")] * len(behaviour.outputs)
 
 
 def tied_polarities(

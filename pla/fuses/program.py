@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from pathlib import Path
 from typing import TYPE_CHECKING
 
 from pla import __version__
@@ -14,11 +15,12 @@ from pla.fuses.proof import prove
 if TYPE_CHECKING:
     from collections.abc import Iterator
 
+    from pla.behaviour.model import Behaviour
     from pla.fitting.model import Plan
     from pla.fuses.fusemap import FuseMap
     from pla.fuses.proof import Proof
 
-__all__ = ["ProvenFile", "fuse_file"]
+__all__ = ["ProvenFile", "fuse_file", "fuse_file_name"]
 
 
 @dataclass(frozen=True, slots=True)
@@ -55,6 +57,11 @@ def fuse_file(plan: Plan, name: str) -> ProvenFile:
         message = f"the fuse file is not equal to the design: {proof.counterexample.text}"
         raise InternalError([Diagnostic("NOT-EQUAL", message)])
     return ProvenFile(data, back.fuses, proof)
+
+
+def fuse_file_name(behaviour: Behaviour) -> str:
+    """The design file's stem with the usual ending."""
+    return f"{Path(behaviour.file).stem}.jed"
 
 
 def _notes(plan: Plan) -> Iterator[str]:

@@ -1,0 +1,119 @@
+"""``fuseplan plan``: from a design to a folder with a proven fuse file."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING, Any, cast
+
+import click
+
+from pla.cli.output import emit_json, emit_text, note, show_diagnostics
+
+if TYPE_CHECKING:
+    from pla.behaviour.model import Behaviour
+    from pla.fitting.model import Fit
+
+__all__ = ["command"]
+
+
+@click.command("plan")
+@click.argument("design", metavar="DESIGN")
+@click.option(
+    "--device",
+    required=True,
+    metavar="NAME-OR-FILE",
+    help="A device of the catalogue, or a device file.",
+)
+@click.option(
+    "-o", "--output", "folder", required=True, metavar="FOLDER", help="Where all files go."
+)
+@click.option(
+    "--polarity",
+    type=click.Choice(["true", "free"]),
+    default="free",
+    show_default=True,
+    help="Sums of the asserted functions only, or of their complements where that saves terms.",
+)
+@click.option("--require-proof", is_flag=True, help="An unproven minimum is a no (exit code 1).")
+@click.option("--force", is_flag=True, help="Write into FOLDER though it exists.")
+@click.option("--json", "as_json", is_flag=True, help="One JSON document on standard output.")
+def command(
+    design: str,
+    device: str,
+    folder: str,
+    polarity: str,
+    require_proof: bool,
+    force: bool,
+    as_json: bool,
+) -> int:
+    """Minimize DESIGN, fit it on a device, prove it, and write fuse file, tables and report.
+
+    The fuse file is FOLDER/<design>.jed. It is written only after it has been read back from its
+    own bytes and proven equal to the design. If the design does not fit, nothing is written.
+
+    \b
+      fuseplan plan design.toml --device shared-12x32x6 -o out/
+    """
+    from pla.behaviour.reader import read_behaviour
+    from pla.device.catalogue import find_device
+    from pla.fitting.fit import fit
+
+    behaviour = read_behaviour(design)
+    array = find_device(device)
+    show_diagnostics((*behaviour.warnings, *array.warnings))
+    outcome = fit(behaviour, array, cast("Any", polarity))
+    if not outcome.fits:
+        return _refuse(outcome, polarity, as_json=as_json)
+    minimum = outcome.minimum
+    if require_proof and minimum is not None and not minimum.proven:
+        return _unproven(outcome, as_json=as_json)
+    return _write(behaviour, outcome, folder, force=force, as_json=as_json)
+
+
+def _write(behaviour: Behaviour, outcome: Fit, folder: str, *, force: bool, as_json: bool) -> int:
+    from pla.files import write_folder
+    from pla.fuses.program import fuse_file, fuse_file_name
+    from pla.report.cover_json import fit_document
+    from pla.report.folder import plan_files
+    from pla.report.plan_text import plan_text
+
+    plan = outcome.plan
+    if plan is None:
+        raise ValueError("a design that does not fit has no files")
+    name = fuse_file_name(behaviour)
+    proven = fuse_file(plan, name)
+    files = {**plan_files(outcome, proven), name: proven.data}
+    paths = write_folder(folder, files, last=name, force=force)
+    if as_json:
+        emit_json(fit_document(outcome, proven, paths))
+    else:
+        emit_text(plan_text(outcome, proven, paths))
+    return 0
+
+
+def _refuse(outcome: Fit, polarity: str, *, as_json: bool) -> int:
+    from pla.device.catalogue import catalogue, find_device
+    from pla.fitting.holders import holders
+    from pla.report.cover_json import fit_document
+    from pla.report.refusal_text import refusal_text
+
+    others = [find_device(name) for name in catalogue() if name != outcome.device.name]
+    found = holders(outcome, others, cast("Any", polarity))
+    if as_json:
+        emit_json(fit_document(outcome, None, (), [f.device.name for f in found]))
+    else:
+        emit_text(refusal_text(outcome, found))
+    return 1
+
+
+def _unproven(outcome: Fit, *, as_json: bool) -> int:
+    from pla.report.cover_json import fit_document
+
+    minimum = outcome.minimum
+    if as_json:
+        emit_json(fit_document(outcome, None, ()))
+    if minimum is not None:
+        note(
+            f"not proven: the best set found has {minimum.count} product terms, at least "
+            f"{minimum.lower_bound} are needed; nothing was written"
+        )
+    return 1

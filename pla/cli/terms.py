@@ -1,0 +1,48 @@
+"""``fuseplan terms``: minimize without a device."""
+
+from __future__ import annotations
+
+from typing import Any, cast
+
+import click
+
+from pla.cli.output import emit_json, emit_text, show_diagnostics
+
+__all__ = ["command"]
+
+
+@click.command("terms")
+@click.argument("design", metavar="DESIGN")
+@click.option(
+    "--polarity",
+    type=click.Choice(["true", "free"]),
+    default="free",
+    show_default=True,
+    help="Sums of the asserted functions only, or of their complements where that saves terms.",
+)
+@click.option("--require-proof", is_flag=True, help="An unproven minimum is a no (exit code 1).")
+@click.option("--json", "as_json", is_flag=True, help="One JSON document on standard output.")
+def command(design: str, polarity: str, require_proof: bool, as_json: bool) -> int:
+    """Find the smallest set of shared product terms of DESIGN, with proof; no device.
+
+    \b
+      fuseplan terms design.toml
+      fuseplan terms design.toml --polarity true --json
+    """
+    from pla.behaviour.reader import read_behaviour
+    from pla.fitting.polarity import wished_polarities
+    from pla.logic.minimize import minimize
+
+    behaviour = read_behaviour(design)
+    show_diagnostics(behaviour.warnings)
+    polarities = wished_polarities(behaviour, cast("Any", polarity))
+    minimum = minimize(behaviour.function, polarities)
+    if as_json:
+        from pla.report.cover_json import cover_document
+
+        emit_json(cover_document(behaviour, minimum))
+    else:
+        from pla.report.terms_text import terms_text
+
+        emit_text(terms_text(behaviour, minimum, polarities))
+    return 1 if require_proof and not minimum.proven else 0
