@@ -69,8 +69,9 @@ def _source(section: Section) -> RowSource | None:
         name = section.text("file")
         if name is None:
             return None
-        folder = os.path.dirname(section.file.file)  # noqa: PTH120 - the name stays as given
-        path = os.path.join(folder, name)  # noqa: PTH118
+        # Names stay as given; a plain "-" would mean standard input.
+        folder = os.path.dirname(section.file.file)  # noqa: PTH120
+        path = os.path.join(folder, name) if name != "-" else os.path.join(folder or ".", name)  # noqa: PTH118
         return read_csv(read_text(path, named_at=section.at("file")))
     except InputError as fault:
         section.diagnostics.found.extend(fault.diagnostics)

@@ -22,7 +22,8 @@ Role = Literal["input", "output"]
 
 RESERVED = ("in", "not", "and", "or", "xor", "others")
 
-_NAME = re.compile(r"([A-Za-z_][A-Za-z0-9_]*)(?:\[([0-9]{1,6})(?::([0-9]{1,6}))?\])?")
+_BIT = r"(0|[1-9][0-9]{0,5})"
+_NAME = re.compile(rf"([A-Za-z_][A-Za-z0-9_]*)(?:\[{_BIT}(?::{_BIT})?\])?")
 
 
 @dataclass(frozen=True, slots=True)

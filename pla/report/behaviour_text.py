@@ -39,7 +39,7 @@ def behaviour_text(behaviour: Behaviour) -> str:
     rows = [
         [
             output.name,
-            f"{_FORMS[output.form]}, line {output.described.line}",
+            _described(output, behaviour.file),
             *_shares(count),
             ", ".join(_sources(count)),
         ]
@@ -67,6 +67,12 @@ def behaviour_text(behaviour: Behaviour) -> str:
         "No errors." if not behaviour.warnings else f"No errors, {_warnings(behaviour)}.",
     ]
     return "\n".join(lines)
+
+
+def _described(output: Output, design: str) -> str:
+    at = output.described
+    place = f"line {at.line}" if at.file == design else f"{at.file}:{at.line}"
+    return f"{_FORMS[output.form]}, {place}"
 
 
 def _warnings(behaviour: Behaviour) -> str:

@@ -1,0 +1,84 @@
+"""Damaged design files: always a behaviour or errors in words, never anything else."""
+
+from __future__ import annotations
+
+from pathlib import Path
+
+from hypothesis import given, settings
+from hypothesis import strategies as st
+
+from pla.behaviour.reader import behaviour_of
+from pla.errors import InputError
+from pla.tomlfile import parse_toml
+
+WHOLE = (
+    (Path(__file__).parent / "golden" / "dryer.toml").read_text(encoding="utf-8")
+    + """
+[[cases]]
+rows = '''
+hatch start | code
+0 1 | 2
+1 - | 0b0x
+others | 3'''
+
+[[address_map]]
+bus = "addr[15:12]"
+when = "start xor hatch"
+select = { rom = ["0..3", 7], "ram" = 0x8 }
+elsewhere = "x"
+"""
+)
+WHOLE = WHOLE.replace("step = 4", 'step = 4\naddr = "15:11"').replace(
+    "armed = 1", "armed = 1\ncode = 2\nrom = 1\nram = { active = 'low', impossible = 1 }"
+)
+SCRAPS = [
+    *("", " ", "\n", "0", "1", "x", "-", "'", '"', "[", "]", "{", "}", "|", "=", ",", "..", ":"),
+    *("others", "step", "start", "0b1", "0x", "999", "true", "[never]\n", "when", "not", "+", "é"),
+]
+
+
+def test_whole_design():
+    behaviour = behaviour_of(parse_toml(WHOLE, "d.toml"))
+    assert len(behaviour.outputs) == 10
+
+
+damage = st.tuples(st.integers(0, len(WHOLE) - 1), st.integers(0, 12), st.sampled_from(SCRAPS))
+
+
+@settings(max_examples=200, deadline=None)
+@given(st.lists(damage, min_size=1, max_size=4))
+def test_any_damage_is_explained(damages):
+    text = WHOLE
+    for start, length, scrap in damages:
+        text = text[:start] + scrap + text[start + length :]
+    try:
+        behaviour = behaviour_of(parse_toml(text, "d.toml"))
+    except InputError as fault:
+        lines = text.split("\n")
+        for found in fault.diagnostics:
+            assert found.message
+            assert found.severity == "error"
+            at = found.location
+            assert at.line is not None
+            assert 1 <= at.line <= len(lines)
+            assert 1 <= at.column <= len(lines[at.line - 1]) + 1
+            assert at.source == lines[at.line - 1]
+        return
+    assert behaviour.function.conflict() is None
+
+
+@settings(max_examples=100, deadline=None)
+@given(st.lists(st.integers(0, WHOLE.count("\n")), min_size=1, max_size=6), st.booleans())
+def test_lost_and_doubled_lines_are_explained(numbers, doubled):
+    lines = WHOLE.split("\n")
+    for number in numbers:
+        at = number % len(lines)
+        lines[at : at + 1] = [lines[at]] * 2 if doubled else []
+    try:
+        behaviour = behaviour_of(parse_toml("\n".join(lines), "d.toml"))
+    except InputError as fault:
+        found = fault.diagnostics
+    else:
+        assert behaviour.function.conflict() is None
+        return
+    assert all(d.location is not None and d.location.line is not None for d in found)
