@@ -24,6 +24,8 @@ if TYPE_CHECKING:
 
 __all__ = ["Minimum", "minimize", "ordered_terms"]
 
+_RANK = str.maketrans("10-", "012")
+
 
 @dataclass(frozen=True, slots=True)
 class Minimum:
@@ -122,7 +124,7 @@ def ordered_terms(cover: Cover) -> Cover:
 
     def key(cube: Cube) -> tuple[int, str]:
         text = cube.text(cover.n_inputs)
-        return (-cube.outputs.bit_count(), text.translate({ord("1"): "0", ord("0"): "1"}))
+        return (-cube.outputs.bit_count(), text.translate(_RANK))
 
     cubes: list[Cube] = sorted(cover, key=key)
     return Cover.of(cover.n_inputs, cubes)
