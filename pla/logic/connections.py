@@ -68,6 +68,8 @@ def fewest_connections(
         open_polarities: Outputs whose polarity is settled have it here, the others ``None``.
         effort: What may be spent.
     """
+    if not len(start.cover):
+        return Connected(start.cover, start.complemented, True)
     model = _Model(primes, table, phases, open_polarities, len(start.cover))
     free = any(d is None for d in open_polarities)
     if model.links > (MAX_FREE_LINKS if free else MAX_LINKS):

@@ -153,12 +153,15 @@ def solve_integer(
     solver.option("mip_max_nodes", max_nodes)
     solver.option("time_limit", seconds)
     solver.option("mip_rel_gap", 0.0)
-    if start is not None:
-        solution = highspy.HighsSolution()
-        solution.col_value = start
-        solver.setSolution(solution)
-    with interruptible(solver):
-        solver.run()
+    _run(solver, start)
+    work = solver.work()
+    if not _consistent(solver):
+        # Seen in 1.16: where presolve leaves nothing to do, the start is handed back as if it were
+        # the optimum that presolve found, with that one's objective, or with a lower one.
+        solver.clearSolver()
+        solver.option("presolve", "off")
+        _run(solver, start)
+        work += solver.work()
     status = solver.getModelStatus()
     info = solver.getInfo()
     found = info.primal_solution_status == highspy.SolutionStatus.kSolutionStatusFeasible
@@ -167,6 +170,24 @@ def solve_integer(
         x,
         float(info.mip_dual_bound),
         status == highspy.HighsModelStatus.kOptimal,
-        solver.work(),
+        work,
         status == highspy.HighsModelStatus.kTimeLimit,
     )
+
+
+def _run(solver: Solver, start: NDArray[np.float64] | None) -> None:
+    if start is not None:
+        solution = highspy.HighsSolution()
+        solution.col_value = start
+        solver.setSolution(solution)
+    with interruptible(solver):
+        solver.run()
+
+
+def _consistent(solver: Solver) -> bool:
+    """Whether the solution found costs what the library says it does; so also if there is none."""
+    info = solver.getInfo()
+    if info.primal_solution_status != highspy.SolutionStatus.kSolutionStatusFeasible:
+        return True
+    cost = np.array(solver.getLp().col_cost_) @ np.array(solver.getSolution().col_value)
+    return bool(abs(cost - info.objective_function_value) < 0.5)
