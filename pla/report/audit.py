@@ -6,26 +6,18 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 from pla.logic import algebra
-from pla.report.notation import case, groups_of, plural
-from pla.report.table import Table
+from pla.logic.cubes import Cover
 
 if TYPE_CHECKING:
-    from collections.abc import Iterator, Sequence
+    from collections.abc import Iterator
 
     from pla.behaviour.model import Behaviour
-    from pla.fitting.prices import SafetyPrice
-    from pla.logic.cubes import Cover
+    from pla.logic.cubes import Cube
     from pla.logic.minimize import Minimum
 
-__all__ = ["Settled", "audit", "audit_table"]
+__all__ = ["Settled", "Together", "asserted_on", "audit", "impossible_together"]
 
-_REASONS = {
-    "never": "impossible",
-    "others": "others",
-    "x": "x in a row",
-    "dont_care": "dont_care",
-    "elsewhere": "elsewhere",
-}
+_MOST_TOGETHER = 256
 
 
 @dataclass(frozen=True, slots=True)
@@ -36,98 +28,90 @@ class Settled:
         output: Index of the output.
         reason: Why it is open (see `pla.behaviour.model.DontCareSource`).
         value: Asserted value that the output really has.
-        cubes: The combinations, as cubes without common ones.
-        size: How many.
+        cubes: The combinations, as cubes that have none in common; not empty.
     """
 
     output: int
     reason: str
     value: int
     cubes: Cover
-    size: int
+
+    @property
+    def size(self) -> int:
+        """How many combinations."""
+        return sum(1 << (self.cubes.n_inputs - cube.literals) for cube in self.cubes)
+
+
+@dataclass(frozen=True, slots=True)
+class Together:
+    """Impossible inputs at which no output changes.
+
+    Attributes:
+        cube: The inputs.
+        values: Asserted value of each output.
+    """
+
+    cube: Cube
+    values: tuple[int, ...]
 
 
 def audit(behaviour: Behaviour, minimum: Minimum) -> tuple[Settled, ...]:
-    """Every open combination of every output once, by output, source and value."""
+    """Every open combination of every output exactly once, by output, source and value."""
     return tuple(_settled(behaviour, minimum))
 
 
+def impossible_together(behaviour: Behaviour, minimum: Minimum) -> tuple[Together, ...] | None:
+    """What all outputs do at impossible inputs, demanded values included.
+
+    Returns:
+        Every impossible combination exactly once; ``None`` where that takes more than 256 cubes.
+    """
+    sums = [minimum.cover.of_output(j) for j in range(len(behaviour.outputs))]
+    pieces: list[tuple[Cover, tuple[int, ...]]] = [(_disjoint(behaviour.never), ())]
+    for sum_, complemented in zip(sums, minimum.complemented, strict=True):
+        pieces = [
+            (half, (*values, value))
+            for cubes, values in pieces
+            for value, half in asserted_on(cubes, sum_, complemented=complemented)
+        ]
+        if sum(len(cubes) for cubes, _ in pieces) > _MOST_TOGETHER:
+            return None
+    found = [Together(cube, values) for cubes, values in pieces for cube in cubes]
+    n = len(behaviour.inputs)
+    return tuple(sorted(found, key=lambda together: _order(together.cube, n)))
+
+
+def asserted_on(cubes: Cover, sum_: Cover, *, complemented: bool) -> Iterator[tuple[int, Cover]]:
+    """The combinations at which an output is 0, then those at which it is 1, as disjoint cubes.
+
+    Args:
+        cubes: The combinations that are asked about; cubes may overlap.
+        sum_: The terms of the output's sum.
+        complemented: The sum is the complement of the asserted function.
+    """
+    inside, outside = algebra.intersection(cubes, sum_), algebra.difference(cubes, sum_)
+    for value, held in enumerate((inside, outside) if complemented else (outside, inside)):
+        if len(held):
+            yield value, _disjoint(held)
+
+
 def _settled(behaviour: Behaviour, minimum: Minimum) -> Iterator[Settled]:
-    for j in range(len(behaviour.outputs)):
+    for j, complemented in enumerate(minimum.complemented):
         sum_ = minimum.cover.of_output(j)
         for source in behaviour.dont_cares:
-            open_ = source.cubes.of_output(j)
-            if not len(open_):
-                continue
-            inside = algebra.intersection(open_, sum_)
-            outside = algebra.difference(open_, sum_)
-            if minimum.complemented[j]:
-                inside, outside = outside, inside
-            for value, cubes in ((0, outside), (1, inside)):
-                if len(cubes):
-                    apart = _disjoint(cubes)
-                    n = apart.n_inputs
-                    size = sum(1 << (n - cube.literals) for cube in apart)
-                    yield Settled(j, source.reason, value, apart, size)
+            concerned = source.cubes.of_output(j)
+            for value, cubes in asserted_on(concerned, sum_, complemented=complemented):
+                yield Settled(j, source.reason, value, cubes)
 
 
 def _disjoint(cover: Cover) -> Cover:
-    """The same combinations as cubes that have none in common, in order."""
-    return algebra.complement(algebra.complement(cover)).merged()
+    """The same combinations as cubes that have none in common, in order of their lowest one."""
+    apart = algebra.compact(algebra.complement(algebra.complement(cover)))
+    n = cover.n_inputs
+    cubes: list[Cube] = sorted(apart, key=lambda cube: _order(cube, n))
+    return Cover.of(n, cubes)
 
 
-def audit_table(
-    behaviour: Behaviour, found: Sequence[Settled], prices: Sequence[SafetyPrice], count: int
-) -> Table:
-    """The audit with its prices.
-
-    Args:
-        behaviour: The design.
-        found: What `audit` found.
-        prices: What demanded values cost.
-        count: Terms of the design as it is.
-    """
-    groups = groups_of(behaviour.input_names)
-    rows = [
-        (
-            behaviour.outputs[s.output].name,
-            _REASONS[s.reason],
-            str(s.value),
-            case(cube, groups),
-            str(1 << (cube_n - cube.literals)),
-        )
-        for s in found
-        for cube_n in (s.cubes.n_inputs,)
-        for cube in s.cubes
-    ]
-    return Table(
-        "Don't-care audit",
-        ("output", "left open by", "will be", "at inputs", "cases"),
-        tuple(rows),
-        lead=(
-            "Don't cares are freedom, not safety. The design leaves these input combinations "
-            "open; the terms settle them, and this is what each output will really do there. "
-            "Asserted values.",
-        )
-        if rows
-        else (
-            "Don't cares are freedom, not safety. This design leaves nothing open: every output "
-            "has a demanded value for every input combination.",
-        ),
-        remarks=tuple(_price(behaviour, price, count) for price in prices),
-        aligned="lllrr".replace("rr", "lr"),
-        repeated=3,
-    )
-
-
-def _price(behaviour: Behaviour, price: SafetyPrice, count: int) -> str:
-    name = behaviour.outputs[price.output].name
-    cost = count - price.freed.terms
-    if cost > 0:
-        costs = f"costs {'' if price.freed.proven else 'at least '}{plural(cost, 'term')}"
-    else:
-        costs = "costs no term"
-    return (
-        f"impossible = {price.demanded} of {name} {costs}: {plural(count, 'term')} with it, "
-        f"{price.freed.terms} without."
-    )
+def _order(cube: Cube, n_inputs: int) -> tuple[str, int]:
+    """Lowest combination first, the first input most significant."""
+    return cube.text(n_inputs).replace("-", "0"), cube.literals

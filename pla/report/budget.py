@@ -11,45 +11,32 @@ if TYPE_CHECKING:
     from pla.fitting.model import Fit, Usage
     from pla.fuses.fusemap import FuseMap
 
-__all__ = ["budget_table", "programmed"]
+__all__ = ["budget_table", "links_sentence"]
 
 
 def budget_table(fit: Fit, fuses: FuseMap | None = None) -> Table:
     """Terms, inputs and outputs: used, available, spare or missing; links programmed."""
-    rows = [
-        _row("product terms", fit.terms, known=fit.minimum is not None),
-        _row("input pins", fit.inputs),
-        _row("output cells", fit.outputs),
-    ]
-    remarks: tuple[str, ...] = ()
-    if fuses is not None:
-        count = programmed(fit.device, fuses)
-        state = "closed" if fit.device.links.blank else "opened"
-        remarks = (
-            f"{count} of {len(fuses)} links are to be programmed ({state}), "
-            f"{len(fuses) - count} stay blank.",
-        )
     return Table(
         "Budget",
         ("resource", "used", "available", "spare"),
-        tuple(rows),
-        remarks=remarks,
+        (
+            _row("product terms", fit.terms, known=fit.minimum is not None),
+            _row("input pins", fit.inputs),
+            _row("output cells", fit.outputs),
+        ),
         aligned="lrrr",
+        remarks=() if fuses is None else (links_sentence(fit.device, fuses),),
     )
 
 
-def programmed(device: Device, fuses: FuseMap) -> int:
-    """How many links are not in the state that a blank part has."""
-    return fuses.closed if device.links.blank else fuses.opened
+def links_sentence(device: Device, fuses: FuseMap) -> str:
+    """How many links are not left as a blank part has them."""
+    state, count = ("closed", fuses.closed) if device.links.blank else ("opened", fuses.opened)
+    return f"{count} of {len(fuses)} links are programmed ({state}), the others stay blank."
 
 
 def _row(what: str, usage: Usage, *, known: bool = True) -> tuple[str, str, str, str]:
     if not known:
         return what, "not known", str(usage.available), "not known"
-    spare = usage.available - usage.used
-    return (
-        what,
-        str(usage.used),
-        str(usage.available),
-        str(spare) if spare >= 0 else f"{-spare} too few",
-    )
+    spare = f"{usage.over} too few" if usage.over else str(usage.available - usage.used)
+    return what, str(usage.used), str(usage.available), spare

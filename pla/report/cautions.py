@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
-from pla.report.table import one_line
+from pla.report.text import one_line
 
 if TYPE_CHECKING:
     from pla.fitting.model import Plan
@@ -12,21 +12,35 @@ if TYPE_CHECKING:
 
 __all__ = ["CAUTIONS", "label"]
 
+# Common practice, no source.
 CAUTIONS = (
-    "A programmable array is no safety device. Where a fault can hurt someone (interlocks, "
-    "heaters, anything that moves) the cut-out must be independent of it, hard-wired, and bring "
-    "the work to rest by itself.",
-    "Local codes and the judgement of someone qualified for the work take precedence over "
-    "anything in this report.",
-    "The proof compares fuses with the design by way of the device file. It cannot know whether "
-    "the device file describes the part in your hand, nor whether the design is what you meant.",
-    "Test a programmed part with the load disconnected, every output in both states, and the "
-    "inputs that should never occur as well: read the don't-care audit first.",
+    (
+        "A programmable array is no safety device. Where a fault can hurt someone (interlocks, "
+        "heaters, anything that moves) there must be a hard-wired cut-out that does not depend on the "
+        "array and brings the work to rest by itself."
+    ),
+    (
+        "Local codes, and the practice of those licensed or qualified for the work, take precedence "
+        "over anything said here."
+    ),
+    (
+        "Test a programmed part with the load disconnected: every output in both states, and the "
+        "inputs that should never occur as well. Broken wires and worn switches make the impossible "
+        "happen; the don't-care audit says what the outputs do then."
+    ),
+    (
+        "The proof compares the fuses with the design by way of the device file. It cannot know "
+        "whether that file describes the part in your hand, or whether the design is what you meant."
+    ),
 )
 
 
-def label(plan: Plan, fuses: FuseMap) -> str:
-    """One line for the part: design, revision, device, fuse checksum."""
+def label(plan: Plan, fuses: FuseMap) -> tuple[str, ...]:
+    """Lines for the part: design and revision, device, fuse checksum."""
     behaviour = plan.behaviour
-    revision = f" rev {one_line(behaviour.revision)}" if behaviour.revision else ""
-    return f"{one_line(behaviour.name)}{revision} | {plan.device.name} | {fuses.checksum:04X}"
+    revision = f", rev {one_line(behaviour.revision)}" if behaviour.revision else ""
+    return (
+        f"{one_line(behaviour.name)}{revision}",
+        one_line(plan.device.name),
+        f"fuse checksum {fuses.checksum:04X}",
+    )

@@ -5,16 +5,18 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from pla.fitting.prices import alone_counts, safety_prices
-from pla.report.audit import audit, audit_table
+from pla.report.audit import audit, impossible_together
+from pla.report.audit_tables import detail_table, summary_table, together_table
 from pla.report.budget import budget_table
 from pla.report.pins import pin_list
 from pla.report.programming_table import programming_table
 from pla.report.report_markdown import report_markdown
 from pla.report.sharing import output_table, term_table
-from pla.report.table import as_text, one_line
+from pla.report.text import table_text
+from pla.report.verdict import title
 
 if TYPE_CHECKING:
-    from pla.fitting.model import Fit
+    from pla.fitting.model import Fit, Plan
     from pla.fuses.program import ProvenFile
     from pla.report.table import Table
 
@@ -27,34 +29,37 @@ def plan_files(fit: Fit, proven: ProvenFile) -> dict[str, bytes]:
     Raises:
         ValueError: If the design does not fit.
     """
-    plan, minimum, behaviour = fit.plan, fit.minimum, fit.behaviour
-    if plan is None or minimum is None:
+    if fit.plan is None:
         raise ValueError("a design that does not fit has no files")
+    tables = _tables(fit, fit.plan, proven)
+    head = f"{title(fit.behaviour)}, on {fit.device.name}"
+    files = {
+        f"{name}.txt": "\n\n".join([head, *map(table_text, shown)]) + "\n"
+        for name, shown in tables.items()
+    }
+    shown = [table for group in tables.values() for table in group]
+    files["report.md"] = report_markdown(fit.plan, proven, shown)
+    return {name: text.encode() for name, text in files.items()}
+
+
+def _tables(fit: Fit, plan: Plan, proven: ProvenFile) -> dict[str, list[Table]]:
+    """The tables of each text file by its stem, in the order of the report."""
+    behaviour, minimum = plan.behaviour, plan.minimum
     polarities = [p for p in fit.polarities if p is not None]
-    tables = {
-        "programming-table": (programming_table(behaviour, minimum, plan),),
-        "term-sharing": (
+    open_ = audit(behaviour, minimum)
+    together = together_table(behaviour, impossible_together(behaviour, minimum))
+    prices = safety_prices(behaviour, polarities)
+    return {
+        "pin-list": [pin_list(plan)],
+        "programming-table": [programming_table(behaviour, minimum, plan)],
+        "term-sharing": [
             term_table(behaviour, minimum),
             output_table(behaviour, minimum, alone_counts(behaviour.function, polarities)),
-        ),
-        "pin-list": (pin_list(plan),),
-        "budget": (budget_table(fit, proven.fuses),),
-        "dont-care-audit": (
-            audit_table(
-                behaviour,
-                audit(behaviour, minimum),
-                safety_prices(behaviour, polarities),
-                minimum.count,
-            ),
-        ),
+        ],
+        "budget": [budget_table(fit, proven.fuses)],
+        "dont-care-audit": [
+            summary_table(behaviour, open_, prices, minimum.count),
+            *([detail_table(behaviour, open_)] if open_ else []),
+            *([together] if together else []),
+        ],
     }
-    files = {f"{name}.txt": _text(fit, shown) for name, shown in tables.items()}
-    report = report_markdown(plan, proven, tables)
-    return {**files, "report.md": report.encode()}
-
-
-def _text(fit: Fit, tables: tuple[Table, ...]) -> bytes:
-    behaviour = fit.behaviour
-    revision = f", revision {one_line(behaviour.revision)}" if behaviour.revision else ""
-    head = f"{one_line(behaviour.name)}{revision}, on {fit.device.name}\n"
-    return "\n".join([head, *map(as_text, tables)]).encode()

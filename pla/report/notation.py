@@ -6,11 +6,11 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 if TYPE_CHECKING:
-    from collections.abc import Sequence
+    from collections.abc import Iterable, Sequence
 
     from pla.logic.cubes import Cube
 
-__all__ = ["Group", "case", "groups_of", "listed", "plural", "product"]
+__all__ = ["Group", "case", "groups_of", "listed", "plural", "product", "spans"]
 
 _DECIMAL_BITS = 8  # buses of more bits are addresses, which are written in hexadecimal
 
@@ -85,11 +85,12 @@ def case(cube: Cube, groups: Sequence[Group]) -> str:
 
 
 def _value(bits: str, group: Group) -> str:
+    """The value of a signal or bus from ``1``, ``0`` and ``-`` for each of its bits."""
     if not group.bits:
         return bits
     low, high = group.bits[-1], group.bits[0]
     if "-" in bits.rstrip("-"):
-        return f"0b{bits}" if not low else f"0b{bits}{'-' * low}"
+        return f"0b{bits}{'-' * low}"
     first = int(bits.replace("-", "0"), 2) << low
     last = int(bits.replace("-", "1"), 2) << low | ((1 << low) - 1)
     if high < _DECIMAL_BITS:
@@ -109,3 +110,14 @@ def listed(words: Sequence[str]) -> str:
 def plural(number: int, word: str, words: str | None = None) -> str:
     """``1 term``, ``2 terms``."""
     return f"{number} {word if number == 1 else words or word + 's'}"
+
+
+def spans(numbers: Iterable[int]) -> str:
+    """Ascending numbers, neighbours joined: ``3, 5..7``."""
+    parts: list[list[int]] = []
+    for number in numbers:
+        if parts and parts[-1][1] == number - 1:
+            parts[-1][1] = number
+        else:
+            parts.append([number, number])
+    return ", ".join(str(a) if a == b else f"{a}..{b}" for a, b in parts)

@@ -1,4 +1,4 @@
-"""What every pin carries and what to do with those that carry nothing."""
+"""What every pin carries, and what to do with those that carry nothing."""
 
 from __future__ import annotations
 
@@ -6,83 +6,107 @@ from typing import TYPE_CHECKING
 
 from pla.report.notation import listed
 from pla.report.table import Table
+from pla.report.text import kept_together
 
 if TYPE_CHECKING:
-    from pla.device.model import Device
-    from pla.fitting.model import PlacedInput, PlacedOutput, Plan
+    from collections.abc import Iterator
 
-__all__ = ["pin_list"]
+    from pla.device.model import Device
+    from pla.fitting.model import Plan
+
+__all__ = ["pin_list", "pin_summary"]
 
 _IDLE = {
-    "sum": "leave open; the part drives it low",
-    "sum'": "leave open; the part drives it high",
-    "none": "leave open; the part does not drive it",
+    "sum": "leave open: the part drives it low",
+    "sum'": "leave open: the part drives it high",
+    "none": "leave open: the part does not drive it",
 }
-_TIE = "unused: tie to ground or supply"
 
 
 def pin_list(plan: Plan) -> Table:
     """Every pin of the device in order."""
     device = plan.device
-    inputs = {p.pin: p for p in plan.inputs if p.pin is not None}
-    outputs = {p.pin: p for p in plan.outputs}
-    rows = []
-    for pin in range(1, device.pins + 1):
-        if pin in inputs:
-            rows.append((str(pin), *_input(inputs[pin])))
-        elif pin in outputs:
-            rows.append((str(pin), *_output(outputs[pin])))
-        else:
-            rows.append((str(pin), *_other(device, pin)))
+    used = {
+        **{
+            placed.pin: (
+                placed.name,
+                "input",
+                _active(placed.active_low),
+                "" if placed.used else "no term needs it",
+            )
+            for placed in plan.inputs
+            if placed.pin is not None
+        },
+        **{
+            placed.pin: (placed.name, "output", _active(placed.active_low), "")
+            for placed in plan.outputs
+        },
+    }
     return Table(
         "Pin list",
         ("pin", "signal", "direction", "active", "remark"),
-        tuple(rows),
-        remarks=tuple(_remarks(plan)),
+        tuple(
+            (str(pin), *(used.get(pin) or _unused(device, pin)))
+            for pin in range(1, device.pins + 1)
+        ),
         aligned="rllll",
+        remarks=tuple(_remarks(plan)),
     )
 
 
-def _input(placed: PlacedInput) -> tuple[str, str, str, str]:
-    remark = "" if placed.used else "no term needs it; the pin must still have a defined level"
-    return placed.name, "input", _active(placed), remark
+def pin_summary(plan: Plan) -> list[str]:
+    """The pins that carry signals, inputs and outputs on a line each."""
+    sides = (("Inputs", plan.inputs), ("Outputs", plan.outputs))
+    return [
+        f"{side}: "
+        + ", ".join(
+            kept_together(
+                f"{'no pin' if placed.pin is None else placed.pin} {placed.name}"
+                f"{' (active low)' if placed.active_low else ''}"
+            )
+            for placed in signals
+        )
+        + "."
+        for side, signals in sides
+    ]
 
 
-def _output(placed: PlacedOutput) -> tuple[str, str, str, str]:
-    return placed.name, "output", _active(placed), ""
+def _active(low: bool) -> str:
+    return "low" if low else "high"
 
 
-def _active(placed: PlacedInput | PlacedOutput) -> str:
-    return "low" if placed.active_low else "high"
-
-
-def _other(device: Device, pin: int) -> tuple[str, str, str, str]:
+def _unused(device: Device, pin: int) -> tuple[str, str, str, str]:
+    """Signal, direction, active level and remark of a pin that carries no signal."""
     if pin == device.ground:
-        return "ground", "supply", "", ""
+        return "", "ground", "", ""
     if pin == device.power:
-        return "power", "supply", "", ""
+        return "", "power", "", ""
     if pin in device.unconnected:
-        return "", "none", "", "no connection inside the part"
+        return "", "none", "", "no connection"
     cell = device.cell_of_pin.get(pin)
     if cell is None:
-        return "", "input", "", _TIE
-    return "", "output", "", f"unused: {_IDLE[device.idle_mode(cell).pin]}"
+        return "", "input", "", "unused: tie to ground or power"
+    return "", "output", "", f"unused, {_IDLE[device.idle_mode(cell).pin]}"
 
 
-def _remarks(plan: Plan) -> list[str]:
-    device = plan.device
-    said = []
-    taken = {p.pin for p in plan.inputs}
-    if any(pin not in taken for pin in device.input_pins):
-        said.append(
-            "No input may float: an open input picks up noise and wastes supply current. Tie "
-            "unused inputs to a defined level, ground or supply, as the data sheet of the part "
-            "has it."
+def _remarks(plan: Plan) -> Iterator[str]:
+    taken = {placed.pin for placed in plan.inputs}
+    if any(pin not in taken for pin in plan.device.input_pins):
+        # Common practice, no source.
+        yield (
+            "No input may float: an open input picks up noise, and many parts draw more current "
+            "then. Give every unused input a defined level, ground or power, in the way that the "
+            "data sheet of the part allows."
         )
-    needless = [p.name for p in plan.inputs if not p.used]
+    needless = [p.name for p in plan.inputs if not p.used and p.pin is not None]
     if needless:
-        said.append(f"No term needs {listed(needless)}: the outputs do not depend on it.")
+        yield (
+            f"No output depends on {listed(needless)}: no term has a literal of "
+            f"{'it' if len(needless) == 1 else 'them'}. The pin still needs a defined level."
+        )
     absent = [p.name for p in plan.inputs if p.pin is None]
     if absent:
-        said.append(f"No pin was left for {listed(absent)}, which no term needs.")
-    return said
+        yield (
+            f"No pin was left for {listed(absent)}. No output depends on "
+            f"{'it' if len(absent) == 1 else 'them'}, so nothing needs to be connected."
+        )

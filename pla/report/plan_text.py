@@ -5,14 +5,9 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from pla.report.budget import budget_table
-from pla.report.pins import pin_list
-from pla.report.table import as_text, filled, one_line
-from pla.report.verdict import (
-    connections_sentence,
-    count_sentences,
-    polarity_sentence,
-    proof_sentence,
-)
+from pla.report.pins import pin_summary
+from pla.report.text import filled, table_text
+from pla.report.verdict import count_sentences, design_sentences, proof_sentence, title
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
@@ -24,26 +19,25 @@ __all__ = ["plan_text"]
 
 
 def plan_text(fit: Fit, proven: ProvenFile, paths: Sequence[str]) -> str:
-    """A summary: count, budget, pins, checksum, proof, files.
+    """A summary: count, budget, pins, checksum, proof, files; no newline at the end.
 
     Raises:
         ValueError: If the design does not fit.
     """
-    plan, minimum, behaviour = fit.plan, fit.minimum, fit.behaviour
-    if plan is None or minimum is None:
+    plan, behaviour = fit.plan, fit.behaviour
+    if plan is None:
         raise ValueError("a design that does not fit has no plan")
     sentences = [
-        " ".join(count_sentences(minimum)),
-        connections_sentence(minimum),
-        polarity_sentence(behaviour.output_names, minimum.complemented),
+        " ".join(count_sentences(plan.minimum)),
+        *design_sentences(behaviour, plan.minimum),
     ]
-    parts = [
-        f"{one_line(behaviour.name)}: fits {fit.device.name}",
-        "\n".join(map(filled, sentences)),
-        as_text(budget_table(fit, proven.fuses)).rstrip(),
-        as_text(pin_list(plan)).rstrip(),
-        filled(proof_sentence(proven.proof)),
-        f"Fuse checksum {proven.fuses.checksum:04X}",
-        "\n".join(["Files", *(f"  {path}" for path in paths)]),
-    ]
-    return "\n\n".join(parts)
+    return "\n\n".join(
+        [
+            f"{title(behaviour)}: fits {fit.device.name}",
+            "\n".join(map(filled, sentences)),
+            table_text(budget_table(fit, proven.fuses)),
+            "\n".join(filled(line) for line in pin_summary(plan)),
+            filled(f"{proof_sentence(proven.proof)} Fuse checksum {proven.fuses.checksum:04X}."),
+            "\n".join(["Files", *(f"  {path}" for path in paths)]),
+        ]
+    )

@@ -1,4 +1,4 @@
-"""Why a design does not fit, what it would take, and where it would fit."""
+"""Why a design does not fit, what takes so much, and where it would fit."""
 
 from __future__ import annotations
 
@@ -6,13 +6,17 @@ from typing import TYPE_CHECKING
 
 from pla.fitting.prices import counts_without
 from pla.report.budget import budget_table
+from pla.report.notation import listed
 from pla.report.sharing import shares
-from pla.report.table import Table, as_text, filled, one_line
+from pla.report.table import Table
+from pla.report.text import filled, table_text
+from pla.report.verdict import title
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
 
     from pla.fitting.model import Fit, Usage
+    from pla.fitting.prices import Count
     from pla.logic.minimize import Minimum
 
 __all__ = ["refusal_text"]
@@ -23,54 +27,100 @@ def refusal_text(fit: Fit, holders: Sequence[Fit]) -> str:
 
     Args:
         fit: What was tried.
-        holders: Devices that hold it.
+        holders: Devices that hold the design.
     """
-    parts = [
-        f"{one_line(fit.behaviour.name)}: does not fit {fit.device.name}",
-        "\n".join(filled(f"{r}.", "  ", "  ") for r in fit.reasons),
-        as_text(budget_table(fit)).rstrip(),
-    ]
-    if fit.minimum is not None and fit.terms.over and len(fit.behaviour.outputs) > 1:
-        parts.append(as_text(_costs(fit, fit.minimum)).rstrip())
-    parts.append(as_text(_holders(holders)).rstrip())
-    return "\n\n".join(parts)
+    tables = [budget_table(fit)]
+    if fit.minimum is not None and len(fit.behaviour.outputs) > 1:
+        if fit.terms.over:
+            tables.append(_term_costs(fit, fit.minimum))
+        if fit.inputs.over:
+            tables.append(_input_costs(fit, fit.minimum))
+    return "\n\n".join(
+        [
+            f"{title(fit.behaviour)}: does not fit {fit.device.name}",
+            "\n".join(filled(f"{reason[:1].upper()}{reason[1:]}.") for reason in fit.reasons),
+            *map(table_text, tables),
+            _on_holders(holders),
+        ]
+    )
 
 
-def _costs(fit: Fit, minimum: Minimum) -> Table:
+def _term_costs(fit: Fit, minimum: Minimum) -> Table:
+    names = fit.behaviour.output_names
     polarities = [p for p in fit.polarities if p is not None]
     without = counts_without(fit.behaviour.function, polarities)
-    found = shares(minimum.cover, len(fit.behaviour.outputs))
-    order = sorted(range(len(without)), key=lambda j: (without[j].terms, j))
-    rows = tuple(
-        (
-            fit.behaviour.outputs[j].name,
-            str(minimum.count - without[j].terms),
-            f"{'' if without[j].proven else 'at most '}{without[j].terms}",
-            str(len(found[j].terms)),
-            str(found[j].private),
-        )
-        for j in order
-    )
+    found = shares(minimum.cover, len(names))
+    order = sorted(range(len(names)), key=lambda j: without[j].terms)
     return Table(
-        "What each output costs",
-        ("output left out", "frees", "terms left", "its terms", "private"),
-        rows,
+        "What each output costs in terms",
+        ("output", "frees", "left without it", "its terms", "private"),
+        tuple(
+            (
+                names[j],
+                _freed(minimum.count, without[j]),
+                f"{'' if without[j].proven else 'at most '}{without[j].terms}",
+                str(len(found[j].terms)),
+                str(len(found[j].private)),
+            )
+            for j in order
+        ),
+        aligned="lrrrr",
+        remarks=(_enough([names[j] for j in order if without[j].terms <= fit.terms.available]),),
+    )
+
+
+def _freed(count: int, without: Count) -> str:
+    freed = max(0, count - without.terms)
+    return str(freed) if without.proven else f"at least {freed}"
+
+
+def _enough(names: Sequence[str]) -> str:
+    if not names:
+        return "Leaving out a single output is not enough."
+    which = names[0] if len(names) == 1 else f"any one of {listed(names)}"
+    return f"Without {which} the terms of the others would fit."
+
+
+def _input_costs(fit: Fit, minimum: Minimum) -> Table:
+    names = fit.behaviour.output_names
+    needs = []
+    for j in range(len(names)):
+        mask = 0
+        for cube in minimum.cover.of_output(j):
+            mask |= cube.ones | cube.zeros
+        needs.append(mask)
+    rows = []
+    for j, name in enumerate(names):
+        others = 0
+        for k, mask in enumerate(needs):
+            others |= mask if k != j else 0
+        own = [n for i, n in enumerate(fit.behaviour.input_names) if needs[j] & ~others & 1 << i]
+        rows.append((name, str(needs[j].bit_count()), str(len(own)), " ".join(own)))
+    rows.sort(key=lambda row: -int(row[2]))
+    return Table(
+        "What each output costs in inputs, with these terms",
+        ("output", "its inputs", "private", "which"),
+        tuple(rows),
+        aligned="lrrl",
+        wrapped=(3,),
+    )
+
+
+def _on_holders(holders: Sequence[Fit]) -> str:
+    if not holders:
+        return "No other device of the catalogue would hold this design."
+    table = Table(
+        "Devices of the catalogue that would hold it",
+        ("device", "product terms", "input pins", "output cells", "pins"),
+        tuple(_holder(fit) for fit in holders),
         aligned="lrrrr",
     )
+    return table_text(table)
 
 
-def _holders(holders: Sequence[Fit]) -> Table:
-    rows = tuple(
-        (f.device.name, _budget(f.terms), _budget(f.inputs), _budget(f.outputs)) for f in holders
-    )
-    lead = () if rows else ("No other device of the catalogue would hold the design.",)
-    return Table(
-        "Devices that would hold it",
-        ("device", "product terms", "input pins", "output cells"),
-        rows,
-        lead=lead,
-        aligned="lrrr",
-    )
+def _holder(fit: Fit) -> tuple[str, ...]:
+    usages = (fit.terms, fit.inputs, fit.outputs)
+    return fit.device.name, *map(_budget, usages), str(fit.device.pins)
 
 
 def _budget(usage: Usage) -> str:

@@ -2,21 +2,20 @@
 
 from __future__ import annotations
 
+from pathlib import PurePath
 from typing import TYPE_CHECKING
 
-from pla.report.budget import programmed
+from pla.fuses.program import fuse_file_name
+from pla.report.budget import links_sentence
 from pla.report.cautions import CAUTIONS, label
-from pla.report.table import as_markdown, escaped, one_line
-from pla.report.verdict import (
-    connections_sentence,
-    count_sentences,
-    polarity_sentence,
-    proof_sentence,
-)
+from pla.report.markdown import bullets, escaped, table_markdown
+from pla.report.text import one_line
+from pla.report.verdict import count_sentences, design_sentences, proof_sentence, title
 
 if TYPE_CHECKING:
-    from collections.abc import Mapping, Sequence
+    from collections.abc import Iterator, Sequence
 
+    from pla.errors import Diagnostic
     from pla.fitting.model import Plan
     from pla.fuses.program import ProvenFile
     from pla.report.table import Table
@@ -24,49 +23,53 @@ if TYPE_CHECKING:
 __all__ = ["report_markdown"]
 
 
-def report_markdown(plan: Plan, proven: ProvenFile, tables: Mapping[str, Sequence[Table]]) -> str:
-    """The whole report; `tables` by the names of their text files."""
-    behaviour, device, minimum = plan.behaviour, plan.device, plan.minimum
-    fuses = proven.fuses
-    state = "closed" if device.links.blank else "opened"
-    facts = [
-        ("Design", one_line(behaviour.name)),
-        ("Revision", one_line(behaviour.revision) or "not given"),
-        ("Device", f"{device.name}: {device.summary}" if device.summary else device.name),
-        ("Fuse checksum", f"{fuses.checksum:04X}"),
-        ("Links to be programmed", f"{programmed(device, fuses)} of {len(fuses)} ({state})"),
-        ("Label", label(plan, fuses)),
-    ]
-    parts = [
-        f"# {escaped(one_line(behaviour.name))}\n",
-        "\n".join(f"* {name}: {escaped(text)}" for name, text in facts) + "\n",
-        "## Verdict\n\n"
-        + "\n".join(
-            f"* {escaped(s)}"
-            for s in (
-                *count_sentences(minimum),
-                connections_sentence(minimum),
-                polarity_sentence(behaviour.output_names, minimum.complemented),
-                proof_sentence(proven.proof),
-            )
-        )
-        + "\n",
-        "## Cautions\n\n" + "\n".join(f"* {escaped(s)}" for s in CAUTIONS) + "\n",
-    ]
-    notes = [f"* {escaped(_warning(w))}" for w in behaviour.warnings]
-    if notes:
-        parts.append("## Warnings about the design\n\n" + "\n".join(notes) + "\n")
-    parts += [
-        as_markdown(table)
-        for name in ("pin-list", "programming-table", "term-sharing", "budget", "dont-care-audit")
-        for table in tables[name]
-    ]
-    return "\n".join(parts)
+def report_markdown(plan: Plan, proven: ProvenFile, tables: Sequence[Table]) -> str:
+    """The whole report; ends with a newline.
+
+    Args:
+        plan: The design on its device.
+        proven: Its fuse file.
+        tables: Pins, programming table and all the others, in order.
+    """
+    return "\n\n".join([*_front(plan, proven), *map(table_markdown, tables)]) + "\n"
 
 
-def _warning(warning: object) -> str:
-    from pla.errors import Diagnostic  # noqa: PLC0415
+def _front(plan: Plan, proven: ProvenFile) -> Iterator[str]:
+    behaviour, device, minimum, fuses = plan.behaviour, plan.device, plan.minimum, proven.fuses
+    yield f"# {escaped(title(behaviour))}"
+    summary = f": {one_line(device.summary)}" if device.summary else ""
+    yield bullets(
+        [
+            f"Design: {one_line(behaviour.name)}",
+            f"Revision: {one_line(behaviour.revision) or 'not given'}",
+            f"Device: {device.name}{summary}",
+            f"Fuse file: {one_line(fuse_file_name(behaviour))}",
+            f"Fuse checksum: {fuses.checksum:04X}",
+        ]
+    )
+    yield "Label for the part:"
+    yield "\n".join(f"    {line}" for line in label(plan, fuses))
+    yield "## Verdict"
+    yield bullets(
+        [
+            *count_sentences(minimum),
+            *design_sentences(behaviour, minimum),
+            proof_sentence(proven.proof),
+            links_sentence(device, fuses),
+        ]
+    )
+    warnings = [*map(_warning, behaviour.warnings), *map(_warning, device.warnings)]
+    if warnings:
+        yield "## Warnings"
+        yield bullets(warnings)
+    yield "## Cautions"
+    yield bullets(CAUTIONS)
 
-    if not isinstance(warning, Diagnostic):
-        return str(warning)
-    return warning.message
+
+def _warning(warning: Diagnostic) -> str:
+    """A warning with its place; of paths only the name, which is the same on every machine."""
+    at = warning.location
+    place = f"{one_line(PurePath(at.file).name)}" if at else ""
+    line = f", line {at.line}" if at and at.line else ""
+    hint = f" ({warning.hint})" if warning.hint else ""
+    return f"{place}{line}{': ' if place else ''}{one_line(warning.message)}{one_line(hint)}"

@@ -25,26 +25,23 @@ class Share:
 
     Attributes:
         terms: Numbers of its terms, from 1.
-        private: How many of them no other output uses.
+        private: Numbers of those that no other output uses.
     """
 
     terms: tuple[int, ...]
-    private: int
-
-    @property
-    def shared(self) -> int:
-        return len(self.terms) - self.private
+    private: tuple[int, ...]
 
 
 def shares(cover: Cover, outputs: int) -> tuple[Share, ...]:
     """For each output in order, the terms that feed it."""
-    masks = cover.outputs.tolist()
-    found = []
-    for j in range(outputs):
-        own = [k for k, mask in enumerate(masks) if mask >> j & 1]
-        private = sum(masks[k] == 1 << j for k in own)
-        found.append(Share(tuple(k + 1 for k in own), private))
-    return tuple(found)
+    masks = list(enumerate(cover.outputs.tolist(), 1))
+    return tuple(
+        Share(
+            tuple(number for number, mask in masks if mask >> j & 1),
+            tuple(number for number, mask in masks if mask == 1 << j),
+        )
+        for j in range(outputs)
+    )
 
 
 def term_table(behaviour: Behaviour, minimum: Minimum) -> Table:
@@ -53,18 +50,20 @@ def term_table(behaviour: Behaviour, minimum: Minimum) -> Table:
     rows = tuple(
         (
             str(number),
+            product(cube, behaviour.input_names),
             str(cube.literals),
             str(cube.outputs.bit_count()),
-            product(cube, behaviour.input_names),
-            ", ".join(name for j, name in enumerate(names) if cube.outputs >> j & 1),
+            " ".join(name for j, name in enumerate(names) if cube.outputs >> j & 1),
         )
         for number, cube in enumerate(minimum.cover, 1)
     )
     return Table(
         "Term sharing",
-        ("term", "literals", "shared by", "product", "in the sums of"),
+        ("term", "product", "literals", "shared by", "in the sums of"),
         rows,
-        aligned="rrrll",
+        aligned="rlrrl",
+        wrapped=(1, 4),
+        remarks=("There is no product term: every sum is 0.",) if not rows else (),
     )
 
 
@@ -76,8 +75,8 @@ def output_table(behaviour: Behaviour, minimum: Minimum, alone: Sequence[Count])
             output.name,
             "C" if complemented else "T",
             str(len(share.terms)),
-            str(share.private),
-            str(share.shared),
+            str(len(share.private)),
+            str(len(share.terms) - len(share.private)),
             f"{'' if count.proven else 'at most '}{count.terms}",
             " ".join(map(str, share.terms)) or "none",
         )
@@ -85,24 +84,33 @@ def output_table(behaviour: Behaviour, minimum: Minimum, alone: Sequence[Count])
             behaviour.outputs, minimum.complemented, found, alone, strict=True
         )
     )
+    cover = minimum.cover
     return Table(
         "Terms of each output",
-        ("output", "sum", "terms", "private", "shared", "alone", "which"),
+        ("output", "sum", "terms", "private", "shared", "alone", "numbers of the terms"),
         rows,
-        lead=(
-            "Private terms feed this output only. Alone: the terms that the output would need if "
-            "it were minimized by itself.",
-        ),
-        remarks=(_saving(minimum, alone),),
         aligned="llrrrrl",
+        wrapped=(6,),
+        remarks=(
+            (
+                "Sum T: the asserted function; C: its complement. Private terms are in no other sum. "
+                "Alone: what the output would need if it were minimized by itself."
+            ),
+            _saving(minimum, alone),
+            (
+                f"{plural(cover.links, 'connection')}: {plural(cover.literals, 'literal')} and "
+                f"{plural(cover.links - cover.literals, 'OR link')}."
+            ),
+        ),
     )
 
 
 def _saving(minimum: Minimum, alone: Sequence[Count]) -> str:
     apart = sum(count.terms for count in alone)
-    saved = apart - minimum.count
     most = "" if all(count.proven for count in alone) else "at most "
-    return (
-        f"Minimized one by one the outputs need {most}{plural(apart, 'term')}; together they need "
-        f"{minimum.count}. Sharing saves {most}{saved}."
+    saved = apart - minimum.count
+    first = (
+        f"Minimized one by one the outputs need {most}{plural(apart, 'term')}, together they need "
+        f"{minimum.count}"
     )
+    return f"{first}: sharing saves {most}{saved}." if saved else f"{first}: sharing saves nothing."

@@ -7,8 +7,8 @@ from typing import TYPE_CHECKING
 from pla.fitting.prices import alone_counts
 from pla.report.programming_table import programming_table
 from pla.report.sharing import output_table, term_table
-from pla.report.table import as_text, filled, one_line
-from pla.report.verdict import connections_sentence, count_sentences, polarity_sentence
+from pla.report.text import filled, table_text
+from pla.report.verdict import count_sentences, design_sentences, title
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
@@ -21,20 +21,18 @@ __all__ = ["terms_text"]
 
 
 def terms_text(behaviour: Behaviour, minimum: Minimum, polarities: Sequence[Polarity]) -> str:
-    """Programming table, term sharing, and how good the count is."""
-    title = one_line(behaviour.name)
-    if behaviour.revision:
-        title += f", revision {one_line(behaviour.revision)}"
-    sentences = [
-        " ".join(count_sentences(minimum)),
-        connections_sentence(minimum),
-        polarity_sentence(behaviour.output_names, minimum.complemented),
-    ]
-    tables = [
+    """Programming table, term sharing, how good the count is; no newline at the end.
+
+    Args:
+        behaviour: The design.
+        minimum: Its terms.
+        polarities: What was allowed to each output.
+    """
+    tables = (
         programming_table(behaviour, minimum),
         term_table(behaviour, minimum),
         output_table(behaviour, minimum, alone_counts(behaviour.function, polarities)),
-    ]
-    return "\n\n".join(
-        [title, *(as_text(t).rstrip() for t in tables), "\n".join(map(filled, sentences))]
     )
+    sentences = [" ".join(count_sentences(minimum)), *design_sentences(behaviour, minimum)]
+    verdict = "\n".join(map(filled, sentences))
+    return "\n\n".join([title(behaviour), *map(table_text, tables), verdict])

@@ -1,90 +1,98 @@
-"""How good a cover is and how that is known, in sentences."""
+"""What was asked and how good the answer is, in sentences."""
 
 from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
 from pla.report.notation import listed, plural
+from pla.report.text import one_line
 
 if TYPE_CHECKING:
-    from collections.abc import Sequence
+    from collections.abc import Iterator, Sequence
 
+    from pla.behaviour.model import Behaviour
     from pla.fuses.proof import Proof
     from pla.logic.minimize import Minimum
 
-__all__ = ["connections_sentence", "count_sentences", "polarity_sentence", "proof_sentence"]
+__all__ = ["count_sentences", "design_sentences", "proof_sentence", "title"]
 
 
-def count_sentences(minimum: Minimum) -> list[str]:
+def title(behaviour: Behaviour) -> str:
+    """Name and revision."""
+    revision = f", revision {one_line(behaviour.revision)}" if behaviour.revision else ""
+    return one_line(behaviour.name) + revision
+
+
+def count_sentences(minimum: Minimum) -> Iterator[str]:
     """Number of terms, lower bound, and by what the two are known to meet."""
-    count = plural(minimum.count, "product term")
+    count, bound = plural(minimum.count, "product term"), minimum.lower_bound
     if minimum.proven:
-        said = [
-            f"{count}. Lower bound {minimum.lower_bound}: proven, no smaller set of shared terms "
-            "does the job in the polarities that are allowed."
-        ]
-        if minimum.proven_by == "certificate":
-            said.append("The bound was checked in exact arithmetic (certificate).")
-        else:
-            said.append(
-                "The bound rests on the floating-point arithmetic of the integer-programming "
-                "solver (solver)."
-            )
-    else:
-        gap = minimum.count - minimum.lower_bound
-        said = [
-            f"{count}. Lower bound {minimum.lower_bound}: not proven smallest, the gap is {gap}. "
-            f"Sets of {minimum.lower_bound} to {minimum.count - 1} terms were neither found nor "
-            "ruled out."
-        ]
-    if minimum.clock:
-        said.append(
-            "The time limit cut the search short, so that another run may give another result."
+        yield (
+            f"{count}, and proven to be the fewest: the lower bound is {bound}, no smaller set of "
+            "shared terms will do in any of the polarities that are allowed."
         )
-    return said
+    else:
+        gap = minimum.count - bound
+        yield (
+            f"{count}, NOT proven to be the fewest: the lower bound is {bound}, which leaves a gap "
+            f"of {gap}. A smaller set was neither found nor ruled out."
+        )
+    if minimum.proven_by == "certificate":
+        yield "The bound was checked in exact arithmetic (proven by certificate)."
+    elif minimum.proven_by == "solver":
+        yield "The bound rests on the solver's floating-point arithmetic (proven by solver)."
+    if minimum.clock:
+        yield "The search was cut short by the clock: another run may give another answer."
 
 
-def connections_sentence(minimum: Minimum) -> str:
-    """Literals and OR links, and whether fewer are possible with as many terms."""
+def design_sentences(behaviour: Behaviour, minimum: Minimum) -> Iterator[str]:
+    """Connections, and the polarity of each output."""
+    yield _connections(minimum)
+    yield _polarity(behaviour.output_names, minimum.complemented)
+
+
+def _connections(minimum: Minimum) -> str:
     cover = minimum.cover
-    ors = cover.links - cover.literals
     first = (
         f"{plural(cover.links, 'connection')}: {plural(cover.literals, 'literal')} and "
-        f"{plural(ors, 'OR link')}"
+        f"{plural(cover.links - cover.literals, 'OR link')}"
     )
-    if minimum.connections == "all polarities":
-        return f"{first}; no set of so many terms has fewer, by the solver's word."
-    if minimum.connections == "these polarities":
-        return (
-            f"{first}; no set of so many terms in these polarities has fewer, by the solver's word."
-        )
-    return f"{first}; whether so many terms can do with fewer is not known."
+    terms = plural(minimum.count, "term")
+    if minimum.connections is None:
+        return f"{first}; whether {terms} can do with fewer is not known."
+    where = " in these polarities" if minimum.connections == "these polarities" else ""
+    return f"{first}; by the solver's word no set of {terms}{where} has fewer."
 
 
-def polarity_sentence(names: Sequence[str], complemented: Sequence[bool]) -> str:
-    """Which sums are complements."""
-    inverted = [name for name, c in zip(names, complemented, strict=True) if c]
-    if not inverted:
+def _polarity(names: Sequence[str], complemented: Sequence[bool]) -> str:
+    parts = {
+        value: [name for name, c in zip(names, complemented, strict=True) if c == value]
+        for value in (False, True)
+    }
+    if not parts[True]:
         return "Every sum is the asserted function itself (T)."
-    if len(inverted) == len(names):
+    if not parts[False]:
         return "Every sum is the complement of the asserted function (C)."
-    which = listed(inverted)
-    are = "is the complement" if len(inverted) == 1 else "are complements"
-    sums = "The sum of" if len(inverted) == 1 else "The sums of"
-    return f"{sums} {which} {are} of the asserted function (C), all others are the function (T)."
+    return (
+        f"Sums that are the asserted function (T): {listed(parts[False])}; "
+        f"its complement (C): {listed(parts[True])}."
+    )
 
 
 def proof_sentence(proof: Proof) -> str:
     """How the fuse file was compared with the design."""
     if proof.method == "simulation":
         how = (
-            f"the array it describes was simulated from pin to pin for all {proof.cases} input "
-            "combinations"
+            "the array that it describes was simulated from pin to pin for "
+            f"{'all ' if proof.cases > 1 else ''}{plural(proof.cases, 'input combination')}"
         )
     else:
-        how = f"the terms it describes were compared with the design as cubes, {proof.cases} in all"
+        how = (
+            "the terms that it describes were compared with the design as cubes, "
+            f"{plural(proof.cases, 'cube')} in all"
+        )
     verdict = "equal to" if proof.equal else "NOT equal to"
     return (
-        f"The fuse file was read back from its own bytes, and {how}: {verdict} the design wherever "
-        "the design says 0 or 1."
+        f"The fuse file was read back from its own bytes, and {how}: it is {verdict} the design "
+        "wherever the design demands 0 or 1."
     )

@@ -1,0 +1,163 @@
+"""The don't-care audit as tables."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+from pla.logic import algebra
+from pla.report.notation import case, groups_of, plural
+from pla.report.table import Table
+
+if TYPE_CHECKING:
+    from collections.abc import Iterator, Sequence
+
+    from pla.behaviour.model import Behaviour
+    from pla.fitting.prices import SafetyPrice
+    from pla.report.audit import Settled, Together
+
+__all__ = ["detail_table", "summary_table", "together_table"]
+
+_REASONS = {
+    "never": "impossible",
+    "others": "others",
+    "x": "x in a row",
+    "dont_care": "dont_care",
+    "elsewhere": "elsewhere",
+}
+
+
+def summary_table(
+    behaviour: Behaviour, found: Sequence[Settled], prices: Sequence[SafetyPrice], count: int
+) -> Table:
+    """For each output how many combinations are open, and what became of them.
+
+    Args:
+        behaviour: The design.
+        found: What `pla.report.audit.audit` found.
+        prices: What demanded values cost.
+        count: Terms of the design as it is.
+    """
+    return Table(
+        "Don't-care audit",
+        ("output", "left open by", "combinations", "will be 1", "will be 0"),
+        tuple(_summary_rows(behaviour, found)),
+        aligned="llrrr",
+        lead=(
+            (
+                "Don't cares are freedom, not safety. Where the design leaves an output open, the "
+                "minimizer took whatever saves terms, and the part will really do this. All values "
+                "are asserted values."
+            ),
+        ),
+        remarks=tuple(_remarks(behaviour, found, prices, count)),
+        repeated=1,
+    )
+
+
+def _summary_rows(
+    behaviour: Behaviour, found: Sequence[Settled]
+) -> Iterator[tuple[str, str, str, str, str]]:
+    impossible = algebra.size(behaviour.never)
+    for j, output in enumerate(behaviour.outputs):
+        own = [s for s in found if s.output == j]
+        if output.impossible is not None and impossible:
+            size = str(impossible)
+            demanded = (size, "0") if output.impossible else ("0", size)
+            yield output.name, f"impossible, demanded {output.impossible}", size, *demanded
+        for reason in dict.fromkeys(s.reason for s in own):
+            sizes = [sum(s.size for s in own if (s.reason, s.value) == (reason, v)) for v in (0, 1)]
+            yield output.name, _REASONS[reason], str(sum(sizes)), str(sizes[1]), str(sizes[0])
+        if not own and (output.impossible is None or not impossible):
+            yield output.name, "nothing", "0", "0", "0"
+
+
+def _remarks(
+    behaviour: Behaviour, found: Sequence[Settled], prices: Sequence[SafetyPrice], count: int
+) -> Iterator[str]:
+    if not found:
+        yield "No output is left open anywhere: all that the part does is demanded by the design."
+    for price in prices:
+        yield _price(behaviour.outputs[price.output].name, price, count)
+
+
+def _price(name: str, price: SafetyPrice, count: int) -> str:
+    free, cost = price.freed, count - price.freed.terms
+    if cost > 0:
+        costs = f"costs {plural(cost, 'term')}" if free.proven else f"costs {cost} or more terms"
+    else:
+        costs = "costs no term" if free.proven else "costs no term as far as is known"
+    least = "" if free.proven else "at most "
+    return (
+        f"impossible = {price.demanded} of {name} {costs}: the design has {count}, and would have "
+        f"{least}{free.terms} if {name} did not care about impossible inputs."
+    )
+
+
+def detail_table(behaviour: Behaviour, found: Sequence[Settled]) -> Table:
+    """Every open combination of every output once."""
+    groups = groups_of(behaviour.input_names)
+    n = len(behaviour.inputs)
+    return Table(
+        "Don't cares one by one",
+        ("output", "left open by", "will be", "combinations", "at inputs"),
+        tuple(
+            (
+                behaviour.outputs[settled.output].name,
+                _REASONS[settled.reason],
+                str(settled.value),
+                str(1 << (n - cube.literals)),
+                case(cube, groups),
+            )
+            for settled in found
+            for cube in settled.cubes
+        ),
+        aligned="lllrl",
+        lead=(_READING,) if found else ("There are none.",),
+        wrapped=(4,),
+        repeated=3,
+    )
+
+
+_READING = (
+    "Signals that are not named may have any value. Numbers and ranges are those of the whole bus; "
+    "in 0b… a - stands for either value."
+)
+
+
+def together_table(behaviour: Behaviour, together: Sequence[Together] | None) -> Table | None:
+    """What all outputs do at impossible inputs, side by side; ``None`` if nothing is impossible.
+
+    Args:
+        behaviour: The design.
+        together: What `pla.report.audit.impossible_together` found.
+    """
+    title = "Impossible inputs, all outputs"
+    groups, outputs = groups_of(behaviour.input_names), groups_of(behaviour.output_names)
+    headings = ("at inputs", *(group.name for group in outputs))
+    aligned = "l" * len(headings)
+    if together is None:
+        remark = (
+            "Left out: the outputs change too often among the impossible inputs to be listed side "
+            "by side. Each output by itself is listed above."
+        )
+        return Table(title, headings, (), aligned, lead=(remark,))
+    if not together:
+        return None
+    rows = []
+    for entry in together:
+        bits = "".join(map(str, entry.values))
+        shown = (bits[g.first : g.first + g.size] for g in outputs)
+        rows.append(
+            (
+                case(entry.cube, groups),
+                *(f"0b{b}" if g.bits else b for g, b in zip(outputs, shown, strict=True)),
+            )
+        )
+    return Table(
+        title,
+        headings,
+        tuple(rows),
+        aligned,
+        lead=("The whole picture, demanded values included: what to expect in a test.",),
+        wrapped=(0,),
+    )
