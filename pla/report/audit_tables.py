@@ -37,10 +37,12 @@ def summary_table(
         prices: What demanded values cost.
         count: Terms of the design as it is.
     """
+    demanded = [o for o in behaviour.outputs if o.impossible is not None]
+    settled = len(behaviour.never) and demanded
     return Table(
         "Don't-care audit",
         ("output", "left open by", "combinations", "will be 1", "will be 0"),
-        tuple(_summary_rows(behaviour, found)),
+        tuple(_summary_rows(behaviour, found)) if found or settled else (),
         aligned="llrrr",
         lead=(
             (

@@ -16,21 +16,22 @@ __all__ = ["CAUTIONS", "label"]
 CAUTIONS = (
     (
         "A programmable array is no safety device. Where a fault can hurt someone (interlocks, "
-        "heaters, anything that moves) there must be a hard-wired cut-out that does not depend on the "
-        "array and brings the work to rest by itself."
+        "heaters, anything that moves) there must be a hard-wired cut-out that does not depend on "
+        "the array and brings the work to rest by itself."
     ),
     (
-        "Local codes, and the practice of those licensed or qualified for the work, take precedence "
-        "over anything said here."
+        "Local codes, and the practice of those licensed or qualified for the work, take "
+        "precedence over anything said here."
     ),
     (
         "Test a programmed part with the load disconnected: every output in both states, and the "
-        "inputs that should never occur as well. Broken wires and worn switches make the impossible "
-        "happen; the don't-care audit says what the outputs do then."
+        "inputs that should never occur as well. Broken wires and worn switches make the "
+        "impossible happen; the don't-care audit says what the outputs do then."
     ),
     (
         "The proof compares the fuses with the design by way of the device file. It cannot know "
-        "whether that file describes the part in your hand, or whether the design is what you meant."
+        "whether that file describes the part in your hand, or whether the design is what you "
+        "meant."
     ),
 )
 

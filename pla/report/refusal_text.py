@@ -6,7 +6,6 @@ from typing import TYPE_CHECKING
 
 from pla.fitting.prices import counts_without
 from pla.report.budget import budget_table
-from pla.report.notation import listed
 from pla.report.sharing import shares
 from pla.report.table import Table
 from pla.report.text import filled, table_text
@@ -77,8 +76,8 @@ def _freed(count: int, without: Count) -> str:
 def _enough(names: Sequence[str]) -> str:
     if not names:
         return "Leaving out a single output is not enough."
-    which = names[0] if len(names) == 1 else f"any one of {listed(names)}"
-    return f"Without {which} the terms of the others would fit."
+    either = " or ".join([", ".join(names[:-1]), names[-1]] if len(names) > 1 else names)
+    return f"Leaving out {either} would be enough for the terms."
 
 
 def _input_costs(fit: Fit, minimum: Minimum) -> Table:

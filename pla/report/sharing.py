@@ -93,8 +93,8 @@ def output_table(behaviour: Behaviour, minimum: Minimum, alone: Sequence[Count])
         wrapped=(6,),
         remarks=(
             (
-                "Sum T: the asserted function; C: its complement. Private terms are in no other sum. "
-                "Alone: what the output would need if it were minimized by itself."
+                "Sum T: the asserted function; C: its complement. Private terms are in no other "
+                "sum. Alone: what the output would need if it were minimized by itself."
             ),
             _saving(minimum, alone),
             (
