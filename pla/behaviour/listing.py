@@ -29,6 +29,7 @@ Values = tuple[int, int, int]
 Reason = Literal["never", "others", "x", "dont_care", "elsewhere"]
 
 _MOST_SHOWN = 10
+_MOST_CUBES = 1 << 18
 
 
 @dataclass(frozen=True, slots=True)
@@ -159,7 +160,16 @@ def resolve(
     _warn_of_idle_rows(listing, owner, diagnostics)
     values = np.array([row.values for row in listing.rows], dtype=np.uint64).reshape(-1, 3)
     good = _report_conflicts(listing, cubes, owner, values, signals, diagnostics)
-    rest = algebra.complement(cubes.feeding(1) + never.feeding(1))
+    try:
+        rest = algebra.complement(cubes.feeding(1) + never.feeding(1), _MOST_CUBES)
+    except algebra.TooManyCubesError:
+        diagnostics.error(
+            "LISTING-LARGE",
+            f"all input combinations that are not listed need more than {_MOST_CUBES} cubes",
+            listing.where,
+            "look at fewer inputs at once, or split the outputs over several descriptions",
+        )
+        return None
     if listing.others is None and len(rest):
         _report_open(listing, rest, signals, diagnostics)
         good = False

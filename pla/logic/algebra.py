@@ -10,10 +10,12 @@ from __future__ import annotations
 
 import numpy as np
 
-from pla.logic import points
+from pla.logic import points, small
 from pla.logic.cubes import Cover, Cube
+from pla.logic.small import TooManyCubesError
 
 __all__ = [
+    "TooManyCubesError",
     "compact",
     "complement",
     "contains_cube",
@@ -81,9 +83,16 @@ def difference(a: Cover, b: Cover) -> Cover:
     return Cover.joined(a.n_inputs, parts).absorbed()
 
 
-def complement(cover: Cover) -> Cover:
-    """Cubes whose union is every input combination outside `cover`."""
-    return _complement(cover.feeding(1).absorbed())
+def complement(cover: Cover, most: int | None = None) -> Cover:
+    """Disjoint cubes whose union is every input combination outside `cover`.
+
+    Raises:
+        TooManyCubesError: If `most` is given and more cubes than that would be needed.
+    """
+    found = _complement(cover.feeding(1).absorbed(), most)
+    if most is not None and len(found) > most:
+        raise TooManyCubesError
+    return found
 
 
 def support(*covers: Cover) -> int:
@@ -209,34 +218,27 @@ def _uncovered(cover: Cover) -> int | None:
     return None
 
 
-def _complement(cover: Cover) -> Cover:
+def _complement(cover: Cover, most: int | None = None) -> Cover:
     """Disjoint cubes that hold every input combination outside `cover`."""
     n = cover.n_inputs
     if not len(cover):
         return Cover.universe(n)
     if ((cover.ones | cover.zeros) == 0).any():
         return Cover.of(n)
+    if len(cover) <= small.MOST:
+        listed = list(zip(cover.ones.tolist(), cover.zeros.tolist(), strict=True))
+        return Cover.of(n, [Cube(*masks) for masks in small.complement_masks(listed, most)])
     bits = points.support(cover)
     if points.pays(bits, cover):
         return points.cover_of_points(n, ~points.points_of_cover(cover, bits), bits)
-    if len(cover) == 1:
-        (cube,) = cover
-        parts = []
-        done_ones, done_zeros = 0, 0
-        for i in range(n):
-            bit = 1 << i
-            if cube.ones & bit:
-                parts.append(Cube(done_ones, done_zeros | bit))
-                done_ones |= bit
-            elif cube.zeros & bit:
-                parts.append(Cube(done_ones | bit, done_zeros))
-                done_zeros |= bit
-        return Cover.of(n, parts)
     variable = _split_variable(cover)
     if variable is None:  # pragma: no cover - handled by the universal cube above
         return Cover.of(n)
-    low, high = (_complement(half.merged()) for half in _halves(cover, variable))
-    return _merge_halves(low, high, variable)
+    low, high = (_complement(half.merged(), most) for half in _halves(cover, variable))
+    found = _merge_halves(low, high, variable)
+    if most is not None and len(found) > most:
+        raise TooManyCubesError
+    return found
 
 
 def _merge_halves(low: Cover, high: Cover, variable: int) -> Cover:

@@ -38,9 +38,17 @@ def count_outputs(behaviour: Behaviour) -> tuple[OutputCounts, ...]:
     total = 1 << function.n_inputs
     found = []
     for j in range(function.n_outputs):
-        one = algebra.size(function.on.of_output(j))
-        zero = algebra.size(function.off.of_output(j))
-        sizes = [(s.reason, algebra.size(s.cubes.of_output(j))) for s in behaviour.dont_cares]
-        reasons = tuple((reason, size) for reason, size in sizes if size)
-        found.append(OutputCounts(one, zero, total - one - zero, total, reasons))
+        covers = [function.on.of_output(j), function.off.of_output(j)]
+        covers += [source.cubes.of_output(j) for source in behaviour.dont_cares]
+        # They part the input combinations, so the one with most cubes need not be counted.
+        lengths = [len(cover) for cover in covers]
+        longest = lengths.index(max(lengths))
+        sizes = [0 if i == longest else algebra.size(cover) for i, cover in enumerate(covers)]
+        sizes[longest] = total - sum(sizes)
+        reasons = tuple(
+            (source.reason, size)
+            for source, size in zip(behaviour.dont_cares, sizes[2:], strict=True)
+            if size
+        )
+        found.append(OutputCounts(sizes[0], sizes[1], sum(sizes[2:]), total, reasons))
     return tuple(found)

@@ -8,7 +8,7 @@ import pytest
 from hypothesis import HealthCheck, given, settings
 from hypothesis import strategies as st
 
-from pla.logic import algebra, points
+from pla.logic import algebra, points, small
 from pla.logic import cubes as cubes_module
 from pla.logic.cubes import Cover, Cube
 
@@ -58,9 +58,9 @@ def pairs(draw, most=14):
     return draw(covers(n, most)), draw(covers(n, most))
 
 
-@pytest.fixture(params=["recursive", "points"], autouse=True)
+@pytest.fixture(params=["recursive", "points", "integers"], autouse=True)
 def road(request, monkeypatch):
-    """Both roads to every result: recursion on cubes, and whole arrays of points."""
+    """All roads to a result: recursion on covers, arrays of points, recursion on integers."""
     if request.param == "points":
         monkeypatch.setattr(points, "_FEWEST_CUBES", 1)
         monkeypatch.setattr(points, "_POINTS_FOR_A_CUBE", 1 << 20)
@@ -69,12 +69,14 @@ def road(request, monkeypatch):
     else:
         monkeypatch.setattr(points, "WIDEST", -1)
         monkeypatch.setattr(cubes_module, "_KIND_COST", 1 << 30)
+    if request.param != "integers":
+        monkeypatch.setattr(small, "MOST", -1)
     return request.param
 
 
 # The fixture sets constants for the whole test and holds nothing of an example.
 relaxed = settings(
-    max_examples=60,
+    max_examples=40,
     deadline=None,
     suppress_health_check=[HealthCheck.function_scoped_fixture],
 )
@@ -231,3 +233,22 @@ def test_parity_of_eight():
     assert all(cube.literals == 8 for cube in even)
     assert algebra.size(odd) == 128
     assert algebra.find_common(odd, even) is None
+
+
+@relaxed
+@given(covers(6), st.integers(0, 20))
+def test_complement_with_a_limit(cover, most):
+    whole = algebra.complement(cover)
+    if len(whole) <= most:
+        assert algebra.complement(cover, most) == whole
+    else:
+        with pytest.raises(algebra.TooManyCubesError):
+            algebra.complement(cover, most)
+
+
+def test_complement_of_many_independent_terms_is_refused_soon():
+    """The complement of k terms of 3 literals, none shared, has 3^k disjoint cubes."""
+    terms = [Cube(7 << 3 * k, 0) for k in range(21)]
+    assert len(algebra.complement(Cover.of(63, terms[:7]))) == 3**7
+    with pytest.raises(algebra.TooManyCubesError):
+        algebra.complement(Cover.of(63, terms), 5000)
