@@ -21,13 +21,25 @@ class Effort:
         nodes: Branching nodes of one integer program of a thousand rows and columns.
         seconds: The safety net.
         clock: Whether the safety net cut in: the answer may then not repeat.
+        reserve: Share of the work that is kept back for the first complete answer; used once.
     """
 
-    work: float = 1_000_000.0
+    work: float = 1_600_000.0
     nodes: int = 1_500
     seconds: float = 600.0
     clock: bool = False
+    reserve: float = 0.5
     _started: float = field(default_factory=time.monotonic)
+
+    def __post_init__(self) -> None:
+        self.reserve *= self.work
+        self.work -= self.reserve
+
+    def renew(self) -> bool:
+        """Turn to the reserve; whether there was any."""
+        had = self.reserve > 0 and not self.clock
+        self.work, self.reserve = self.work + self.reserve, 0.0
+        return had
 
     def spend(self, iterations: int, size: int, *, clock: bool = False) -> None:
         self.work -= (iterations + 1) * size / 1000

@@ -59,6 +59,9 @@ class LazyProgram:
     def exhausted(self) -> bool:
         return self._effort.exhausted
 
+    def renew(self) -> bool:
+        return self._effort.renew()
+
     def relax(self, decisions: Decisions) -> Relaxed:
         relaxed = self._solve(decisions)
         for _ in range(ROUNDS):
@@ -92,7 +95,7 @@ class LazyProgram:
     def _solve(self, decisions: Decisions) -> Relaxed:
         before = self._relaxation.work
         relaxed = self._relaxation.solve(decisions)
-        self._effort.spend(self._relaxation.work - before, len(self._rows) + 1000)
+        self._effort.spend(self._relaxation.work - before, len(self._rows) + len(self._primes))
         return relaxed
 
     def _active(self, decisions: Decisions) -> list[int]:
@@ -115,6 +118,7 @@ class LazyProgram:
             covered = np.zeros(self._required[bit].shape)
             for p in self._feeding(used, bit):
                 covered[cube_slices(self._primes, p)] += relaxed.x[p]
+            self._effort.spend(len(used) + covered.size // 100, 400)
             gap = np.where(self._required[bit] & ~self._listed[bit], wanted - covered, 0.0)
             added |= self._add_worst(bit, gap)
         return added

@@ -8,7 +8,7 @@ so that the first complete cover is found soon and nearly every other branch is 
 from __future__ import annotations
 
 import heapq
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from itertools import count
 from typing import TYPE_CHECKING, Protocol
 
@@ -59,6 +59,9 @@ class Program(Protocol):
     def guess(self, decisions: tuple[bool, ...], relaxed: Relaxed) -> NDArray[np.intp]:
         """Some cover, quickly."""
 
+    def renew(self) -> bool:
+        """Allow the work that is kept back for a first answer; whether there was any."""
+
 
 @dataclass(frozen=True, slots=True, eq=False)
 class Selection:
@@ -89,8 +92,8 @@ def search_polarities(
         feasible: Cuts polarities that the device cannot give together.
     """
     root = program.relax(allowed)
-    guessed = _completed(allowed, root, feasible)
-    best = Selection(program.guess(guessed, root), guessed, 0, 0)
+    best = _first_guess(program, allowed, root, feasible)
+    answered = False
     exact_floor = trusted_floor = len(best.columns)
     order = count()
     queue = [(root.bound, 0, next(order), allowed, root)]
@@ -100,11 +103,14 @@ def search_polarities(
             break
         if program.exhausted:
             exact_floor, trusted_floor = min(exact_floor, bound), min(trusted_floor, bound)
+            if not answered and program.renew():
+                best = _answer(program, best)
             break
         open_outputs = [j for j in range(n_outputs) if decisions[j] is None]
         if not open_outputs:
             complete = tuple(bool(d) for d in decisions)
             settled = program.settle(complete, relaxed)
+            answered = True
             exact_floor = min(exact_floor, max(settled.exact, bound))
             trusted_floor = min(trusted_floor, max(settled.trusted, bound))
             if len(settled.columns) < len(best.columns):
@@ -125,6 +131,26 @@ def search_polarities(
     return Selection(
         best.columns, best.complemented, min(size, exact_floor), min(size, trusted_floor)
     )
+
+
+def _first_guess(
+    program: Program, allowed: Decisions, root: Relaxed, feasible: Feasible
+) -> Selection:
+    """The better of two quick covers: as the relaxation leans, and true wherever possible."""
+    true = replace(root, true=np.ones_like(root.true))
+    choices = dict.fromkeys(_completed(allowed, leaning, feasible) for leaning in (root, true))
+    covers = [(program.guess(choice, root), choice) for choice in choices]
+    columns, complemented = min(covers, key=lambda cover: len(cover[0]))
+    return Selection(columns, complemented, 0, 0)
+
+
+def _answer(program: Program, guessed: Selection) -> Selection:
+    """The guess's polarities settled as well as the rest of the budget allows."""
+    relaxed = program.relax(guessed.complemented)
+    settled = program.settle(guessed.complemented, relaxed)
+    if len(settled.columns) < len(guessed.columns):
+        return replace(guessed, columns=settled.columns)
+    return guessed
 
 
 def _completed(decisions: Decisions, relaxed: Relaxed, feasible: Feasible) -> tuple[bool, ...]:

@@ -72,6 +72,9 @@ class TableProgram:
     def exhausted(self) -> bool:
         return self._effort.exhausted
 
+    def renew(self) -> bool:
+        return self._effort.renew()
+
     def relax(self, decisions: Decisions) -> Relaxed:
         before = self._relaxation.work
         relaxed = self._relaxation.solve(decisions)
