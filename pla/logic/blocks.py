@@ -2,8 +2,12 @@
 
 Outputs that have no input in common never gain by sharing: where one output must be 0 whatever the
 inputs of the other are, the terms that both share are idle, so each needs as many of its own as if
-it were alone. The argument needs a combination at which each is 0; outputs that may be constant 1
-can share the term without literals, so they are kept in one block.
+it were alone. The argument needs a combination at which each is 0. An output that is nowhere 0 can
+be fed by terms of any others: it stays apart only from outputs that some combination leaves without
+a single term. (Between parts whose outputs each have such a combination, though not a common one,
+it still holds: a shared term has a literal of either part, so it is active at half of the
+combinations of each at most, and some pair of combinations has no more active terms, counted in
+both, than there are shared ones.)
 """
 
 from __future__ import annotations
@@ -13,6 +17,7 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
+from pla.logic import algebra
 from pla.logic.cubes import Cover
 from pla.logic.dense import MAX_DENSE_INPUTS, fed_outputs
 from pla.logic.function import Function
@@ -24,6 +29,10 @@ if TYPE_CHECKING:
     from pla.logic.phases import Polarity
 
 __all__ = ["Block", "blocks_of", "supports"]
+
+MAX_PAIRS = 1 << 24
+
+_Group = tuple[set[int], set[int]]
 
 
 @dataclass(frozen=True, slots=True)
@@ -45,13 +54,13 @@ class Block:
 
 
 def blocks_of(function: Function, polarities: Sequence[Polarity]) -> tuple[Block, ...]:
-    """Split a function into parts that share neither inputs nor the constant 1; in output order."""
+    """Split a function into parts whose minima add up to that of the whole; in output order."""
     support = supports(function)
     fed, unfed = (
         int(np.bitwise_or.reduce(c.outputs, initial=np.uint64(0)))
         for c in (function.on, function.off)
     )
-    groups: list[tuple[set[int], set[int]]] = []
+    groups: list[_Group] = []
     constant: set[int] = set()
     for j in range(function.n_outputs):
         may_be_one = (polarities[j].true and not unfed >> j & 1) or (
@@ -71,11 +80,46 @@ def blocks_of(function: Function, polarities: Sequence[Polarity]) -> tuple[Block
             else:
                 rest.append((other_inputs, other_outputs))
         groups = [*rest, (inputs, outputs)]
+    if constant:
+        groups = _fed_by_others(function, polarities, groups, constant)
     parts = [(tuple(sorted(i)), tuple(sorted(o))) for i, o in groups]
     return tuple(
         Block(inputs, outputs, _part(function, inputs, outputs))
         for inputs, outputs in sorted(parts, key=lambda part: part[1])
     )
+
+
+def _fed_by_others(
+    function: Function,
+    polarities: Sequence[Polarity],
+    groups: Sequence[_Group],
+    constant: set[int],
+) -> list[_Group]:
+    """Join the outputs that are nowhere 0 with the groups whose terms may together serve them."""
+    inputs: set[int] = set()
+    outputs: set[int] = set()
+    rest = []
+    for group in groups:
+        if group[1] & constant or not _may_idle(function, polarities, group[1]):
+            inputs |= group[0]
+            outputs |= group[1]
+        else:
+            rest.append(group)
+    return [*rest, (inputs, outputs)]
+
+
+def _may_idle(function: Function, polarities: Sequence[Polarity], outputs: set[int]) -> bool:
+    """Whether some combination is 0 for all of these outputs, whatever their polarities."""
+    common = Cover.universe(function.n_inputs)
+    for j in sorted(outputs):
+        true, complement = (polarities[j].true, polarities[j].complement)
+        off, on = function.off.of_output(j), function.on.of_output(j)
+        if (true and not len(on)) or (complement and not len(off)):
+            continue  # costs nothing in that polarity
+        if (true and complement) or len(common) * len(off if true else on) > MAX_PAIRS:
+            return False
+        common = algebra.intersection(common, off if true else on)
+    return len(common) > 0
 
 
 def supports(function: Function) -> tuple[tuple[int, ...], ...]:

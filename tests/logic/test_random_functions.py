@@ -10,15 +10,24 @@ from making import TRUE, function_of, random_table, wrong_points
 from oracles import cover_search
 from oracles.second_opinion import heuristic_covers
 
+from pla.logic import connections
 from pla.logic.cubes import Cover
 from pla.logic.minimize import minimize
 
-EVERY_DAY = 60
 ALL = 300
-BATCHES = [pytest.param(0, EVERY_DAY, id=f"first-{EVERY_DAY}")] + [
-    pytest.param(k, k + EVERY_DAY, id=f"from-{k}", marks=pytest.mark.slow)
-    for k in range(EVERY_DAY, ALL, EVERY_DAY)
-]
+
+
+def batches(every_day):
+    first = pytest.param(0, every_day, id=f"first-{every_day}")
+    rest = pytest.param(every_day, ALL, id=f"to-{ALL}", marks=pytest.mark.slow)
+    return pytest.mark.parametrize(("first", "end"), [first, rest])
+
+
+@pytest.fixture
+def _terms_only(monkeypatch):
+    """Leave the second objective out of larger blocks: it takes longest and has its own tests."""
+    monkeypatch.setattr(connections, "MAX_LINKS", 150)
+    monkeypatch.setattr(connections, "MAX_FREE_LINKS", 150)
 
 
 @cache
@@ -31,7 +40,8 @@ def table_number(seed):
     return random_table(rng, inputs, outputs, dont_care, ones, impossible)
 
 
-@pytest.mark.parametrize(("first", "end"), BATCHES)
+@batches(60)
+@pytest.mark.usefixtures("_terms_only")
 def test_random_functions_against_a_heuristic(first, end):
     tables = [table_number(seed) for seed in range(first, end)]
     references = heuristic_covers(tables)
@@ -48,12 +58,11 @@ def test_random_functions_against_a_heuristic(first, end):
             assert found.lower_bound <= len(other), seed
 
 
-@pytest.mark.parametrize(("first", "end"), BATCHES)
+@batches(16)
+@pytest.mark.usefixtures("_terms_only")
 def test_random_functions_with_free_polarity(first, end):
     for seed in range(first, end):
         table = table_number(seed)
-        if table.inputs == 7 and table.outputs > 3 and seed >= EVERY_DAY // 3:
-            continue  # takes long
         found = minimize(function_of(table))
         assert wrong_points(found.cover, found.complemented, table) == [], seed
         chosen = table.in_polarity(found.complemented)
