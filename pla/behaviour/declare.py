@@ -44,6 +44,7 @@ def _read_role(
             broken.add(name)
             continue
         if name in taken:
+            broken.add(name)
             section.error(
                 "NAME-TWICE",
                 f"{name!r} is declared as an input and as an output",

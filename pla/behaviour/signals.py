@@ -196,6 +196,7 @@ class Signals:
                 "NAME-ROLE",
                 f"{name!r} is an {signal.role}, expected an {role}",
                 did_you_mean(name, self.names(role)),
+                known=name in self.broken,
             )
         if high is None:
             if not signal.is_bus:

@@ -747,6 +747,11 @@ def test_uses_of_a_badly_declared_name_are_not_reported_too():
     assert [d.code for d in errors_of(text)] == ["WIDTH"]
 
 
+def test_uses_of_a_name_declared_twice_are_not_reported_too():
+    text = '[inputs]\na = 1\n[outputs]\na = 1\nf = 1\n[logic]\na = "f"\nf = "a"\n'
+    assert [d.code for d in errors_of(text)] == ["NAME-TWICE"]
+
+
 def test_unknown_names_get_a_proposal():
     (found,) = errors_of(lamp("strat"))
     assert found.hint == "did you mean 'start'?"

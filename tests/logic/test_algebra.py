@@ -249,6 +249,6 @@ def test_complement_with_a_limit(cover, most):
 def test_complement_of_many_independent_terms_is_refused_soon():
     """The complement of k terms of 3 literals, none shared, has 3^k disjoint cubes."""
     terms = [Cube(7 << 3 * k, 0) for k in range(21)]
-    assert len(algebra.complement(Cover.of(63, terms[:7]))) == 3**7
+    assert len(algebra.complement(Cover.of(63, terms[:5]))) == 3**5
     with pytest.raises(algebra.TooManyCubesError):
-        algebra.complement(Cover.of(63, terms), 5000)
+        algebra.complement(Cover.of(63, terms), 500)
