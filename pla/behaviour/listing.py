@@ -1,7 +1,8 @@
 """Who wins: from listed input combinations to what each output must do everywhere.
 
 Tables, minterm lists and address maps all come down to a `Listing`: rows of cubes with values, and
-what happens in all other places. ``[never]`` wins over rows, rows over ``others``.
+what happens in all other places. ``[never]`` wins over rows, rows over ``others``; so rows that
+differ only where inputs are impossible do not contradict each other.
 """
 
 from __future__ import annotations

@@ -368,6 +368,15 @@ def test_rows_inside_never_give_way_with_a_warning():
     assert (warning.code, warning.location.line) == ("ROW-IMPOSSIBLE", 11)
 
 
+def test_rows_that_differ_only_on_impossible_inputs_do_not_contradict_each_other():
+    behaviour = read(
+        "[inputs]\na = 1\nb = 1\n[outputs]\nf = 1\n[never]\nwhen = 'a b'\n"
+        "[[cases]]\nrows = '''\na b | f\n1 - | 1\n- 1 | 0\n0 0 | x'''\n"
+    )
+    check(behaviour, {"f": lambda a, b: "x" if a == b else a})
+    assert behaviour.warnings == ()
+
+
 def test_a_row_of_dont_cares_inside_never_is_fine():
     behaviour = read(
         "[inputs]\na = 1\nb = 1\n[outputs]\nf = 1\n[never]\nwhen = 'a b'\n"
