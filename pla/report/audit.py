@@ -17,7 +17,7 @@ if TYPE_CHECKING:
 
 __all__ = ["Settled", "Together", "asserted_on", "audit", "impossible_together"]
 
-_MOST_TOGETHER = 256
+_MOST_TOGETHER = 64
 
 
 @dataclass(frozen=True, slots=True)
@@ -64,7 +64,7 @@ def impossible_together(behaviour: Behaviour, minimum: Minimum) -> tuple[Togethe
     """What all outputs do at impossible inputs, demanded values included.
 
     Returns:
-        Every impossible combination exactly once; ``None`` where that takes more than 256 cubes.
+        Every impossible combination exactly once; ``None`` where that takes more than 64 cubes.
     """
     sums = [minimum.cover.of_output(j) for j in range(len(behaviour.outputs))]
     pieces: list[tuple[Cover, tuple[int, ...]]] = [(_disjoint(behaviour.never), ())]
@@ -89,7 +89,8 @@ def asserted_on(cubes: Cover, sum_: Cover, *, complemented: bool) -> Iterator[tu
         sum_: The terms of the output's sum.
         complemented: The sum is the complement of the asserted function.
     """
-    inside, outside = algebra.intersection(cubes, sum_), algebra.difference(cubes, sum_)
+    outside = algebra.difference(cubes, sum_)
+    inside = algebra.difference(cubes, outside)
     for value, held in enumerate((inside, outside) if complemented else (outside, inside)):
         if len(held):
             yield value, _disjoint(held)
@@ -106,10 +107,11 @@ def _settled(behaviour: Behaviour, minimum: Minimum) -> Iterator[Settled]:
 
 def _disjoint(cover: Cover) -> Cover:
     """The same combinations as cubes that have none in common, in order of their lowest one."""
-    apart = algebra.compact(algebra.complement(algebra.complement(cover)))
+    cubes: list[Cube] = list(cover)
+    if any(cover.take(slice(k, None)).meeting(cube).any() for k, cube in enumerate(cubes, 1)):
+        cubes = list(algebra.compact(algebra.complement(algebra.complement(cover))))
     n = cover.n_inputs
-    cubes: list[Cube] = sorted(apart, key=lambda cube: _order(cube, n))
-    return Cover.of(n, cubes)
+    return Cover.of(n, sorted(cubes, key=lambda cube: _order(cube, n)))
 
 
 def _order(cube: Cube, n_inputs: int) -> tuple[str, int]:

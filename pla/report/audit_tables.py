@@ -6,13 +6,14 @@ from typing import TYPE_CHECKING
 
 from pla.logic import algebra
 from pla.report.notation import case, groups_of, plural
-from pla.report.table import Table
+from pla.report.table import Strip, Table
 
 if TYPE_CHECKING:
     from collections.abc import Iterator, Sequence
 
     from pla.behaviour.model import Behaviour
     from pla.fitting.prices import SafetyPrice
+    from pla.logic.minimize import Minimum
     from pla.report.audit import Settled, Together
 
 __all__ = ["detail_table", "summary_table", "together_table"]
@@ -27,7 +28,7 @@ _REASONS = {
 
 
 def summary_table(
-    behaviour: Behaviour, found: Sequence[Settled], prices: Sequence[SafetyPrice], count: int
+    behaviour: Behaviour, found: Sequence[Settled], prices: Sequence[SafetyPrice], minimum: Minimum
 ) -> Table:
     """For each output how many combinations are open, and what became of them.
 
@@ -35,7 +36,7 @@ def summary_table(
         behaviour: The design.
         found: What `pla.report.audit.audit` found.
         prices: What demanded values cost.
-        count: Terms of the design as it is.
+        minimum: The terms of the design as it is.
     """
     demanded = [o for o in behaviour.outputs if o.impossible is not None]
     settled = len(behaviour.never) and demanded
@@ -51,7 +52,7 @@ def summary_table(
                 "are asserted values."
             ),
         ),
-        remarks=tuple(_remarks(behaviour, found, prices, count)),
+        remarks=tuple(_remarks(behaviour, found, prices, minimum)),
         repeated=1,
     )
 
@@ -74,24 +75,21 @@ def _summary_rows(
 
 
 def _remarks(
-    behaviour: Behaviour, found: Sequence[Settled], prices: Sequence[SafetyPrice], count: int
+    behaviour: Behaviour, found: Sequence[Settled], prices: Sequence[SafetyPrice], minimum: Minimum
 ) -> Iterator[str]:
     if not found:
         yield "No output is left open anywhere: all that the part does is demanded by the design."
     for price in prices:
-        yield _price(behaviour.outputs[price.output].name, price, count)
+        yield _price(behaviour.outputs[price.output].name, price, minimum)
 
 
-def _price(name: str, price: SafetyPrice, count: int) -> str:
-    free, cost = price.freed, count - price.freed.terms
-    if cost > 0:
-        costs = f"costs {plural(cost, 'term')}" if free.proven else f"costs {cost} or more terms"
-    else:
-        costs = "costs no term" if free.proven else "costs no term as far as is known"
-    least = "" if free.proven else "at most "
+def _price(name: str, price: SafetyPrice, minimum: Minimum) -> str:
+    free, cost = price.freed, minimum.count - price.freed.terms
+    costs = f"costs {plural(cost, 'term')}" if cost > 0 else "costs no term"
+    doubt = "" if free.proven and minimum.proven else " (best sets found, not proven smallest)"
     return (
-        f"impossible = {price.demanded} of {name} {costs}: the design has {count}, and would have "
-        f"{least}{free.terms} if {name} did not care about impossible inputs."
+        f"impossible = {price.demanded} of {name} {costs}: the design has {minimum.count}, and "
+        f"would have {free.terms} if {name} did not care about impossible inputs{doubt}."
     )
 
 
@@ -161,5 +159,10 @@ def together_table(behaviour: Behaviour, together: Sequence[Together] | None) ->
         tuple(rows),
         aligned,
         lead=("The whole picture, demanded values included: what to expect in a test.",),
+        strips=tuple(
+            Strip(column, group.name, ("",), 1)
+            for column, group in enumerate(outputs, 1)
+            if not group.bits
+        ),
         wrapped=(0,),
     )

@@ -58,7 +58,7 @@ def _tables(fit: Fit, plan: Plan, proven: ProvenFile) -> dict[str, list[Table]]:
         ],
         "budget": [budget_table(fit, proven.fuses)],
         "dont-care-audit": [
-            summary_table(behaviour, open_, prices, minimum.count),
+            summary_table(behaviour, open_, prices, minimum),
             *([detail_table(behaviour, open_)] if open_ else []),
             *([together] if together else []),
         ],

@@ -102,7 +102,8 @@ def _remarks(plan: Plan) -> Iterator[str]:
     if needless:
         yield (
             f"No output depends on {listed(needless)}: no term has a literal of "
-            f"{'it' if len(needless) == 1 else 'them'}. The pin still needs a defined level."
+            f"{'it, but its pin' if len(needless) == 1 else 'them, but each pin'} still needs a "
+            "defined level."
         )
     absent = [p.name for p in plan.inputs if p.pin is None]
     if absent:

@@ -144,7 +144,9 @@ def _columns(table: Table, *, upright: bool) -> Iterator[_Column]:
         head += _lines([mark for strip in close for mark in strip.marks], marked, upright=upright)
         for row, height in zip(table.under, heights, strict=True):
             head += _lines(row[columns], height, upright=upright)
-        yield _Column([*head, ""], [" ".join(row[columns]) for row in rows], align)
+        if table.under:
+            head.append("")
+        yield _Column(head, [" ".join(row[columns]) for row in rows], align)
         number = columns.stop
 
 
