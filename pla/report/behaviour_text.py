@@ -13,6 +13,9 @@ if TYPE_CHECKING:
 
 __all__ = ["behaviour_text"]
 
+MAX_PLAIN = 1 << 24
+"""Up to so many combinations numbers are shown as they are; above, as shares."""
+
 _FORMS = {
     "cases": "table",
     "minterms": "minterm list",
@@ -36,12 +39,14 @@ def behaviour_text(behaviour: Behaviour) -> str:
     if behaviour.revision:
         title += f", revision {behaviour.revision}"
     counts = count_outputs(behaviour)
+    total = counts[0].total
+    plain = total <= MAX_PLAIN
     rows = [
         [
             output.name,
             _described(output, behaviour.file),
-            *_shares(count),
-            ", ".join(_sources(count)),
+            *_shares(count, plain=plain),
+            ", ".join(_sources(count, plain=plain)),
         ]
         for output, count in zip(behaviour.outputs, counts, strict=True)
     ]
@@ -59,8 +64,9 @@ def behaviour_text(behaviour: Behaviour) -> str:
         f"  inputs   {len(behaviour.inputs):>2}  {_signals(behaviour.inputs)}",
         f"  outputs  {len(behaviour.outputs):>2}  {_signals(behaviour.outputs)}",
         "",
-        f"Input combinations that ask for 1, for 0 and for nothing, of {counts[0].total} in all;",
-        "each row is reduced to the smallest power of two that shows it exactly.",
+        f"Input combinations that ask for 1, for 0 and for nothing, of {total} in all"
+        + ("." if plain else ";"),
+        *([] if plain else ["each row is reduced to the smallest power of two that shows it."]),
         "",
         *(line.rstrip() for line in table.split("\n")),
         "",
@@ -80,15 +86,18 @@ def _warnings(behaviour: Behaviour) -> str:
     return "1 warning" if count == 1 else f"{count} warnings"
 
 
-def _shares(count: OutputCounts) -> Iterator[str]:
+def _shares(count: OutputCounts, *, plain: bool) -> Iterator[str]:
     numbers = [count.one, count.zero, count.free, count.total]
-    while not any(number & 1 for number in numbers):
+    while not plain and not any(number & 1 for number in numbers):
         numbers = [number >> 1 for number in numbers]
     return map(str, numbers)
 
 
-def _sources(count: OutputCounts) -> Iterator[str]:
+def _sources(count: OutputCounts, *, plain: bool) -> Iterator[str]:
     for reason, size in count.reasons:
+        if plain:
+            yield f"{_REASONS[reason]} {size}"
+            continue
         top, bottom = size, count.total
         while not (top | bottom) & 1:
             top, bottom = top >> 1, bottom >> 1

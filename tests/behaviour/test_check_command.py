@@ -29,6 +29,20 @@ def test_text(capsys):
     assert err == (GOLDEN / "dryer.err").read_text(encoding="utf-8")
 
 
+def test_many_inputs_are_shown_as_shares(capsys, tmp_path):
+    # 40 inputs: 1 where both bits are, a quarter; impossible where the first is without the other.
+    design = tmp_path / "wide.toml"
+    design.write_text(
+        "[inputs]\nbus = 40\n[outputs]\nf = 1\n[never]\n"
+        'when = ["bus[1] bus[0]\'"]\n[logic]\nf = "bus[1] bus[0]"\n',
+        encoding="utf-8",
+    )
+    assert run(["-q", "check", str(design)]) == 0
+    out = capsys.readouterr().out
+    assert f"of {1 << 40} in all;" in out
+    assert out.splitlines()[-3].split() == "f equation, line 8 1 2 1 4 impossible 1/4".split()
+
+
 def test_document(capsys):
     assert run(["check", "dryer.toml", "--json"]) == 0
     out, err = capsys.readouterr()
