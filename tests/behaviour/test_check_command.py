@@ -40,7 +40,18 @@ def test_many_inputs_are_shown_as_shares(capsys, tmp_path):
     assert run(["-q", "check", str(design)]) == 0
     out = capsys.readouterr().out
     assert f"of {1 << 40} in all;" in out
-    assert out.splitlines()[-3].split() == "f equation, line 8 1 2 1 4 impossible 1/4".split()
+    assert out.splitlines()[-3].split() == [
+        "f",
+        "equation,",
+        "line",
+        "8",
+        "1",
+        "2",
+        "1",
+        "4",
+        "impossible",
+        "1/4",
+    ]
 
 
 def test_document(capsys):
