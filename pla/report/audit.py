@@ -111,7 +111,8 @@ def _disjoint(cover: Cover) -> Cover:
     if any(cover.take(slice(k, None)).meeting(cube).any() for k, cube in enumerate(cubes, 1)):
         cubes = list(algebra.compact(algebra.complement(algebra.complement(cover))))
     n = cover.n_inputs
-    return Cover.of(n, sorted(cubes, key=lambda cube: _order(cube, n)))
+    ordered: list[Cube] = sorted(cubes, key=lambda cube: _order(cube, n))
+    return Cover.of(n, ordered)
 
 
 def _order(cube: Cube, n_inputs: int) -> tuple[str, int]:

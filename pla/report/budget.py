@@ -4,9 +4,12 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
+from pla.report.notation import plural
 from pla.report.table import Table
 
 if TYPE_CHECKING:
+    from collections.abc import Iterator
+
     from pla.device.model import Device
     from pla.fitting.model import Fit, Usage
     from pla.fuses.fusemap import FuseMap
@@ -25,8 +28,17 @@ def budget_table(fit: Fit, fuses: FuseMap | None = None) -> Table:
             _row("output cells", fit.outputs),
         ),
         aligned="lrrr",
-        remarks=() if fuses is None else (links_sentence(fit.device, fuses),),
+        remarks=tuple(_remarks(fit, fuses)),
     )
+
+
+def _remarks(fit: Fit, fuses: FuseMap | None) -> Iterator[str]:
+    idle = len(fit.behaviour.inputs) - fit.inputs.used
+    if idle and fit.minimum is not None:
+        counted = "is not counted" if idle == 1 else "are not counted"
+        yield f"{plural(idle, 'input')} that no term needs {counted}."
+    if fuses is not None:
+        yield links_sentence(fit.device, fuses)
 
 
 def links_sentence(device: Device, fuses: FuseMap) -> str:

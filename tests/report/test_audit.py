@@ -1,0 +1,198 @@
+"""The don't-care audit against every combination looked at by itself."""
+
+from __future__ import annotations
+
+import re
+import tempfile
+from pathlib import Path
+
+import pytest
+from hypothesis import given, settings
+from report_designs import asserted, designs, holds
+
+from pla.behaviour.reader import read_behaviour
+from pla.fitting.prices import Count, SafetyPrice
+from pla.logic.cubes import Cube
+from pla.logic.minimize import minimize
+from pla.report.audit import audit, impossible_together
+from pla.report.audit_tables import detail_table, summary_table, together_table
+from pla.report.notation import case, groups_of
+
+
+def read(design):
+    with tempfile.TemporaryDirectory() as folder:
+        return design.read(Path(folder))
+
+
+@settings(max_examples=60, deadline=None)
+@given(designs())
+def test_every_open_combination_is_listed_once_with_the_value_that_the_cover_gives(design):
+    behaviour, minimum = read(design)
+    found = audit(behaviour, minimum)
+    points = range(len(design.never))
+    for j, values in enumerate(design.values):
+        for p in points:
+            entries = [
+                (s.reason, s.value)
+                for s in found
+                if s.output == j
+                for cube in s.cubes
+                if holds(cube, p)
+            ]
+            expected = (values[p], asserted(minimum.cover, minimum.complemented, j, p))
+            assert entries == ([expected] if values[p] not in "01" else [])
+    for settled in found:
+        assert settled.size == sum(any(holds(cube, p) for cube in settled.cubes) for p in points)
+
+
+@settings(max_examples=60, deadline=None)
+@given(designs())
+def test_impossible_inputs_side_by_side(design):
+    behaviour, minimum = read(design)
+    together = impossible_together(behaviour, minimum)
+    assert together is not None
+    for p, impossible in enumerate(design.never):
+        entries = [t.values for t in together if holds(t.cube, p)]
+        expected = tuple(
+            asserted(minimum.cover, minimum.complemented, j, p) for j in range(len(design.values))
+        )
+        assert entries == ([expected] if impossible else [])
+
+
+@settings(max_examples=40, deadline=None)
+@given(designs())
+def test_what_the_tables_say_is_what_was_found(design):
+    behaviour, minimum = read(design)
+    found = audit(behaviour, minimum)
+    groups = groups_of(behaviour.input_names)
+    reasons = {"impossible": "never", "others": "others", "x in a row": "x"}
+    seen = set()
+    for name, reason, value, combinations, inputs in detail_table(behaviour, found).rows:
+        j = behaviour.output_names.index(name)
+        points = [p for p in range(len(design.never)) if matches(inputs, p, groups)]
+        assert len(points) == int(combinations)
+        for p in points:
+            assert design.values[j][p] == reasons[reason]
+            assert asserted(minimum.cover, minimum.complemented, j, p) == int(value)
+            assert (j, p) not in seen
+            seen.add((j, p))
+    assert seen == {
+        (j, p)
+        for j, values in enumerate(design.values)
+        for p, value in enumerate(values)
+        if value not in "01"
+    }
+    for name, reason, total, ones, zeros in summary_table(behaviour, found, (), minimum).rows:
+        assert int(total) == int(ones) + int(zeros)
+        own = design.values[behaviour.output_names.index(name)]
+        if reason in reasons:
+            assert int(total) == own.count(reasons[reason])
+
+
+def matches(text, point, groups):
+    """Whether a point is among the inputs that a line of the audit names."""
+    if text == "any":
+        return True
+    named = dict(part.split("=") for part in text.split(" "))
+    for group in groups:
+        if group.name not in named:
+            continue
+        value = 0
+        for k in range(group.size):
+            value = value << 1 | (point >> (group.first + k) & 1)
+        value <<= group.bits[-1] if group.bits else 0
+        said = named[group.name]
+        if said.startswith("0b"):
+            width = len(said) - 2
+            if not re.fullmatch(said[2:].replace("-", "[01]"), f"{value:0{width}b}"):
+                return False
+        else:
+            first, _, last = said.partition("..")
+            if not int(first, 0) <= value <= int(last or first, 0):
+                return False
+    return True
+
+
+BUSES = ("step[3]", "step[2]", "step[1]", "step[0]", "hatch", "addr[15]", "addr[14]", "addr[13]")
+
+
+@pytest.mark.parametrize(
+    ("cube", "text"),
+    [
+        pytest.param("--------", "any", id="all"),
+        pytest.param("1010----", "step=10", id="fixed bus"),
+        pytest.param("101-----", "step=10..11", id="range"),
+        pytest.param("1-1----0", "step=0b1-1- addr=0b--0-------------", id="scattered bits"),
+        pytest.param("----0---", "hatch=0", id="signal"),
+        pytest.param("-----110", "addr=0xC000..0xDFFF", id="part of an address"),
+        pytest.param("0000111-", "step=0 hatch=1 addr=0xC000..0xFFFF", id="several"),
+    ],
+)
+def test_cases_are_written_by_bus(cube, text):
+    assert case(Cube.parse(cube), groups_of(BUSES)) == text
+
+
+DRYER = """
+name = "Dryer"
+[inputs]
+step = 2
+[outputs]
+fan = {{ impossible = {impossible} }}
+[never]
+when = ["step == 3"]
+[logic]
+fan = "step == 1"
+"""
+
+
+def behaviour_of(tmp_path, text):
+    path = tmp_path / "design.toml"
+    path.write_text(text)
+    return read_behaviour(str(path))
+
+
+@pytest.mark.parametrize(
+    ("freed", "proven", "words"),
+    [
+        pytest.param(0, True, "costs 1 term: the design has 1, and would have 0", id="a term"),
+        pytest.param(1, True, "costs no term: the design has 1", id="nothing"),
+        pytest.param(0, False, "(best sets found, not proven smallest)", id="not proven"),
+    ],
+)
+def test_the_price_of_safety_is_told(tmp_path, freed, proven, words):
+    behaviour = behaviour_of(tmp_path, DRYER.format(impossible=0))
+    minimum = minimize(behaviour.function)
+    prices = (SafetyPrice(0, 0, Count(freed, proven)),)
+    table = summary_table(behaviour, audit(behaviour, minimum), prices, minimum)
+    assert any(words in remark for remark in table.remarks)
+    assert table.rows == (("fan", "impossible, demanded 0", "1", "0", "1"),)
+
+
+def test_a_design_without_freedom_says_so(tmp_path):
+    text = 'name = "Plain"\n[inputs]\na = 1\n[outputs]\nf = 1\n[logic]\nf = "a"\n'
+    behaviour = behaviour_of(tmp_path, text)
+    minimum = minimize(behaviour.function)
+    table = summary_table(behaviour, audit(behaviour, minimum), (), minimum)
+    assert table.rows == ()
+    assert "No output is left open anywhere" in table.remarks[0]
+    assert "Don't cares are freedom, not safety" in table.lead[0]
+    assert together_table(behaviour, impossible_together(behaviour, minimum)) is None
+
+
+def test_a_long_list_side_by_side_is_left_out_and_says_so(tmp_path):
+    names = [f"s{k}" for k in range(8)]
+    parity = " ⊕ ".join(names)  # 128 cubes, none of which can be joined with another
+    text = (
+        'name = "Parity"\n[inputs]\nbad = 1\n'
+        + "".join(f"{name} = 1\n" for name in names)
+        + '[outputs]\nf = 1\n[never]\nwhen = ["bad"]\n'
+        + f'[logic]\nf = "{parity}"\n'
+    )
+    behaviour = behaviour_of(tmp_path, text)
+    minimum = minimize(behaviour.function)
+    assert impossible_together(behaviour, minimum) is None
+    table = together_table(behaviour, None)
+    assert table is not None
+    assert table.rows == ()
+    assert "Left out" in table.lead[0]
+    assert sum(s.size for s in audit(behaviour, minimum)) == 256
