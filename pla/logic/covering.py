@@ -118,11 +118,11 @@ def reduce_to_core(matrix: Matrix, cost: NDArray[np.float64]) -> Core:
         matrix = matrix[without_row_dominance(matrix)]
         kept = without_column_dominance(matrix, cost[columns])
         matrix, columns = matrix[:, kept], columns[kept]
-        essential = np.unique(np.nonzero(matrix[matrix.sum(axis=1) == 1])[1])
+        essential = np.flatnonzero(matrix[matrix.sum(axis=1) == 1].any(axis=0))
         if len(essential):
             chosen.append(columns[essential])
             matrix = matrix[~matrix[:, essential].any(axis=1)]
-            open_ = np.setdiff1d(np.arange(len(columns)), essential)
+            open_ = np.delete(np.arange(len(columns)), essential)
             matrix, columns = matrix[:, open_], columns[open_]
         elif matrix.shape == before:
             break
