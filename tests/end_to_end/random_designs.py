@@ -65,18 +65,20 @@ class RandomDesign:
 
 def random_design(rng: random.Random, name: str = "random") -> RandomDesign:
     made = RandomDesign(
-        _signals(rng, rng.randint(1, 6), INPUT_NAMES, BUS_NAMES, outputs=False),
-        _signals(rng, rng.randint(1, 4), OUTPUT_NAMES, ["code"], outputs=True),
+        _signals(
+            rng, rng.choice([1, 2, 3, 4, 4, 5, 5, 6, 6, 6]), INPUT_NAMES, BUS_NAMES, outputs=False
+        ),
+        _signals(rng, rng.choice([1, 1, 2, 2, 3, 3, 4, 5]), OUTPUT_NAMES, ["code"], outputs=True),
     )
     fields = _fields(made.inputs)
     lines = [f'name = "{name}"', *_declarations(made)]
 
     conditions = []
     made.never = [False] * made.points
-    for _ in range(rng.choice([0, 0, 1, 2])):
+    for _ in range(rng.choice([0, 1, 1, 2])):
         text, where = _equation(rng, made, fields, {}, depth=2)
         excluded = [a or b for a, b in zip(made.never, where, strict=True)]
-        if not all(excluded):
+        if sum(excluded) <= 0.5 * made.points:
             made.never = excluded
             conditions.append(text)
     if conditions:
@@ -197,7 +199,7 @@ def _apart(rng, fields):
     """Some fields that share no bits, at least one."""
     chosen, used = [], set()
     for candidate in rng.sample(fields, len(fields)):
-        if not used & set(candidate.bits) and (not chosen or rng.random() < 0.8):
+        if not used & set(candidate.bits) and (not chosen or rng.random() < 0.9):
             chosen.append(candidate)
             used |= set(candidate.bits)
     return chosen
@@ -207,7 +209,7 @@ def _apart(rng, fields):
 
 
 def _cases(rng, made, fields, outputs):
-    columns = _apart(rng, fields)[:4]
+    columns = _apart(rng, fields)[:5]
     leaves = list(_leaves(rng, columns))
     values: dict[str, list[int | None]] = {
         name: [FREE] * made.points for signal in outputs for name in signal.names
@@ -253,7 +255,7 @@ def _leaves(rng, columns):
 
 def _partition(rng, column):
     everything = set(range(column.size))
-    if rng.random() < 0.25:
+    if rng.random() < 0.12:
         return [("-", everything)]
     if column.single:
         return [("0", {0}), ("1", {1})]
@@ -304,7 +306,7 @@ def _minterms(rng, made, output):
         of, bits = _toml(signal.name), signal.bits
     else:
         named = list(enumerate(made.input_names))
-        named = rng.sample(named, rng.randint(1, len(named)))
+        named = rng.sample(named, rng.randint((len(named) + 1) // 2, len(named)))
         of, bits = _toml([name for _, name in named]), [bit for bit, _ in named]
     number = _Field("", bits, False)
     kinds = rng.choice([["on", "others"], ["on", "dont_care", "others"], ["on", "off", "others"]])
@@ -347,7 +349,7 @@ def _equation(rng, made, fields, equated, depth):
 
 def _tree(rng, made, fields, equated, depth):
     """(text, how tightly it binds, value at every point)."""
-    if depth == 0 or rng.random() < 0.15:
+    if depth == 0 or rng.random() < 0.1:
         return _leaf(rng, made, fields, equated)
     kind = rng.choice([_OR, _OR, _XOR, _AND, _AND, _NOT])
     if kind == _NOT:
