@@ -12,7 +12,7 @@ from hypothesis import example, given, settings
 from hypothesis import strategies as st
 from making import COMPLEMENT, FREE, TRUE, function_of, random_table, wrong_points
 from oracles import cover_search
-from oracles.functions import Table, count_of_ones, parity
+from oracles.functions import Table, parity, symmetric
 
 from pla.logic import relaxation as relaxation_module
 from pla.logic import solver as solver_module
@@ -105,7 +105,7 @@ class Corrupted(solver_module.Solver):
 
 
 @given(programs(), st.lists(WEIGHTS, min_size=1, max_size=20))
-@example((count_of_ones(3).in_polarity([False, False]), [TRUE, TRUE], [(False, False)]), [1.0])
+@example((symmetric(3, (1, 2)), [TRUE], [(False,)]), [1.0])
 @settings(max_examples=80, deadline=None)
 @pytest.mark.filterwarnings("ignore:invalid value:RuntimeWarning")
 def test_the_bound_holds_with_any_dual_weights(case, weights):
@@ -117,6 +117,20 @@ def test_the_bound_holds_with_any_dual_weights(case, weights):
         for decisions in steps:
             bound = program.solve(decisions).bound
             assert 0 <= bound <= true_minimum(table, allowed, decisions)
+
+
+@pytest.mark.parametrize("seed", [1924, 935])
+def test_a_minimum_above_the_relaxed_bound_has_no_certificate(seed):
+    rng = random.Random(seed)
+    inputs, outputs = rng.randint(4, 6), rng.randint(1, 2)
+    table = random_table(rng, inputs, outputs, rng.choice((0, 0.2, 0.4)))
+    allowed = [TRUE] * outputs
+    found = minimize(function_of(table), allowed)
+    bound = relaxation_of(table, allowed).solve((False,) * outputs).bound
+    assert bound < found.count == found.lower_bound
+    assert found.proven_by == "solver"
+    if inputs < 6:
+        assert found.count == cover_search.fewest_terms(table)
 
 
 @pytest.mark.parametrize("seed", range(15))

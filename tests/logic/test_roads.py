@@ -99,7 +99,8 @@ def test_the_clock_says_that_it_cut_in():
     assert found.clock
 
 
-@pytest.mark.parametrize("seed", range(40))
+# At the last two the heuristic misses the minimum, so that a bound too high would show.
+@pytest.mark.parametrize("seed", [*range(40), 151, 454])
 def test_the_wide_road_is_complete_and_its_bound_holds(seed):
     table = sample(200 + seed, 4, 2)
     function = function_of(table)
