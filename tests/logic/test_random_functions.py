@@ -2,7 +2,9 @@
 
 from __future__ import annotations
 
+import math
 import random
+from dataclasses import replace
 from functools import cache
 
 import pytest
@@ -107,6 +109,24 @@ def test_tiny_functions_have_the_fewest_connections(seed):
     free = minimize(function)
     assert free.connections == "all polarities"
     assert free.cover.links == cover_search.fewest_connections_free(table, free.count)
+
+
+@pytest.mark.parametrize("seed", range(100))
+def test_connections_are_claimed_fewest_only_where_they_are(seed, monkeypatch):
+    # A program that gives back its start unchanged proves nothing.
+    genuine = connections.solve_integer
+
+    def idle(solver, start, *rest):
+        outcome = genuine(solver, start, *rest)
+        x = None if start is None else start.astype(int)
+        return replace(outcome, x=x, bound=-math.inf, optimal=False)
+
+    monkeypatch.setattr(connections, "solve_integer", idle)
+    table = tiny_table(seed)
+    for polarities in ([TRUE] * table.outputs, None):
+        found = minimize(function_of(table), polarities)
+        assert wrong_points(found.cover, found.complemented, table) == []
+        assert found.connections is None or not found.count
 
 
 @pytest.mark.parametrize("seed", range(12))

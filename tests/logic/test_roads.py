@@ -10,6 +10,7 @@ from making import COMPLEMENT, FREE, TRUE, cover_at, function_of, random_table, 
 from oracles import cover_search
 from oracles.functions import adder, count_of_ones, multiplier, parity, seven_segments, symmetric
 
+from pla.logic import lazy
 from pla.logic import minimize_block as block
 from pla.logic.algebra import complement
 from pla.logic.cubes import Cover
@@ -55,6 +56,17 @@ def test_rows_on_demand_agree_with_whole_tables(seed, monkeypatch):
         assert found.proven
         assert found.connections is None or not found.count
         assert found.primes == whole.primes
+
+
+@pytest.mark.parametrize("seed", range(20))
+@pytest.mark.usefixtures("_no_tables")
+def test_rows_that_only_the_integer_answer_misses_are_added(seed, monkeypatch):
+    # Without rounds of the relaxation, rows come from the covers that the integer programs give.
+    monkeypatch.setattr(lazy, "ROUNDS", 0)
+    monkeypatch.setattr(lazy, "ROWS_AT_ONCE", 2)
+    table = sample(500 + seed, 4, 2)
+    found = agree(table, [TRUE] * table.outputs, cover_search.fewest_terms(table))
+    assert found.proven
 
 
 @pytest.mark.parametrize(
