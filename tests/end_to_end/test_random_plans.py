@@ -6,6 +6,7 @@ program only the written file and the pin list of ``--json`` are used.
 
 import json
 import random
+import re
 from dataclasses import dataclass
 from pathlib import Path
 
@@ -71,6 +72,7 @@ def test_fuse_file_of_a_random_design_does_what_was_asked(seed, tmp_path, capsys
     assert document["reasons"] == []
     data = (tmp_path / "out" / "design.jed").read_bytes()
     check_fuse_file(case, document, read_transmission(data))
+    check_pin_list(case, document, data, (tmp_path / "out" / "pin-list.txt").read_text("utf-8"))
 
 
 def plan(case, folder, capsys):
@@ -151,6 +153,22 @@ def check_pins(case, pins):
         assert name in design.output_names or (name in design.input_names and pin in array.inputs)
     if len(design.input_names) <= len(array.inputs):
         assert set(pins) == {*design.input_names, *design.output_names}
+
+
+def check_pin_list(case, document, data, text):
+    """The table for people: every signal beside its pin; idle output pins do what it says."""
+    rows = {int(line.split()[0]): line for line in text.splitlines() if re.match(r" *\d+ ", line)}
+    assert list(rows) == list(range(1, case.array.pins + 1))
+    for name, pin in document["pins"].items():
+        words = rows[pin].split()
+        assert words[1] == name
+        assert words[2] == ("output" if name in case.design.output_names else "input")
+        assert words[3] == ("low" if case.design.active_low[name] else "high")
+    levels, _ = simulated(case, document["pins"], read_transmission(data).states)
+    always = {"low": 0, "high": (1 << 2 * case.design.points) - 1}
+    for pin in set(case.array.cells) - set(document["pins"].values()):
+        claimed = re.search(r"drives it (low|high)", rows[pin])
+        assert levels[pin] == always[claimed[1]]
 
 
 def check_terms(design, document, actual):
