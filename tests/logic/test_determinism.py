@@ -47,21 +47,20 @@ def all_answers():
     }
 
 
-def test_the_same_answer_again_and_in_other_processes():
+def test_the_same_answer_again_and_in_another_process():
     here = all_answers()
     assert all_answers() == here
     script = "import json, test_determinism as t; print(json.dumps(t.all_answers()))"
     folder = Path(__file__).parent
     paths = [str(folder), str(folder.parent), *sys.path]
-    for seed in ("1", "2"):
-        child = subprocess.run(
-            [sys.executable, "-c", f"import sys; sys.path[:0] = {paths!r}; {script}"],
-            capture_output=True,
-            text=True,
-            check=True,
-            env={"PYTHONHASHSEED": seed},
-        )
-        assert json.loads(child.stdout) == here
+    child = subprocess.run(
+        [sys.executable, "-c", f"import sys; sys.path[:0] = {paths!r}; {script}"],
+        capture_output=True,
+        text=True,
+        check=True,
+        env={"PYTHONHASHSEED": "1"},
+    )
+    assert json.loads(child.stdout) == here
 
 
 def shuffled(function, rng):

@@ -42,7 +42,7 @@ def table_number(seed):
     return random_table(rng, inputs, outputs, dont_care, ones, impossible)
 
 
-@batches(60)
+@batches(50)
 @pytest.mark.usefixtures("_terms_only")
 def test_random_functions_against_a_heuristic(first, end):
     tables = [table_number(seed) for seed in range(first, end)]
@@ -60,7 +60,7 @@ def test_random_functions_against_a_heuristic(first, end):
             assert found.lower_bound <= len(other), seed
 
 
-@batches(16)
+@batches(12)
 @pytest.mark.usefixtures("_terms_only")
 def test_random_functions_with_free_polarity(first, end):
     for seed in range(first, end):
@@ -79,7 +79,7 @@ def small_table(seed):
     return random_table(rng, inputs, outputs, rng.choice((0.0, 0.2, 0.5)), 0.5, impossible)
 
 
-@pytest.mark.parametrize("seed", range(120))
+@pytest.mark.parametrize("seed", range(80))
 def test_small_functions_against_exhaustive_search(seed):
     table = small_table(seed)
     function = function_of(table)
@@ -99,7 +99,7 @@ def tiny_table(seed):
     return random_table(rng, inputs, outputs, rng.choice((0.0, 0.2, 0.5)))
 
 
-@pytest.mark.parametrize("seed", range(200))
+@pytest.mark.parametrize("seed", range(120))
 def test_tiny_functions_have_the_fewest_connections(seed):
     table = tiny_table(seed)
     function = function_of(table)
@@ -111,7 +111,7 @@ def test_tiny_functions_have_the_fewest_connections(seed):
     assert free.cover.links == cover_search.fewest_connections_free(table, free.count)
 
 
-@pytest.mark.parametrize("seed", range(100))
+@pytest.mark.parametrize("seed", range(40))
 def test_connections_are_claimed_fewest_only_where_they_are(seed, monkeypatch):
     # A program that gives back its start unchanged proves nothing.
     genuine = connections.solve_integer
