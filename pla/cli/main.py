@@ -121,8 +121,19 @@ def run(args: list[str]) -> int:
         sys.stderr.close()
         return 0
     except Exception as problem:  # noqa: BLE001 - no traceback may reach a user
+        if _was_interrupted(problem):
+            click.echo("\ninterrupted", err=True)
+            return INTERRUPTED
         return _explain(problem, as_json=as_json)
     return result if isinstance(result, int) else 0
+
+
+def _was_interrupted(problem: BaseException) -> bool:
+    """Whether Ctrl-C is behind it: compiled libraries turn it into an error of their import."""
+    cause = problem.__cause__
+    while cause is not None and not isinstance(cause, KeyboardInterrupt):
+        cause = cause.__cause__
+    return cause is not None
 
 
 def _explain(problem: Exception, *, as_json: bool) -> int:

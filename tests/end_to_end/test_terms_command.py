@@ -150,3 +150,13 @@ def test_interrupted(capsys, monkeypatch):
 
     monkeypatch.setattr("pla.logic.minimize.minimize", pressed)
     assert call(capsys, "terms", CISTERN) == (130, "", "\ninterrupted\n")
+
+
+def test_interrupted_while_a_compiled_library_is_imported(capsys, monkeypatch):
+    """Such a library reports a key press as a failed import that it caused."""
+
+    def pressed(*_arguments, **_keywords):
+        raise ImportError("initialization failed") from KeyboardInterrupt()
+
+    monkeypatch.setattr("pla.logic.minimize.minimize", pressed)
+    assert call(capsys, "terms", CISTERN) == (130, "", "\ninterrupted\n")
