@@ -5,8 +5,8 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
-from pla.logic import algebra
 from pla.logic.cubes import Cover
+from pla.logic.partition import partition
 
 if TYPE_CHECKING:
     from collections.abc import Iterator
@@ -67,7 +67,7 @@ def impossible_together(behaviour: Behaviour, minimum: Minimum) -> tuple[Togethe
         Every impossible combination exactly once; ``None`` where that takes more than 64 cubes.
     """
     sums = [minimum.cover.of_output(j) for j in range(len(behaviour.outputs))]
-    pieces: list[tuple[Cover, tuple[int, ...]]] = [(_disjoint(behaviour.never), ())]
+    pieces: list[tuple[Cover, tuple[int, ...]]] = [(behaviour.never, ())]
     for sum_, complemented in zip(sums, minimum.complemented, strict=True):
         pieces = [
             (half, (*values, value))
@@ -89,11 +89,10 @@ def asserted_on(cubes: Cover, sum_: Cover, *, complemented: bool) -> Iterator[tu
         sum_: The terms of the output's sum.
         complemented: The sum is the complement of the asserted function.
     """
-    outside = algebra.difference(cubes, sum_)
-    inside = algebra.difference(cubes, outside)
+    inside, outside = partition(cubes, sum_)
     for value, held in enumerate((inside, outside) if complemented else (outside, inside)):
         if len(held):
-            yield value, _disjoint(held)
+            yield value, _ordered(held)
 
 
 def _settled(behaviour: Behaviour, minimum: Minimum) -> Iterator[Settled]:
@@ -105,14 +104,11 @@ def _settled(behaviour: Behaviour, minimum: Minimum) -> Iterator[Settled]:
                 yield Settled(j, source.reason, value, cubes)
 
 
-def _disjoint(cover: Cover) -> Cover:
-    """The same combinations as cubes that have none in common, in order of their lowest one."""
-    cubes: list[Cube] = list(cover)
-    if any(cover.take(slice(k, None)).meeting(cube).any() for k, cube in enumerate(cubes, 1)):
-        cubes = list(algebra.compact(algebra.complement(algebra.complement(cover))))
+def _ordered(cover: Cover) -> Cover:
+    """The same cubes in order of their lowest combination."""
     n = cover.n_inputs
-    ordered: list[Cube] = sorted(cubes, key=lambda cube: _order(cube, n))
-    return Cover.of(n, ordered)
+    cubes: list[Cube] = sorted(cover, key=lambda cube: _order(cube, n))
+    return Cover.of(n, cubes)
 
 
 def _order(cube: Cube, n_inputs: int) -> tuple[str, int]:
