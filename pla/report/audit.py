@@ -15,7 +15,7 @@ if TYPE_CHECKING:
     from pla.logic.cubes import Cube
     from pla.logic.minimize import Minimum
 
-__all__ = ["Settled", "Together", "asserted_on", "audit", "impossible_together"]
+__all__ = ["Settled", "Together", "asserted_on", "audit", "open_together"]
 
 _MOST_TOGETHER = 64
 
@@ -44,7 +44,7 @@ class Settled:
 
 @dataclass(frozen=True, slots=True)
 class Together:
-    """Impossible inputs at which no output changes.
+    """Open inputs at which no output changes.
 
     Attributes:
         cube: The inputs.
@@ -60,14 +60,18 @@ def audit(behaviour: Behaviour, minimum: Minimum) -> tuple[Settled, ...]:
     return tuple(_settled(behaviour, minimum))
 
 
-def impossible_together(behaviour: Behaviour, minimum: Minimum) -> tuple[Together, ...] | None:
-    """What all outputs do at impossible inputs, demanded values included.
+def open_together(behaviour: Behaviour, minimum: Minimum) -> tuple[Together, ...] | None:
+    """What all outputs do where inputs are impossible or any output is open.
 
     Returns:
-        Every impossible combination exactly once; ``None`` where that takes more than 64 cubes.
+        Every such combination exactly once, with demanded values as well; ``None`` where that
+        takes more than 64 cubes.
     """
+    open_ = Cover.joined(
+        len(behaviour.inputs), [behaviour.never, *(s.cubes for s in behaviour.dont_cares)]
+    )
     sums = [minimum.cover.of_output(j) for j in range(len(behaviour.outputs))]
-    pieces: list[tuple[Cover, tuple[int, ...]]] = [(behaviour.never, ())]
+    pieces: list[tuple[Cover, tuple[int, ...]]] = [(open_, ())]
     for sum_, complemented in zip(sums, minimum.complemented, strict=True):
         pieces = [
             (half, (*values, value))

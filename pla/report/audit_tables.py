@@ -125,20 +125,20 @@ _READING = (
 
 
 def together_table(behaviour: Behaviour, together: Sequence[Together] | None) -> Table | None:
-    """What all outputs do at impossible inputs, side by side; ``None`` if nothing is impossible.
+    """What all outputs do at open inputs, side by side; ``None`` if there are none.
 
     Args:
         behaviour: The design.
-        together: What `pla.report.audit.impossible_together` found.
+        together: What `pla.report.audit.open_together` found.
     """
-    title = "Impossible inputs, all outputs"
+    title = "Open inputs, all outputs"
     groups, outputs = groups_of(behaviour.input_names), groups_of(behaviour.output_names)
     headings = ("at inputs", *(group.name for group in outputs))
     aligned = "l" * len(headings)
     if together is None:
         remark = (
-            "Left out: the outputs change too often among the impossible inputs to be listed side "
-            "by side. Each output by itself is listed above."
+            "Left out: the outputs change too often among the open inputs to be listed side by "
+            "side. Each output by itself is listed above."
         )
         return Table(title, headings, (), aligned, lead=(remark,))
     if not together:
@@ -158,7 +158,12 @@ def together_table(behaviour: Behaviour, together: Sequence[Together] | None) ->
         headings,
         tuple(rows),
         aligned,
-        lead=("The whole picture, demanded values included: what to expect in a test.",),
+        lead=(
+            (
+                "Every input combination that is impossible, or at which some output is open, with "
+                "the values that are demanded there as well: what to expect in a test."
+            ),
+        ),
         strips=tuple(
             Strip(column, group.name, ("",), 1)
             for column, group in enumerate(outputs, 1)

@@ -5,7 +5,7 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from pla.fitting.prices import alone_counts, safety_prices
-from pla.report.audit import audit, impossible_together
+from pla.report.audit import audit, open_together
 from pla.report.audit_tables import detail_table, summary_table, together_table
 from pla.report.budget import budget_table
 from pla.report.pins import pin_list
@@ -47,7 +47,7 @@ def _tables(fit: Fit, plan: Plan, proven: ProvenFile) -> dict[str, list[Table]]:
     behaviour, minimum = plan.behaviour, plan.minimum
     polarities = [p for p in fit.polarities if p is not None]
     open_ = audit(behaviour, minimum)
-    together = together_table(behaviour, impossible_together(behaviour, minimum))
+    together = together_table(behaviour, open_together(behaviour, minimum))
     prices = safety_prices(behaviour, polarities)
     return {
         "pin-list": [pin_list(plan)],
