@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import contextlib
 import errno
 import os
 import shutil
@@ -14,7 +15,7 @@ from pla.errors import Diagnostic, InputError, Location
 if TYPE_CHECKING:
     from collections.abc import Mapping, Sequence
 
-__all__ = ["read_bytes", "write_folder"]
+__all__ = ["read_bytes", "refuse_existing", "write_folder"]
 
 _WHY = {
     errno.ENOSPC: "make room, or choose a folder on another disk",
@@ -55,13 +56,14 @@ def write_folder(
 ) -> tuple[str, ...]:
     """Write all files of a run into a folder: all of them, or none.
 
-    A new folder is made beside its place and gets its name by one rename when every file is on
-    the disk. Into an existing folder (only with `force`) the order is: every new file aside in a
-    folder within; the old `last` withdrawn; the others exchanged; the new `last` put in place. At
-    no moment, power cuts included, does an old fuse file stand beside new tables or the other way
-    round; what fails half way is undone in the opposite order. A file there that is not of this
-    run and ends as `last` does (the fuse file of another run) is not deleted but refused, for the
-    new tables would stand beside it. Other files stay as they are.
+    A new folder is made beside its place, with the folders above it that are missing, and gets its
+    name by one rename when every file is on the disk. Into an existing folder (only with `force`)
+    the order is: every new file aside in a folder within; the old `last` withdrawn; the others
+    exchanged; the new `last` put in place. At no moment, power cuts included, does an old fuse file
+    stand beside new tables or the other way round; what fails half way is undone in the opposite
+    order. A file there that is not of this run and ends as `last` does (the fuse file of another
+    run) is not deleted but refused, for the new tables would stand beside it. Other files stay as
+    they are.
 
     Args:
         target: The folder.
@@ -98,14 +100,29 @@ def write_folder(
     return tuple(str(place / name) for name in files)
 
 
+def refuse_existing(target: str, *, force: bool) -> None:
+    """Say before any work is done that a folder is in the way; `write_folder` looks again.
+
+    Raises:
+        InputError: If the target exists and is no folder, or is one and `force` is not given.
+    """
+    place = Path(target)
+    if os.path.lexists(place) and not (force and place.is_dir()):
+        raise _exists(place) if place.is_dir() else _no_folder(place)
+
+
 def _create(target: Path, files: Mapping[str, bytes], order: Sequence[str]) -> None:
     place = target.absolute()
     parent = place.parent
-    if not parent.is_dir():
-        message = f"the folder {parent} in which it shall be made does not exist"
-        raise _refused("NO-FOLDER", target, message, "make that folder first")
+    missing = [folder for folder in (parent, *parent.parents) if not os.path.lexists(folder)]
+    standing = parent if not missing else missing[-1].parent
+    if not standing.is_dir():
+        message = f"{standing}, in which it shall be made, is no folder"
+        raise _refused("NO-FOLDER", target, message, "choose another place")
     aside = _unused(parent, place.name)
     try:
+        for folder in reversed(missing):
+            folder.mkdir()
         aside.mkdir()
         _write_all(aside, files, order)
         try:
@@ -121,6 +138,10 @@ def _create(target: Path, files: Mapping[str, bytes], order: Sequence[str]) -> N
             raise
     finally:
         shutil.rmtree(aside, ignore_errors=True)
+        for folder in missing:
+            # Goes only if nothing came to stand in it.
+            with contextlib.suppress(OSError):
+                folder.rmdir()
 
 
 def _exchange(
@@ -200,8 +221,7 @@ def _check_existing(
     target: Path, files: Mapping[str, bytes], last: str | None, *, force: bool
 ) -> None:
     if not target.is_dir():
-        message = "exists and is no folder"
-        raise _refused("NOT-A-FOLDER", target, message, "choose another name for the folder")
+        raise _no_folder(target)
     if not force:
         raise _exists(target)
     there = sorted(target.iterdir())
@@ -256,6 +276,11 @@ def _reason(problem: BaseException) -> str:
 def _exists(target: Path) -> InputError:
     hint = "--force replaces the files of an earlier run in it"
     return _refused("FOLDER-EXISTS", target, "the folder exists already", hint)
+
+
+def _no_folder(target: Path) -> InputError:
+    hint = "choose another name for the folder"
+    return _refused("NOT-A-FOLDER", target, "exists and is no folder", hint)
 
 
 def _refused(code: str, target: Path | str, message: str, hint: str | None = None) -> InputError:

@@ -114,16 +114,15 @@ def run(args: list[str]) -> int:
     try:
         result = cli.main(args=args, prog_name="fuseplan", standalone_mode=False)
     except (click.Abort, KeyboardInterrupt):
-        click.echo("interrupted", err=True)
-        return INTERRUPTED
+        return _interrupted(as_json=as_json)
     except BrokenPipeError:
         # The reader of our output has gone (``| head``): not an error of ours.
         sys.stderr.close()
         return 0
     except Exception as problem:  # noqa: BLE001 - no traceback may reach a user
         if _was_interrupted(problem):
-            click.echo("\ninterrupted", err=True)
-            return INTERRUPTED
+            click.echo(err=True)  # off the line on which the terminal shows ^C
+            return _interrupted(as_json=as_json)
         return _explain(problem, as_json=as_json)
     return result if isinstance(result, int) else 0
 
@@ -134,6 +133,15 @@ def _was_interrupted(problem: BaseException) -> bool:
     while cause is not None and not isinstance(cause, KeyboardInterrupt):
         cause = cause.__cause__
     return cause is not None
+
+
+def _interrupted(*, as_json: bool) -> int:
+    from pla.errors import Diagnostic
+
+    if as_json:
+        emit_json({"errors": [Diagnostic("INTERRUPTED", "interrupted").as_json()]})
+    click.echo("interrupted", err=True)
+    return INTERRUPTED
 
 
 def _explain(problem: Exception, *, as_json: bool) -> int:

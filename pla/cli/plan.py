@@ -55,8 +55,10 @@ def command(
     """
     from pla.behaviour.reader import read_behaviour
     from pla.device.catalogue import find_device
+    from pla.files import refuse_existing
     from pla.fitting.fit import fit
 
+    refuse_existing(folder, force=force)
     behaviour = read_behaviour(design)
     array = find_device(device)
     show_diagnostics((*behaviour.warnings, *array.warnings))

@@ -60,8 +60,9 @@ def fuse_file(plan: Plan, name: str) -> ProvenFile:
 
 
 def fuse_file_name(behaviour: Behaviour) -> str:
-    """The design file's stem with the usual ending."""
-    return f"{Path(behaviour.file).stem}.jed"
+    """The design file's stem with the usual ending; ``design.jed`` for standard input."""
+    stem = "design" if behaviour.file == "-" else Path(behaviour.file).stem
+    return f"{stem}.jed"
 
 
 def _notes(plan: Plan) -> Iterator[str]:

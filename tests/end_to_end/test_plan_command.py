@@ -1,5 +1,6 @@
 """``fuseplan plan`` as the contract has it."""
 
+import io
 import shutil
 import signal
 import time
@@ -267,6 +268,30 @@ def test_nothing_is_left_when_the_proof_fails(tmp_path, out, capsys, monkeypatch
     assert list(tmp_path.iterdir()) == []
 
 
+def test_folders_above_are_made(tmp_path, capsys):
+    target = tmp_path / "a" / "b" / "c"
+    assert call(capsys, *plan(CISTERN, "shared-8x16x4", target))[0] == 0
+    assert (target / "cistern.jed").is_file()
+    assert [p.name for p in (tmp_path / "a").iterdir()] == ["b"]
+
+
+def test_an_existing_folder_is_refused_before_any_work(out, capsys, monkeypatch):
+    def busy(*_arguments, **_keywords):
+        raise AssertionError("minimized for nothing")
+
+    monkeypatch.setattr("pla.fitting.fit.minimize", busy)
+    out.mkdir()
+    code, found = call_json(capsys, *plan(CISTERN, "shared-8x16x4", out))
+    assert (code, [e["code"] for e in found["errors"]]) == (2, ["FOLDER-EXISTS"])
+
+
+def test_a_design_from_standard_input(out, capsys, monkeypatch):
+    text = Path(CISTERN).read_bytes()
+    monkeypatch.setattr("sys.stdin", io.TextIOWrapper(io.BytesIO(text)))
+    assert call(capsys, *plan("-", "shared-8x16x4", out))[0] == 0
+    assert (out / "design.jed").is_file()
+
+
 # --- wrong calls ---
 
 
@@ -283,7 +308,6 @@ def test_nothing_is_left_when_the_proof_fails(tmp_path, out, capsys, monkeypatch
         pytest.param(
             plan(CISTERN, "shared-8x16x4", "x", "--polarity", "up"), "true", id="polarity"
         ),
-        pytest.param(plan(CISTERN, "shared-8x16x4", "nowhere/x"), "nowhere", id="no-parent"),
         pytest.param(plan(CISTERN, "shared-8x16x4", ""), "folder", id="empty-folder"),
     ],
 )
@@ -332,6 +356,8 @@ def test_interrupted_between_two_steps(tmp_path, out, capsys, monkeypatch):
 
     monkeypatch.setattr("pla.files._sync_folder", pressed)
     assert call(capsys, *plan(CISTERN, "shared-8x16x4", out))[:2] == (130, "")
+    code, found = call_json(capsys, *plan(CISTERN, "shared-8x16x4", out))
+    assert (code, [e["code"] for e in found["errors"]]) == (130, ["INTERRUPTED"])
     assert list(tmp_path.iterdir()) == []
 
 

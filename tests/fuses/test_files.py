@@ -291,9 +291,8 @@ def test_file_system_that_cannot_sync_folders(tmp_path, monkeypatch):
         pytest.param(
             lambda p: p.joinpath("out").symlink_to("gone"), "out", "NOT-A-FOLDER", "is no folder"
         ),
-        pytest.param(lambda _: None, "no/out", "NO-FOLDER", "does not exist"),
         pytest.param(
-            lambda p: p.joinpath("no").write_bytes(b""), "no/out", "NO-FOLDER", "does not exist"
+            lambda p: p.joinpath("no").write_bytes(b""), "no/out", "NO-FOLDER", "is no folder"
         ),
         pytest.param(
             lambda p: p.joinpath("out", "report.md").mkdir(parents=True),
@@ -308,7 +307,7 @@ def test_file_system_that_cannot_sync_folders(tmp_path, monkeypatch):
             "other.JED in it would stand beside tables that belong to dryer.jed",
         ),
     ],
-    ids=["file", "dangling link", "no parent", "parent a file", "folder in it", "other fuse file"],
+    ids=["file", "dangling link", "parent a file", "folder in it", "other fuse file"],
 )
 def test_refused_with_force(tmp_path, make, target, code, words):
     make(tmp_path)
@@ -355,3 +354,17 @@ def test_unreadable(tmp_path, name, code):
     with pytest.raises(InputError) as caught:
         read_bytes(str(tmp_path / name))
     assert caught.value.diagnostics[0].code == code
+
+
+def test_folders_above_are_made_and_unmade(tmp_path, monkeypatch):
+    target = tmp_path / "a" / "b" / "out"
+    write_folder(str(target), {"report.md": b"new"})
+    assert (target / "report.md").read_bytes() == b"new"
+
+    def full(*_arguments):
+        raise OSError(errno.ENOSPC, "No space left on device")
+
+    monkeypatch.setattr("pla.files._sync_folder", full)
+    with pytest.raises(InputError):
+        write_folder(str(tmp_path / "c" / "d" / "out"), {"report.md": b"new"})
+    assert [path.name for path in tmp_path.iterdir()] == ["a"]
