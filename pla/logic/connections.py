@@ -29,9 +29,9 @@ if TYPE_CHECKING:
 
 __all__ = ["Connected", "fewest_connections", "without_superfluous_links"]
 
-MAX_LINKS = 3_000
-MAX_FREE_LINKS = 400
-MAX_NODES = 20
+MAX_LINKS = 2_000
+MAX_FREE_LINKS = 200
+MAX_NODES = 1
 
 
 @dataclass(frozen=True, slots=True, eq=False)

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -17,7 +18,7 @@ from pla.logic.cubes import Cover
 from pla.logic.dense import MAX_DENSE_INPUTS, coordinates, fed_outputs
 from pla.logic.lattice import dense_primes, lattice_bytes
 from pla.logic.lazy import LazyProgram
-from pla.logic.phases import phase_function, phases_of
+from pla.logic.phases import Polarity, phase_function, phases_of
 from pla.logic.search import search_polarities
 from pla.logic.selection import TableProgram, table_of
 from pla.logic.wide import minimize_wide
@@ -30,7 +31,7 @@ if TYPE_CHECKING:
     from pla.logic.cubes import Words
     from pla.logic.effort import Effort
     from pla.logic.function import Function
-    from pla.logic.phases import Phase, Polarity
+    from pla.logic.phases import Phase
     from pla.logic.search import Feasible, Program
 
 __all__ = ["minimize_block"]
@@ -50,11 +51,34 @@ def minimize_block(
     connections: bool = True,
 ) -> BlockMinimum:
     """The fewest terms for a block over all allowed polarities, then the fewest connections."""
+    if function.n_outputs == 1 and polarities[0].true and polarities[0].complement:
+        return _better_polarity(function, effort, feasible, connections=connections)
     phases = phases_of(polarities)
     fits = function.n_inputs <= MAX_DENSE_INPUTS and len(phases) <= MAX_PHASES
     if fits and lattice_bytes(function.n_inputs, len(phases)) <= MAX_LATTICE_BYTES:
         return _by_primes(function, polarities, phases, effort, feasible, connections)
     return minimize_wide(function, polarities, effort, feasible)
+
+
+def _better_polarity(
+    function: Function, effort: Effort, feasible: Feasible | None, *, connections: bool
+) -> BlockMinimum:
+    """A single output shares nothing, so its polarities are two problems of their own."""
+    answers = [
+        minimize_block(function, [only], effort, connections=connections)
+        for only in (Polarity(complement=False), Polarity(true=False))
+        if feasible is None or feasible((only.complement,))
+    ]
+    best = min(answers, key=lambda a: (len(a.cover), a.cover.links))
+    every = None not in {a.connections for a in answers}
+    primes = [a.primes for a in answers]
+    return replace(
+        best,
+        exact=min(a.exact for a in answers),
+        trusted=min(a.trusted for a in answers),
+        connections="all polarities" if every else None,
+        primes=None if None in primes else sum(p or 0 for p in primes),
+    )
 
 
 def _by_primes(

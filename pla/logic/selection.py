@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from functools import cached_property
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -14,7 +15,7 @@ from pla.logic.covering import (
     without_column_dominance,
     without_row_dominance,
 )
-from pla.logic.relaxation import Relaxation
+from pla.logic.relaxation import Relaxation, Relaxed
 from pla.logic.search import Settled
 from pla.logic.solver import Solver, solve_integer
 
@@ -27,7 +28,7 @@ if TYPE_CHECKING:
     from pla.logic.cubes import Cover, Words
     from pla.logic.effort import Effort
     from pla.logic.phases import Phase
-    from pla.logic.relaxation import Decisions, Relaxed
+    from pla.logic.relaxation import Decisions
 
 __all__ = ["TableProgram", "smallest_cover", "table_of"]
 
@@ -63,10 +64,16 @@ class TableProgram:
         self._cost = cost[self._kept]
         self._table = Table(table.matrix[:, self._kept], table.phase)
         self._effort = effort
-        self._relaxation = Relaxation(len(self._kept), phases, n_outputs)
-        self._relaxation.add_rows(
+        self._n_outputs = n_outputs
+
+    @cached_property
+    def _relaxation(self) -> Relaxation:
+        # Made on first use: many small tables are decided by dominance alone.
+        relaxation = Relaxation(len(self._kept), self._phases, self._n_outputs)
+        relaxation.add_rows(
             [np.flatnonzero(row) for row in self._table.matrix], self._table.phase.tolist()
         )
+        return relaxation
 
     @property
     def exhausted(self) -> bool:
@@ -76,6 +83,13 @@ class TableProgram:
         return self._effort.renew()
 
     def relax(self, decisions: Decisions) -> Relaxed:
+        if None not in decisions:
+            core = reduce_to_core(self._demanded(decisions), self._cost)
+            if not len(core.columns):
+                # Dominance and essential columns are exact: no cover has fewer terms.
+                share = np.zeros(len(self._kept))
+                share[core.chosen] = 1.0
+                return Relaxed(len(core.chosen), share, ~np.array(decisions, dtype=bool) * 1.0)
         before = self._relaxation.work
         relaxed = self._relaxation.solve(decisions)
         self._effort.spend(self._relaxation.work - before, sum(self._table.matrix.shape))
@@ -89,7 +103,7 @@ class TableProgram:
         chosen, trusted = smallest_cover(matrix, self._cost, relaxed.x, relaxed.bound, self._effort)
         return Settled(self._kept[chosen], relaxed.bound, trusted)
 
-    def _demanded(self, decisions: tuple[bool, ...]) -> Matrix:
+    def _demanded(self, decisions: Decisions) -> Matrix:
         active = np.array([decisions[p.output] == p.complemented for p in self._phases])
         return self._table.demanded_by(active)
 
