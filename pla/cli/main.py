@@ -112,7 +112,7 @@ def run(args: list[str]) -> int:
     """Run the command and return its exit code; no exception leaves here."""
     as_json = "--json" in args
     try:
-        result = cli.main(args=args, prog_name="fuseplan", standalone_mode=False)
+        result = cli.main(args=_hoisted(args), prog_name="fuseplan", standalone_mode=False)
     except (click.Abort, KeyboardInterrupt):
         return _interrupted(as_json=as_json)
     except BrokenPipeError:
@@ -125,6 +125,22 @@ def run(args: list[str]) -> int:
             return _interrupted(as_json=as_json)
         return _explain(problem, as_json=as_json)
     return result if isinstance(result, int) else 0
+
+
+def _hoisted(args: list[str]) -> list[str]:
+    """The options that concern every command, wherever they stand, before the command."""
+    end = args.index("--") if "--" in args else len(args)
+    first: list[str] = []
+    rest: list[str] = []
+    waiting = iter(args[:end])
+    for word in waiting:
+        if word in {"-q", "--quiet"} or word.startswith("--color="):
+            first.append(word)
+        elif word == "--color":
+            first.append(f"--color={next(waiting, '')}")
+        else:
+            rest.append(word)
+    return [*first, *rest, *args[end:]]
 
 
 def _was_interrupted(problem: BaseException) -> bool:
@@ -151,6 +167,14 @@ def _explain(problem: Exception, *, as_json: bool) -> int:
     diagnostics: tuple[Diagnostic, ...]
     if isinstance(problem, FuseplanError):
         diagnostics, exit_code = problem.diagnostics, problem.exit_code
+    elif isinstance(problem, click.exceptions.NoArgsIsHelpError):
+        click.echo(problem.format_message(), err=True)
+        return BAD_INPUT
+    elif isinstance(problem, OSError) and problem.filename is None:
+        # Reading and writing files has words of its own; what is left is standard output.
+        text = f"the output cannot be written: {(problem.strerror or str(problem)).lower()}"
+        diagnostics, exit_code = (Diagnostic("OUTPUT", text),), BAD_INPUT
+        as_json = False
     elif isinstance(problem, click.ClickException):
         if isinstance(problem, click.UsageError) and problem.ctx is not None and not as_json:
             click.echo(problem.ctx.get_usage(), err=True)

@@ -57,11 +57,13 @@ def command(
     from pla.device.catalogue import find_device
     from pla.files import refuse_existing
     from pla.fitting.fit import fit
+    from pla.fitting.places import places_elsewhere
 
     refuse_existing(folder, force=force)
     behaviour = read_behaviour(design)
     array = find_device(device)
-    show_diagnostics((*behaviour.warnings, *array.warnings))
+    elsewhere = places_elsewhere(behaviour, array)
+    show_diagnostics((*behaviour.warnings, *array.warnings, *elsewhere))
     outcome = fit(behaviour, array, cast("Any", polarity))
     if not outcome.fits:
         return _refuse(outcome, polarity, as_json=as_json)

@@ -7,7 +7,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from pla.errors import Diagnostic, InternalError
-from pla.fitting.matching import first_matching, largest_matching
+from pla.fitting.matching import first_matching
 from pla.fitting.model import Fit, PlacedInput, PlacedOutput, Plan, Usage
 from pla.fitting.places import settled_places
 from pla.fitting.polarity import allowed_polarities, mode_for, tied_polarities
@@ -221,9 +221,10 @@ def _place_inputs(
     if matched is None:
         return None
     pins = dict(zip(needed, matched, strict=True))
+    # The rest needs no line, so any pin will do.
     rest = [i for i in everyone if i not in pins]
-    spare = [[p for p in choices(i) if p not in pins.values()] for i in rest]
-    return pins | {rest[k]: pin for k, pin in largest_matching(spare).items()}
+    left = [pin for pin in free if pin not in pins.values()]
+    return pins | dict(zip(rest, left, strict=False))
 
 
 def _plan(

@@ -4,13 +4,13 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
-from pla.errors import Diagnostics
+from pla.errors import Diagnostic, Diagnostics
 
 if TYPE_CHECKING:
     from pla.behaviour.model import Behaviour
     from pla.device.model import Device
 
-__all__ = ["settled_places"]
+__all__ = ["places_elsewhere", "settled_places"]
 
 
 def settled_places(behaviour: Behaviour, device: Device) -> dict[str, int]:
@@ -35,6 +35,24 @@ def settled_places(behaviour: Behaviour, device: Device) -> dict[str, int]:
         settled[place.signal] = place.pin
     problems.stop_on_error()
     return settled
+
+
+def places_elsewhere(behaviour: Behaviour, device: Device) -> tuple[Diagnostic, ...]:
+    """A warning where a design decides pins, but none on this device: perhaps a misspelt name."""
+    if not behaviour.places or device.name in behaviour.places:
+        return ()
+    names = list(behaviour.places)
+    first = next((place for name in names for place in behaviour.places[name]), None)
+    return (
+        Diagnostic(
+            "PLACE-ELSEWHERE",
+            f"no pins are decided for {device.name}; the design decides them for "
+            f"{' and '.join(names)}",
+            first.location if first else None,
+            f"if they are meant for this device, write [place.{device.name}]",
+            "warning",
+        ),
+    )
 
 
 def _role(device: Device, pin: int) -> str:

@@ -1,0 +1,46 @@
+"""Matching held against trying everything."""
+
+from itertools import permutations
+
+from hypothesis import given
+from hypothesis import strategies as st
+
+from pla.fitting.matching import can_match, first_matching, largest_matching
+
+choices_lists = st.lists(
+    st.lists(st.integers(0, 5), unique=True, max_size=5), min_size=1, max_size=5
+)
+
+
+def all_matchings(choices):
+    """Every way to give each member a partner of its own."""
+    for partners in permutations(range(6), len(choices)):
+        if all(p in c for p, c in zip(partners, choices, strict=True)):
+            yield list(partners)
+
+
+@given(choices_lists)
+def test_first_matching_is_the_most_preferred(choices):
+    ranked = sorted(
+        all_matchings(choices),
+        key=lambda m: [c.index(p) for p, c in zip(m, choices, strict=True)],
+    )
+    assert first_matching(choices) == (ranked[0] if ranked else None)
+    assert can_match(choices) == bool(ranked)
+
+
+@given(choices_lists)
+def test_largest_matching_leaves_out_as_few_as_possible(choices):
+    found = largest_matching(choices)
+    assert all(partner in choices[member] for member, partner in found.items())
+    assert len(set(found.values())) == len(found)
+    most = max(
+        size
+        for size in range(len(choices) + 1)
+        if size == 0
+        or any(
+            next(all_matchings([choices[m] for m in members]), None)
+            for members in permutations(range(len(choices)), size)
+        )
+    )
+    assert len(found) == most
