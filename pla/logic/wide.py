@@ -10,12 +10,14 @@ from pla.logic.block_minimum import BlockMinimum
 from pla.logic.cubes import Cover
 from pla.logic.heuristic import heuristic_cover
 from pla.logic.independent import independent_bound, sample_points
+from pla.logic.phases import phase_function, phases_of
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
 
     from pla.logic.effort import Effort
     from pla.logic.function import Function
+    from pla.logic.independent import Samples
     from pla.logic.phases import Polarity
     from pla.logic.search import Feasible
 
@@ -28,9 +30,20 @@ def minimize_wide(
     effort: Effort,
     feasible: Feasible | None = None,
 ) -> BlockMinimum:
-    """A good cover and a bound; polarities by each output alone, then by trying single changes."""
-    choice, floor = _first_choice(function, polarities, feasible)
-    best = _cover(function, choice)
+    """A good cover and a bound.
+
+    Polarities begin from the best of three: each output as serves it alone, all true, all
+    complemented (which pays where the complements have terms in common, as those of a decoder do);
+    then single changes are tried.
+    """
+    preferred, floor = _preferred(function, polarities)
+    starts = [
+        preferred,
+        *([p.complement and (wish or not p.true) for p in polarities] for wish in (False, True)),
+    ]
+    choices = dict.fromkeys(_feasible_choice(start, feasible) for start in starts)
+    covers = [(choice, _cover(function, choice)) for choice in choices]
+    choice, best = min(covers, key=lambda pair: (len(pair[1]), pair[1].links))
     movable = [j for j, p in enumerate(polarities) if p.true and p.complement]
     if any(not (p.true and p.complement) for p in polarities) or len(function.on) <= 2_000:
         for j in movable:
@@ -41,39 +54,24 @@ def minimize_wide(
             cover = _cover(function, changed)
             if (len(cover), cover.links) < (len(best), best.links):
                 best, choice = cover, changed
-    if not movable:
-        on, off = _in_polarity(function, choice)
-        samples = sample_points(best, on, function.n_outputs)
-        floor = max(floor, independent_bound(samples, off))
     floor = min(floor, len(best))
     return BlockMinimum(best, choice, floor, floor, None, None)
 
 
-def _first_choice(
-    function: Function, polarities: Sequence[Polarity], feasible: Feasible | None
-) -> tuple[tuple[bool, ...], int]:
-    """For each output the polarity that serves it best alone, and a bound over all polarities.
-
-    Every cover holds a cover of each output, so the largest bound of an output alone, in the
-    polarity where that is smallest, holds for all outputs together.
-    """
-    preferred: list[bool] = []
-    floor = 0
-    for j, allowed in enumerate(polarities):
-        sizes: list[tuple[int, bool]] = []
-        bounds: list[int] = []
-        for complemented in (False, True):
-            if not (allowed.complement if complemented else allowed.true):
-                continue
-            on, off = function.on.of_output(j), function.off.of_output(j)
-            if complemented:
-                on, off = off, on
-            cover = heuristic_cover(on, off, 1)
-            sizes.append((len(cover), complemented))
-            bounds.append(independent_bound(sample_points(cover, on, 1), off))
-        preferred.append(min(sizes)[1])
-        floor = max(floor, min(bounds))
-    return _feasible_choice(preferred, feasible), floor
+def _preferred(function: Function, polarities: Sequence[Polarity]) -> tuple[list[bool], int]:
+    """For each output the polarity that serves it best alone, and a bound over all polarities."""
+    phases = phases_of(polarities)
+    on, off = phase_function(function, phases)
+    samples: list[Samples] = [{} for _ in polarities]
+    sizes: list[dict[bool, int]] = [{} for _ in polarities]
+    for bit, phase in enumerate(phases):
+        cover = heuristic_cover(on.of_output(bit), off.of_output(bit), 1)
+        sizes[phase.output][phase.complemented] = len(cover)
+        samples[phase.output][bit] = sample_points(cover, on.of_output(bit))
+    preferred = [min(size, key=lambda c: (size[c], c)) for size in sizes]
+    alone = max((independent_bound([own], off) for own in samples), default=0)
+    together = max(independent_bound(order, off) for order in (samples, samples[::-1]))
+    return preferred, max(alone, together)
 
 
 def _feasible_choice(preferred: Sequence[bool], feasible: Feasible | None) -> tuple[bool, ...]:
