@@ -5,7 +5,8 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from pla.logic import algebra
-from pla.report.notation import case, groups_of, plural
+from pla.report.cases import joined_cases
+from pla.report.notation import groups_of, plural
 from pla.report.table import Strip, Table
 
 if TYPE_CHECKING:
@@ -13,8 +14,10 @@ if TYPE_CHECKING:
 
     from pla.behaviour.model import Behaviour
     from pla.fitting.prices import SafetyPrice
+    from pla.logic.cubes import Cube
     from pla.logic.minimize import Minimum
     from pla.report.audit import Settled, Together
+    from pla.report.notation import Group
 
 __all__ = ["detail_table", "summary_table", "together_table"]
 
@@ -96,7 +99,6 @@ def _price(name: str, price: SafetyPrice, minimum: Minimum) -> str:
 def detail_table(behaviour: Behaviour, found: Sequence[Settled]) -> Table:
     """Every open combination of every output once."""
     groups = groups_of(behaviour.input_names)
-    n = len(behaviour.inputs)
     return Table(
         "Don't cares one by one",
         ("output", "left open by", "will be", "combinations", "at inputs"),
@@ -105,11 +107,11 @@ def detail_table(behaviour: Behaviour, found: Sequence[Settled]) -> Table:
                 behaviour.outputs[settled.output].name,
                 _REASONS[settled.reason],
                 str(settled.value),
-                str(1 << (n - cube.literals)),
-                case(cube, groups),
+                str(case.size),
+                case.text,
             )
             for settled in found
-            for cube in settled.cubes
+            for case in joined_cases(settled.cubes, groups)
         ),
         aligned="lllrl",
         lead=(_READING,) if found else ("There are none.",),
@@ -119,8 +121,8 @@ def detail_table(behaviour: Behaviour, found: Sequence[Settled]) -> Table:
 
 
 _READING = (
-    "Signals that are not named may have any value. Numbers and ranges are those of the whole bus; "
-    "in 0b… a - stands for either value."
+    "Signals that are not named may have any value. Numbers and ranges are those of the whole bus, "
+    "a comma stands between several; in 0b… a - stands for either value."
 )
 
 
@@ -143,16 +145,14 @@ def together_table(behaviour: Behaviour, together: Sequence[Together] | None) ->
         return Table(title, headings, (), aligned, lead=(remark,))
     if not together:
         return None
-    rows = []
+    alike: dict[tuple[int, ...], list[Cube]] = {}
     for entry in together:
-        bits = "".join(map(str, entry.values))
-        shown = (bits[g.first : g.first + g.size] for g in outputs)
-        rows.append(
-            (
-                case(entry.cube, groups),
-                *(f"0b{b}" if g.bits else b for g, b in zip(outputs, shown, strict=True)),
-            )
-        )
+        alike.setdefault(entry.values, []).append(entry.cube)
+    cases = [
+        (case, values) for values, cubes in alike.items() for case in joined_cases(cubes, groups)
+    ]
+    cases.sort(key=lambda found: found[0].lowest)
+    rows = [(case.text, *_output_values(values, outputs)) for case, values in cases]
     return Table(
         title,
         headings,
@@ -171,3 +171,10 @@ def together_table(behaviour: Behaviour, together: Sequence[Together] | None) ->
         ),
         wrapped=(0,),
     )
+
+
+def _output_values(values: Sequence[int], outputs: Sequence[Group]) -> Iterator[str]:
+    bits = "".join(map(str, values))
+    for group in outputs:
+        own = bits[group.first : group.first + group.size]
+        yield f"0b{own}" if group.bits else own

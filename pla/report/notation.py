@@ -1,4 +1,4 @@
-"""Signals and cubes as people write them: products, and cases grouped by bus."""
+"""Signals, products and numbers as people write them."""
 
 from __future__ import annotations
 
@@ -10,9 +10,9 @@ if TYPE_CHECKING:
 
     from pla.logic.cubes import Cube
 
-__all__ = ["Group", "case", "groups_of", "listed", "plural", "product", "spans"]
+__all__ = ["Group", "groups_of", "listed", "plural", "product", "span", "spans"]
 
-_DECIMAL_BITS = 8  # buses of more bits are addresses, which are written in hexadecimal
+_LOWEST_HEXADECIMAL = 7  # buses that reach this bit are bytes and addresses
 
 
 @dataclass(frozen=True, slots=True)
@@ -32,6 +32,11 @@ class Group:
     @property
     def size(self) -> int:
         return len(self.bits) or 1
+
+    @property
+    def hexadecimal(self) -> bool:
+        """Whether numbers of it are written so: it has a bit 7 or a higher one."""
+        return bool(self.bits) and self.bits[0] >= _LOWEST_HEXADECIMAL
 
     @property
     def text(self) -> str:
@@ -67,37 +72,14 @@ def product(cube: Cube, names: Sequence[str]) -> str:
     return " ".join(literals) or "1"
 
 
-def case(cube: Cube, groups: Sequence[Group]) -> str:
-    """Input combinations by signals, in the notation of tables: ``step=10..11 hatch=1``.
-
-    A bus of which leading bits are fixed is written as a number or a range, any other as bits
-    ``0b1-1-``, where ``-`` is either value. Signals that do not matter are left out; nothing is
-    left of all combinations, which are called ``any``.
-    """
-    n = max((group.first + group.size for group in groups), default=0)
-    text = cube.text(n)
-    parts = []
-    for group in groups:
-        bits = text[group.first : group.first + group.size]
-        if bits.strip("-"):
-            parts.append(f"{group.name}={_value(bits, group)}")
-    return " ".join(parts) or "any"
-
-
-def _value(bits: str, group: Group) -> str:
-    """The value of a signal or bus from ``1``, ``0`` and ``-`` for each of its bits."""
-    if not group.bits:
-        return bits
-    low, high = group.bits[-1], group.bits[0]
-    if "-" in bits.rstrip("-"):
-        return f"0b{bits}{'-' * low}"
-    first = int(bits.replace("-", "0"), 2) << low
-    last = int(bits.replace("-", "1"), 2) << low | ((1 << low) - 1)
-    if high < _DECIMAL_BITS:
-        return f"{first}" if first == last else f"{first}..{last}"
-    digits = high // 4 + 1
-    start = f"0x{first:0{digits}X}"
-    return start if first == last else f"{start}..0x{last:0{digits}X}"
+def span(first: int, last: int, group: Group) -> str:
+    """A value of a bus, or a range: ``3``, ``2..5``, ``0xC000..0xDFFF``."""
+    if group.hexadecimal:
+        digits = group.bits[0] // 4 + 1
+        ends = [f"0x{value:0{digits}X}" for value in (first, last)]
+    else:
+        ends = [str(first), str(last)]
+    return ends[0] if first == last else "..".join(ends)
 
 
 def listed(words: Sequence[str]) -> str:

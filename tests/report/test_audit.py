@@ -8,6 +8,7 @@ from pathlib import Path
 
 import pytest
 from hypothesis import given, settings
+from hypothesis import strategies as st
 from report_designs import asserted, designs, holds
 
 from pla.behaviour.reader import read_behaviour
@@ -16,7 +17,8 @@ from pla.logic.cubes import Cube
 from pla.logic.minimize import minimize
 from pla.report.audit import audit, open_together
 from pla.report.audit_tables import detail_table, summary_table, together_table
-from pla.report.notation import case, groups_of
+from pla.report.cases import joined_cases
+from pla.report.notation import groups_of
 
 
 def read(design):
@@ -102,35 +104,95 @@ def matches(text, point, groups):
         for k in range(group.size):
             value = value << 1 | (point >> (group.first + k) & 1)
         value <<= group.bits[-1] if group.bits else 0
-        said = named[group.name]
-        if said.startswith("0b"):
-            width = len(said) - 2
-            if not re.fullmatch(said[2:].replace("-", "[01]"), f"{value:0{width}b}"):
-                return False
-        else:
-            first, _, last = said.partition("..")
-            if not int(first, 0) <= value <= int(last or first, 0):
-                return False
+        if not any(has(said, value) for said in named[group.name].split(",")):
+            return False
     return True
 
 
-BUSES = ("step[3]", "step[2]", "step[1]", "step[0]", "hatch", "addr[15]", "addr[14]", "addr[13]")
+def has(said, value):
+    """Whether a number, a range or bits with dashes hold a value."""
+    if said.startswith("0b"):
+        width = len(said) - 2
+        return re.fullmatch(said[2:].replace("-", "[01]"), f"{value:0{width}b}") is not None
+    first, _, last = said.partition("..")
+    return int(first, 0) <= value <= int(last or first, 0)
+
+
+STEP = [f"step[{k}]" for k in (3, 2, 1, 0)]
+PART = [*STEP, "hatch", "addr[15]", "addr[14]", "addr[13]"]
+BYTE = ["go", *(f"data[{k}]" for k in range(7, -1, -1))]
+WIDE = [f"addr[{k}]" for k in range(19, 9, -1)]
 
 
 @pytest.mark.parametrize(
-    ("cube", "text"),
+    ("names", "cubes", "texts"),
     [
-        pytest.param("--------", "any", id="all"),
-        pytest.param("1010----", "step=10", id="fixed bus"),
-        pytest.param("101-----", "step=10..11", id="range"),
-        pytest.param("1-1----0", "step=0b1-1- addr=0b--0-------------", id="scattered bits"),
-        pytest.param("----0---", "hatch=0", id="signal"),
-        pytest.param("-----110", "addr=0xC000..0xDFFF", id="part of an address"),
-        pytest.param("0000111-", "step=0 hatch=1 addr=0xC000..0xFFFF", id="several"),
+        pytest.param(PART, ["--------"], ["any"], id="all"),
+        pytest.param(PART, ["1010----"], ["step=10"], id="fixed bus"),
+        pytest.param(PART, ["101-----"], ["step=10..11"], id="range"),
+        pytest.param(
+            PART, ["1-1----0"], ["step=10..11,14..15 addr=0b--0-------------"], id="scattered bits"
+        ),
+        pytest.param(PART, ["----0---"], ["hatch=0"], id="signal"),
+        pytest.param(PART, ["-----110"], ["addr=0xC000..0xDFFF"], id="part of an address"),
+        pytest.param(PART, ["0000111-"], ["step=0 hatch=1 addr=0xC000..0xFFFF"], id="several"),
+        pytest.param(STEP, ["1101", "111-"], ["step=13..15"], id="neighbours"),
+        pytest.param(STEP, ["1100", "1-11", "1010"], ["step=10..12,15"], id="with a gap"),
+        pytest.param(STEP, ["0---", "1---"], ["any"], id="joined to all"),
+        pytest.param(
+            PART,
+            ["0000----", "00010---", "00011---", "0010----", "0011----", "01100---"],
+            ["step=0..3", "step=6 hatch=0"],
+            id="joined in two directions",
+        ),
+        pytest.param(
+            PART,
+            ["0000----", "00010---"],
+            ["step=0", "step=1 hatch=0"],
+            id="not joined where another differs",
+        ),
+        pytest.param(STEP, ["---1"], ["step=0b---1"], id="too scattered for ranges"),
+        pytest.param(
+            STEP,
+            ["0--1", "1--1"],
+            ["step=1,3,5,7", "step=9,11,13,15"],
+            id="no more than four ranges in a line",
+        ),
+        pytest.param(BYTE, ["-00000101"], ["data=0x05"], id="a byte in hexadecimal"),
+        pytest.param(BYTE, ["1-----0-1"], ["go=1 data=0b-----0-1"], id="scattered byte"),
+        pytest.param(
+            WIDE,
+            ["0---------", "1000------", "10010-----", "100110----", "1001110---", "10011110--"],
+            ["addr=0x00000..0x9EFFF"],
+            id="address decoder",
+        ),
     ],
 )
-def test_cases_are_written_by_bus(cube, text):
-    assert case(Cube.parse(cube), groups_of(BUSES)) == text
+def test_cases_are_written_by_bus(names, cubes, texts):
+    found = joined_cases(map(Cube.parse, cubes), groups_of(names))
+    assert [case.text for case in found] == texts
+    assert sum(case.size for case in found) == sum(2 ** cube.count("-") for cube in cubes)
+
+
+@settings(max_examples=60, deadline=None)
+@given(st.lists(st.text("01--", min_size=8, max_size=8), max_size=9))
+def test_joining_keeps_every_combination(texts):
+    """Buses of eight bits with some missing, so that all three notations occur."""
+    names = [f"code[{k}]" for k in range(8, 2, -1)] + ["hatch", "jam"]
+    groups = groups_of(names)
+    cubes = []
+    for cube in map(Cube.parse, texts):
+        if not any(meets(cube, other) for other in cubes):
+            cubes.append(cube)
+    found = joined_cases(cubes, groups)
+    assert len(found) <= len(cubes)
+    for p in range(256):
+        held = sum(matches(case.text, p, groups) for case in found)
+        assert held == sum(holds(cube, p) for cube in cubes)
+
+
+def meets(one, other):
+    return not (one.ones & other.zeros or one.zeros & other.ones)
 
 
 DRYER = """
