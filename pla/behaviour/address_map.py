@@ -13,6 +13,7 @@ from pla.behaviour.conditions import read_condition
 from pla.behaviour.description import Claims, Description
 from pla.behaviour.listing import Listing, ListingBuilder, Row, resolve
 from pla.behaviour.minterms import one_output
+from pla.behaviour.overlaps import AddressMap, Select, report_overlaps
 from pla.behaviour.problem import Problem
 from pla.behaviour.spans import widened
 from pla.behaviour.unsupported import refuse_unsupported
@@ -33,12 +34,21 @@ __all__ = ["read_address_map"]
 
 _VALUES: tuple[int | str, ...] = (0, 1, "x")
 
-Select = tuple[int, range, "Location"]
-"""Mask of the output selected, addresses, and where that is said."""
+_Addressed = tuple[int, range, "Location"]
+"""Outputs selected (a mask), by what addresses, and where that is said."""
 
 
-def read_address_map(section: Section, signals: Signals, claims: Claims) -> Description | None:
-    """One map. What is wrong goes to the section's diagnostics; then there is no result."""
+def read_address_map(
+    section: Section, signals: Signals, claims: Claims, solved: list[AddressMap]
+) -> Description | None:
+    """One map. What is wrong goes to the section's diagnostics; then there is no result.
+
+    Args:
+        section: The map.
+        signals: What is declared.
+        claims: Takes the outputs that it describes.
+        solved: Takes the map once the description has been worked out.
+    """
     diagnostics = section.diagnostics
     before = len(diagnostics.errors)
     refused = refuse_unsupported(section, "table")
@@ -48,13 +58,14 @@ def read_address_map(section: Section, signals: Signals, claims: Claims) -> Desc
     text = section.text("when")
     if text is not None:
         condition = read_condition(section, (*section.path, "when"), text, signals)
+    good = text is None or condition is not None
     elsewhere: int | str | None = section.choice("elsewhere", _VALUES)
-    overlap = section.choice("overlap", ("allow",))
+    may_overlap = section.choice("overlap", ("allow",)) is not None
     outputs, selects = _read_selects(section, bus, signals, claims)
-    if len(diagnostics.errors) > before or bus is None or not outputs:
+    if len(diagnostics.errors) > before or bus is None or not outputs or not good:
         return None
     mask = sum(output.mask for output in outputs)
-    rows = _merged(selects, mask) if overlap else selects
+    rows = _merged(selects) if may_overlap else [(s.mask, s.span, s.at) for s in selects]
 
     def solve(never: Cover, output_sets: Callable[[int], Sets]) -> Solved | None:
         inside: Sets = (Cover.universe(signals.n_inputs), Cover.of(signals.n_inputs))
@@ -63,6 +74,10 @@ def read_address_map(section: Section, signals: Signals, claims: Claims) -> Desc
             if value is None:
                 return None
             inside = value
+        addresses = AddressMap(section.where, bus, tuple(selects), inside[0], may_overlap)
+        if not report_overlaps(addresses, never, signals, diagnostics):
+            return None
+        solved.append(addresses)
         others = None if elsewhere is None else same_value(mask, elsewhere)
         listing = _listing(section, bus, rows, mask, inside, others)
         return resolve(listing, never, signals, diagnostics)
@@ -117,28 +132,28 @@ def _read_selects(
             except Problem as problem:
                 section.diagnostics.error(problem.code, problem.message, at, problem.hint)
                 continue
-            selects.append((output.mask, wide, at))
+            selects.append(Select(name, output.mask, wide, at))
     return outputs, selects
 
 
-def _merged(selects: list[Select], mask: int) -> list[Select]:
+def _merged(selects: list[Select]) -> list[_Addressed]:
     """Ranges that do not overlap, each with all the outputs that it selects."""
-    bounds = sorted({b for _, span, _ in selects for b in (span.start, span.stop)})
-    merged: list[Select] = []
+    bounds = sorted({b for select in selects for b in (select.span.start, select.span.stop)})
+    merged: list[_Addressed] = []
     for start, stop in pairwise(bounds):
-        here = [s for s in selects if s[1].start <= start < s[1].stop]
+        here = [s for s in selects if s.span.start <= start < s.span.stop]
         if here:
             selected = 0
-            for output, _, _ in here:
-                selected |= output & mask
-            merged.append((selected, range(start, stop), here[0][2]))
+            for select in here:
+                selected |= select.mask
+            merged.append((selected, range(start, stop), here[0].at))
     return merged
 
 
 def _listing(
     section: Section,
     bus: Field,
-    selects: list[Select],
+    rows: list[_Addressed],
     mask: int,
     inside: Sets,
     others: tuple[int, int, int] | None,
@@ -146,7 +161,7 @@ def _listing(
     builder = ListingBuilder()
     when_true, when_false = inside
     n = when_true.n_inputs
-    for selected, span, at in selects:
+    for selected, span, at in rows:
         addresses = Cover.of(n, (Cube(*m) for m in span_cubes(bus, span[0], span[-1])))
         cubes = [c[:2] for c in algebra.intersection(addresses, when_true)]
         values = (selected, mask & ~selected, 0)
@@ -162,7 +177,6 @@ def _listing(
         others=others,
         reasons=("x", "elsewhere"),
         others_key='elsewhere = 0, 1 or "x"',
-        conflict_hint='selects that may overlap are allowed by overlap = "allow"',
     )
 
 

@@ -79,7 +79,6 @@ class Listing:
         others: Values of the possible inputs not listed.
         reasons: What makes a don't care of a row, and of `others`.
         others_key: How the user says what the others are.
-        conflict_hint: How to mend two rows that contradict each other.
     """
 
     where: Location
@@ -93,7 +92,6 @@ class Listing:
     others: Values | None
     reasons: tuple[Reason, Reason]
     others_key: str
-    conflict_hint: str | None = None
 
 
 @dataclass(slots=True)
@@ -122,7 +120,6 @@ class ListingBuilder:
         others: Values | None,
         reasons: tuple[Reason, Reason],
         others_key: str,
-        conflict_hint: str | None = None,
     ) -> Listing:
         return Listing(
             where=where,
@@ -136,7 +133,6 @@ class ListingBuilder:
             others=others,
             reasons=reasons,
             others_key=others_key,
-            conflict_hint=conflict_hint,
         )
 
 
@@ -272,7 +268,7 @@ def _report_conflicts(
             f"{signals.output_names[differ]!r} gets two values for {example}: {shown[1]} from this "
             f"{listing.what}, {shown[0]} from the {listing.what} at {earlier}",
             listing.rows[second].place(),
-            listing.conflict_hint or (f"the other is: {source}" if source else None),
+            f"the other is: {source}" if source else None,
         )
     return not conflicts
 

@@ -13,6 +13,7 @@ from pla.behaviour.declare import read_signals
 from pla.behaviour.description import Claims, Description, solve_all
 from pla.behaviour.minterms import read_minterms
 from pla.behaviour.model import Behaviour, DontCareSource, Input, Output
+from pla.behaviour.overlaps import warn_of_contention
 from pla.behaviour.places import read_places
 from pla.behaviour.unsupported import refuse_unsupported
 from pla.errors import Diagnostics, by_place
@@ -23,6 +24,7 @@ from pla.tomlfile import Section, TomlFile, read_toml
 
 if TYPE_CHECKING:
     from pla.behaviour.listing import Reason, Solved
+    from pla.behaviour.overlaps import AddressMap
     from pla.behaviour.signals import Signals
 
 __all__ = ["behaviour_of", "read_behaviour"]
@@ -71,12 +73,14 @@ def behaviour_of(file: TomlFile) -> Behaviour:
     claims = Claims(signals, diagnostics)
     never = read_never(top.section("never"), signals)
     claims.incomplete = bool(refused)
-    descriptions = _read_descriptions(top, signals, claims)
+    maps: list[AddressMap] = []
+    descriptions = _read_descriptions(top, signals, claims, maps)
     places = read_places(top.section("place"), signals)
     _report_undescribed(signals, claims, diagnostics)
     solved: list[Solved] = []
     if never is not None and not signals.too_many:
         solved = solve_all(descriptions, never, signals, diagnostics)
+        warn_of_contention(maps, never, signals, diagnostics)
     diagnostics.stop_on_error()
     if never is None:  # pragma: no cover - there was an error
         raise AssertionError
@@ -103,7 +107,9 @@ def _title(top: Section, key: str, default: str) -> str:
     return text
 
 
-def _read_descriptions(top: Section, signals: Signals, claims: Claims) -> list[Description]:
+def _read_descriptions(
+    top: Section, signals: Signals, claims: Claims, maps: list[AddressMap]
+) -> list[Description]:
     found = [read_cases(section, signals, claims) for section in top.sections("cases")]
     minterms = top.section("minterms")
     if minterms is not None:
@@ -111,7 +117,7 @@ def _read_descriptions(top: Section, signals: Signals, claims: Claims) -> list[D
     logic = top.section("logic")
     if logic is not None:
         found += [read_logic(logic, name, signals, claims) for name in logic]
-    found += [read_address_map(s, signals, claims) for s in top.sections("address_map")]
+    found += [read_address_map(s, signals, claims, maps) for s in top.sections("address_map")]
     return [description for description in found if description is not None]
 
 

@@ -18,6 +18,7 @@ __all__ = [
     "number_in",
     "number_masks",
     "pattern_masks",
+    "shown_number",
     "span_cubes",
 ]
 
@@ -58,11 +59,12 @@ def check_fits(field: Field, value: int, text: str | None = None) -> None:
         raise Problem(
             "NUMBER-RANGE",
             f"{text or value} does not fit {field.name}, which has {bits}: expected 0 to "
-            f"{_shown(field, (1 << field.width) - 1)}",
+            f"{shown_number(field, (1 << field.width) - 1)}",
         )
 
 
-def _shown(field: Field, value: int) -> str:
+def shown_number(field: Field, value: int) -> str:
+    """A number of a field for messages: hexadecimal for wide fields, as people write addresses."""
     return f"0x{value:X}" if field.width > 8 else str(value)
 
 
@@ -92,9 +94,10 @@ def check_boundary(field: Field, boundary: int, written: str) -> None:
     raise Problem(
         "GRANULE",
         f"{written} makes a boundary inside the granule "
-        f"{_shown(field, low)}..{_shown(field, low + granule - 1)} of {field.name}: "
+        f"{shown_number(field, low)}..{shown_number(field, low + granule - 1)} of {field.name}: "
         f"{bits} not reach the device",
-        f"ranges start at multiples of {granule} ({_shown(field, granule)}) and end just before",
+        f"ranges start at multiples of {granule} ({shown_number(field, granule)}) and end just "
+        "before",
     )
 
 

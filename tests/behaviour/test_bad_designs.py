@@ -636,7 +636,13 @@ BAD = [
         HEAD + "[[address_map]]\nbus = 'addr'\nelsewhere = 0\n[address_map.select]\n"
         "lamp = '0x0000..0x3FFF'\n\"code[0]\" = ['0x8000..0xFFFF', '0x3000..0x4FFF']\n"
         "[[cases]]\nrows = '''\nstart | code[2] code[1]\nothers | 0 1'''\n",
-        (14, 32, "ROW-CONFLICT", "0 from this select, 1 from the select at d.toml:13:8"),
+        (
+            14,
+            32,
+            "SELECT-OVERLAP",
+            "lamp and code[0] overlap at 0x3000..0x3FFF, for example at addr = 0x3000: code[0] is "
+            "selected here, lamp at d.toml:13:8",
+        ),
         id="map-overlap",
     ),
     pytest.param(
