@@ -7,10 +7,10 @@ an error with a place, and reading goes on, so that all errors of a file are fou
 from __future__ import annotations
 
 import difflib
-import re
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Any, TypeVar, overload
 
+from pla.numerals import is_hexadecimal, parse_span, proposal
 from pla.tomlindex import Path
 from pla.tomltext import TomlFile, parse_toml, read_toml
 
@@ -25,15 +25,11 @@ __all__ = [
     "TomlFile",
     "did_you_mean",
     "kind_of",
-    "parse_number",
     "parse_toml",
     "read_toml",
 ]
 
 T = TypeVar("T")
-
-_NUMBER = re.compile(r"0x[0-9A-Fa-f]+|0b[01]+|0|[1-9][0-9]*")
-_MAX_DIGITS = 100
 
 
 def did_you_mean(name: str, valid: Iterable[str]) -> str:
@@ -65,23 +61,6 @@ def kind_of(value: Any) -> str:
     if isinstance(value, dict):
         return "a table"
     return "a date or time"
-
-
-def parse_number(text: str) -> int:
-    """A whole number in decimal without leading zeros, ``0x…`` or ``0b…``.
-
-    Raises:
-        ValueError: With a message that completes "… is": for anything else.
-    """
-    if not text:
-        raise ValueError("not a number")
-    if not _NUMBER.fullmatch(text):
-        if text.isascii() and text.isdecimal():
-            raise ValueError("a decimal number with a leading zero")
-        raise ValueError("not a number")
-    if len(text) > _MAX_DIGITS:
-        raise ValueError("too long for a number")
-    return int(text, 0)
 
 
 @dataclass(frozen=True, slots=True)
@@ -178,8 +157,11 @@ class Section:
         value: Any = self.data[key]
         for part in more:
             value = value[part]
-        message = f"{key!r} is {kind_of(value)}, expected {expected}"
-        self.diagnostics.error("VALUE", message, self.at(key, *more))
+        at = self.at(key, *more)
+        found = kind_of(value)
+        if _is_integer(value, 0, None) and _starts_hexadecimal(at):
+            found = f"the number 0x{value:X}"
+        self.diagnostics.error("VALUE", f"{key!r} is {found}, expected {expected}", at)
 
     @overload
     def integer(
@@ -356,32 +338,50 @@ class Section:
     def _range(
         self, key: str, more: Path, element: Any, low: int | None, high: int | None
     ) -> range | None:
-        expected = f'{_span("a whole number", low, high)}, or a range "a..b" of such'
-        if isinstance(element, int) and not isinstance(element, bool):
+        at = self.at(key, *more)
+        if isinstance(element, str):
+            hexadecimal = is_hexadecimal(element)
+        else:
+            hexadecimal = _starts_hexadecimal(at)
+        span = _span("a whole number", low, high, hexadecimal=hexadecimal)
+        expected = f'{span}, or a range "a..b" of such'
+        if _is_integer(element, None, None):
             first = last = element
         elif isinstance(element, str):
-            head, dots, tail = element.partition("..")
             try:
-                first = parse_number(head.strip())
-                last = parse_number(tail.strip()) if dots else first
+                first, last = parse_span(element)
             except ValueError as fault:
                 message = f"{element!r} in {key!r} is {fault}, expected {expected}"
-                if dots and str(fault) == "not a number":
-                    message = f"{element!r} in {key!r} is not a range, expected {expected}"
-                self.diagnostics.error("VALUE", message, self.at(key, *more))
+                self.diagnostics.error("VALUE", message, at, _meant(element))
                 return None
         else:
             self.wrong(expected, key, *more)
             return None
         if first > last:
             message = f"the range {element!r} runs backwards"
-            hint = f'write "{last}..{first}"'
-            self.diagnostics.error("RANGE-REVERSED", message, self.at(key, *more), hint)
+            head, _, tail = element.partition("..")
+            hint = f'write "{tail.strip()}..{head.strip()}"'
+            self.diagnostics.error("RANGE-REVERSED", message, at, hint)
             return None
         if not (_is_integer(first, low, high) and _is_integer(last, low, high)):
             self.wrong(expected, key, *more)
             return None
         return range(first, last + 1)
+
+
+def _meant(element: str) -> str | None:
+    """A hint for a number or range in another notation."""
+    meant = proposal(element)
+    if meant is None:
+        return None
+    ranged = ".." in meant and ".." not in element
+    return f'a range is written "{meant}"' if ranged else f'did you mean "{meant}"?'
+
+
+def _starts_hexadecimal(at: Location) -> bool:
+    """Whether the value at a place is written ``0x…``."""
+    start = (at.column or 1) - 1
+    return (at.source or "")[start : start + 2] == "0x"
 
 
 def _is_integer(value: Any, low: int | None, high: int | None) -> bool:
@@ -393,11 +393,12 @@ def _is_integer(value: Any, low: int | None, high: int | None) -> bool:
     )
 
 
-def _span(what: str, low: int | None, high: int | None) -> str:
+def _span(what: str, low: int | None, high: int | None, *, hexadecimal: bool = False) -> str:
+    shown = (lambda limit: f"0x{limit:X}" if limit else "0") if hexadecimal else str
     if low is not None and high is not None:
-        return f"{what} from {low} to {high}"
+        return f"{what} from {shown(low)} to {shown(high)}"
     if low is not None:
-        return f"{what} of at least {low}"
+        return f"{what} of at least {shown(low)}"
     if high is not None:
-        return f"{what} of at most {high}"
+        return f"{what} of at most {shown(high)}"
     return what

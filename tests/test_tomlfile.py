@@ -9,7 +9,7 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from pla.errors import Diagnostics, InputError
-from pla.tomlfile import Section, did_you_mean, parse_number, parse_toml, read_toml
+from pla.tomlfile import Section, did_you_mean, parse_toml, read_toml
 from pla.tomlindex import decode_string
 
 SAMPLE = '''\
@@ -368,6 +368,9 @@ def test_elements_are_reported_one_by_one():
         ("-1", "'k' is the number -1"),
         ("1.5", "'k' is the number 1.5, expected a whole number from 0 to 20, or a range"),
         ("''", "'' in 'k' is not a number"),
+        ("0x15", "'k' is the number 0x15, expected a whole number from 0 to 0x14, or a range"),
+        ("'0x15'", "'k' is the text '0x15', expected a whole number from 0 to 0x14, or a range"),
+        ("'1A'", "'1A' in 'k' is not a number, expected a whole number from 0 to 0x14, or a range"),
     ],
 )
 def test_ranges(value, expected):
@@ -380,6 +383,24 @@ def test_ranges(value, expected):
         assert expected in message
     else:
         assert [span for span, _ in found] == expected
+
+
+@pytest.mark.parametrize(
+    ("value", "hint"),
+    [
+        ("'0x5..0x3'", 'write "0x3..0x5"'),
+        ("'5 .. 3'", 'write "3..5"'),
+        ("'1A..1F'", 'did you mean "0x1A..0x1F"?'),
+        ("'0x1A-0x1F'", 'a range is written "0x1A..0x1F"'),
+        ("['1A']", 'did you mean "0x1A"?'),
+        ("'07'", 'did you mean "7"?'),
+        ("'all'", None),
+    ],
+)
+def test_ranges_in_another_notation_get_a_hint(value, hint):
+    top, diagnostics = section(f"k = {value}")
+    assert top.ranges("k", low=0, high=20) is None
+    assert [d.hint for d in diagnostics.found] == [hint]
 
 
 def test_missing_and_unknown_keys():
@@ -405,19 +426,6 @@ def test_lists_of_tables():
     assert inner.integer("x") == 2
     assert list(inner) == ["x"]
     assert [d.hint for d in diagnostics.found] == ["write [[b]] with two brackets", None]
-
-
-@pytest.mark.parametrize(
-    ("text", "value"), [("0", 0), ("12", 12), ("0x1F", 31), ("0xff", 255), ("0b101", 5)]
-)
-def test_numbers(text, value):
-    assert parse_number(text) == value
-
-
-@pytest.mark.parametrize("text", ["", "00", "0x", "0b2", "1_0", "-1", "1.5", "٣", "0X1", "1" * 101])
-def test_no_numbers(text):
-    with pytest.raises(ValueError, match="number"):
-        parse_number(text)
 
 
 def test_did_you_mean():

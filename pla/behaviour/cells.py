@@ -13,6 +13,7 @@ from pla.behaviour.values import (
     pattern_masks,
     span_cubes,
 )
+from pla.numerals import proposal
 
 if TYPE_CHECKING:
     from pla.behaviour.listing import Values
@@ -43,7 +44,9 @@ def input_cell(field: Field, text: str) -> list[Masks]:
         return _range_cubes(field, text)
     if not text[:1].isdigit():
         expected = "0, 1 or -" if field.is_bit else "a number, a range a..b, 0b… or -"
-        raise Problem("CELL", f"{text!r} means nothing for {field.name}, expected {expected}")
+        meant = proposal(text)
+        hint = f"did you mean {meant}?" if meant else None
+        raise Problem("CELL", f"{text!r} means nothing for {field.name}, expected {expected}", hint)
     return span_cubes(field, *granule_span(field, number_in(field, text), text))
 
 

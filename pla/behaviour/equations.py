@@ -13,7 +13,7 @@ from pla.behaviour.syntax import Comparison, Constant, Gate, Node, Number, Refer
 from pla.behaviour.values import check_boundary, granule_span, number_in, span_cubes
 from pla.logic import algebra
 from pla.logic.cubes import Cover, Cube
-from pla.tomlfile import parse_number
+from pla.numerals import parse_number
 
 if TYPE_CHECKING:
     from collections.abc import Callable, Iterator

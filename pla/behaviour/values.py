@@ -5,7 +5,7 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from pla.behaviour.problem import Problem
-from pla.tomlfile import parse_number
+from pla.numerals import parse_number, proposal
 
 if TYPE_CHECKING:
     from pla.behaviour.signals import Field
@@ -35,7 +35,8 @@ def number_in(field: Field, text: str) -> int:
     try:
         value = parse_number(text)
     except ValueError as fault:
-        hint = None
+        meant = proposal(text)
+        hint = f"did you mean {meant}?" if meant else None
         if "leading zero" in str(fault):
             digits = text.lstrip("0") or "0"
             hint = f"write {digits} for the decimal number"

@@ -652,7 +652,7 @@ BAD = [
     ),
     pytest.param(
         addresses("bus = 'addr'\nselect = { lamp = 0x10000 }\nelsewhere = 0"),
-        (11, 19, "VALUE", "expected a whole number from 0 to 65535"),
+        (11, 19, "VALUE", "'lamp' is the number 0x10000, expected a whole number from 0 to 0xFFFF"),
         id="map-too-high",
     ),
     pytest.param(
@@ -761,6 +761,52 @@ def test_uses_of_a_name_declared_twice_are_not_reported_too():
 def test_unknown_names_get_a_proposal():
     (found,) = errors_of(lamp("strat"))
     assert found.hint == "did you mean 'start'?"
+
+
+@pytest.mark.parametrize(
+    ("text", "column", "hint"),
+    [
+        pytest.param(
+            addresses("bus = 'addr'\nselect = { lamp = 'C000..FFFF' }\nelsewhere = 0"),
+            19,
+            'did you mean "0xC000..0xFFFF"?',
+            id="map",
+        ),
+        pytest.param(
+            addresses("bus = 'addr'\nselect = { lamp = '0xC000-0xFFFF' }\nelsewhere = 0"),
+            19,
+            'a range is written "0xC000..0xFFFF"',
+            id="map-dash",
+        ),
+        pytest.param(
+            addresses("bus = 'addr'\nselect = { lamp = '0xFFFF..0xC000' }\nelsewhere = 0"),
+            19,
+            'write "0xC000..0xFFFF"',
+            id="map-reversed",
+        ),
+        pytest.param(
+            addresses("bus = 'addr'\nselect.lamp = 0\nelsewhere = 0\nwhen = 'addr < 8000h'"),
+            16,
+            "did you mean 0x8000?",
+            id="equation",
+        ),
+        pytest.param(
+            table("C000..FFFF | 1 1\nothers | x x", columns="addr | lamp code"),
+            1,
+            "did you mean 0xC000?",
+            id="cell",
+        ),
+        pytest.param(
+            table("C000 | 1 1\nothers | x x", columns="addr | lamp code"),
+            1,
+            "did you mean 0xC000?",
+            id="cell-single",
+        ),
+    ],
+)
+def test_numbers_in_another_notation_get_a_hint(text, column, hint):
+    (found,) = errors_of(text)
+    assert (found.location.column, found.hint) == (column, hint)
 
 
 def test_conflict_shows_the_other_row():
