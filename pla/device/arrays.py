@@ -54,6 +54,13 @@ class ReadAndArray:
                 )
         return list(first.values())
 
+    def single_lines(self) -> Iterator[tuple[int, Column]]:
+        """Lines whose pin has no line in the other sense, with their columns."""
+        lines = {line for line in self.array.columns if line is not None}
+        for index, line in enumerate(self.array.columns):
+            if line is not None and Column(line.pin, not line.complement) not in lines:
+                yield index, line
+
     def _words(self, term: int, column: int) -> str:
         line = self.array.columns[column]
         return f"AND row {term} column {column} {f'for {line}' if line else 'with no line'}"

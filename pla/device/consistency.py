@@ -12,7 +12,7 @@ from itertools import chain
 from typing import TYPE_CHECKING
 
 if TYPE_CHECKING:
-    from collections.abc import Callable, Iterable, Sequence
+    from collections.abc import Callable, Collection, Iterable, Sequence
 
     from pla.device.model import Device
     from pla.errors import Diagnostics, Location
@@ -71,16 +71,23 @@ def spans(numbers: Iterable[int], shown: int = _SHOWN) -> str:
 
 
 def check_fuses(
-    count: int, claims: Sequence[FuseClaim], at_count: Location, diagnostics: Diagnostics
+    count: int,
+    claims: Sequence[FuseClaim],
+    at_count: Location,
+    diagnostics: Diagnostics,
+    explained: Collection[int] = (),
 ) -> None:
-    """Report fuses used twice, fuses without a use, and fuses that the device does not have."""
+    """Report fuses used twice, fuses without a use, and fuses that the device does not have.
+
+    Of the fuses without a use those in `explained` are left out: they were reported elsewhere.
+    """
     used = sorted(chain.from_iterable(claim.fuses for claim in claims))
     if used == list(range(count)):
         return
     before = len(diagnostics.found)
     _report_out_of_range(count, claims, at_count, diagnostics)
     _report_overlaps(claims, diagnostics)
-    idle = sorted(set(range(count)).difference(used))
+    idle = sorted(set(range(count)).difference(used, explained))
     if idle:
         has, them = ("has", "it does nothing") if len(idle) == 1 else ("have", "they do nothing")
         example = spans(idle).partition(",")[0]
@@ -90,7 +97,7 @@ def check_fuses(
             at_count,
             f'if {them}, say so, as in spare = ["{example}"]'
             if len(diagnostics.found) == before
-            else "perhaps the other side of the wrong numbers that are shown as well",
+            else "correct the other fuse numbers first: some of them may belong here",
         )
 
 

@@ -17,6 +17,7 @@ from pla.device.consistency import (
 )
 from pla.device.limits import DROP, FEEDBACK, LATER, OWN_TERMS, TOP_LATER, known_keys, not_yet
 from pla.device.model import Device, Links
+from pla.device.spacing import report_missing_columns, report_wrong_steps
 from pla.errors import Diagnostic, Diagnostics, InternalError
 from pla.tomlfile import Section, read_toml
 
@@ -65,6 +66,7 @@ def device_from(file: TomlFile) -> Device:
     """
     diagnostics = Diagnostics()
     top = Section.top(file, diagnostics)
+    _refuse_design(top)
     known_keys(top, _KEYS, TOP_LATER)
     name = _read_name(top)
     summary = top.text("summary", default="")
@@ -118,6 +120,20 @@ def device_from(file: TomlFile) -> Device:
     check_rows(device, top.file.at(("links", "unused_term")), diagnostics)
     diagnostics.stop_on_error()
     return device
+
+
+def _refuse_design(top: Section) -> None:
+    """Stop at a design file: each of its tables would be an error of its own."""
+    signals = [key for key in ("inputs", "outputs") if key in top]
+    if signals and not any(key in top for key in ("fuses", "links", "and", "or", "kind")):
+        top.error(
+            "DESIGN-FILE",
+            f"this is a design file, with [{signals[0]}]; a device file was expected",
+            top.key_at(signals[0]),
+            "a device is a name that 'fuseplan device list' shows, or a file with [links], [and], "
+            "[or] and [kind.NAME]; a design is checked with 'fuseplan check'",
+        )
+        top.diagnostics.stop_on_error()
 
 
 def _place(diagnostic: Diagnostic) -> tuple[int, int]:
@@ -285,17 +301,14 @@ def _check_fuses(
             for i, (r, at) in enumerate(spare)
         ),
     ]
-    check_fuses(fuses, claims, top.at("fuses"), top.diagnostics)
+    if report_wrong_steps(fuses, and_array, or_array, claims):
+        return
+    explained = report_missing_columns(fuses, and_array, or_array, claims)
+    check_fuses(fuses, claims, top.at("fuses"), top.diagnostics, explained)
 
 
 def _warn_of_single_lines(and_array: ReadAndArray, diagnostics: Diagnostics) -> None:
-    lines = and_array.array.columns
-    for index, line in enumerate(lines):
-        if line is None or any(
-            other is not None and other.pin == line.pin and other.complement != line.complement
-            for other in lines
-        ):
-            continue
+    for index, line in and_array.single_lines():
         has, lacks, level = (
             ("complement", "true", "low") if line.complement else ("true", "complement", "high")
         )

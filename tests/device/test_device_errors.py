@@ -419,8 +419,7 @@ CASES = [
     pytest.param(
         [("term_step = 8\ncolumn", "term_step = 7\ncolumn")],
         [
-            "4:9 FUSE-GAP 5 of 36 fuses have no use: 13, 20, 27..29",
-            "24:14 FUSE-OVERLAP fuse 7 is AND row 1 column 0 for 1 (line 18 of the file) and OR row 0 column 1 for pin 7; likewise 4 more fuses",
+            "19:13 TERM-STEP term_step = 7 of [and] does not fit: fuse 7 would be both AND row 1 column 0 for 1 and OR row 0 column 1 for pin 7; with 8 each of the 36 fuses has one use"
         ],
         id="step-7",
     ),
@@ -537,7 +536,7 @@ CASES = [
     pytest.param(
         [('"6 7"', '"6"')],
         [
-            "4:9 FUSE-GAP 4 of 36 fuses have no use: 7, 15, 23, 31",
+            "23:11 FUSE-GAP 1 column of [or] and 6 of [and] do not fill term_step = 8: behind the columns of [or] 1 fuse of each row has no use: 7, 15, 23, 31",
             "32:11 CELL-NO-SUM the cell on pin 7 has no column in [or]; columns are for pins: 6",
         ],
         id="cell-nosum",
