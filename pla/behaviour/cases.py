@@ -153,6 +153,8 @@ class _Table:
             raise Problem("HEADER", "a column has no name, expected an input or output")
         if name == _OTHERS:
             raise Problem("HEADER", "'others' starts a row, the first row names the columns")
+        if not self.source.has_bars:
+            _check_csv_name(name)
         return self.signals.find(name)
 
     def read_rows(self) -> None:
@@ -167,6 +169,12 @@ class _Table:
                 return
             if groups[0][:1] == [_OTHERS]:
                 self.read_others(row, groups, output_cache)
+                continue
+            if groups[0] and groups[0][0].lower() == _OTHERS:
+                text = f"{groups[0][0]!r} does not start a row"
+                self.error(
+                    Problem("OTHERS", text, f"{_OTHERS} is written in small letters"), row, 0
+                )
                 continue
             cells = groups[0] if len(groups) == 1 else [c for group in groups for c in group]
             if not self.fits(row, groups, cells, sizes):
@@ -310,6 +318,27 @@ class _Table:
             others=self.others,
             reasons=("x", "others"),
             others_key="a row that starts with others",
+        )
+
+
+def _check_csv_name(name: str) -> None:
+    """Refuse a column name that comes of another layout than CSV.
+
+    Raises:
+        Problem: If there is a bar, or blanks part several names.
+    """
+    if "|" in name:
+        raise Problem(
+            "HEADER",
+            f"{name!r} is not the name of a column: a CSV file has no bars, its first row names "
+            "inputs and then outputs",
+            "leave the bars out and part all columns alike, such as: step,fan",
+        )
+    if len(name.split()) > 1:
+        raise Problem(
+            "HEADER",
+            f"{name!r} is not the name of a column",
+            "columns are parted by a comma, a semicolon or a tab, such as: step,fan",
         )
 
 

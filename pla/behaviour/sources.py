@@ -8,15 +8,18 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING, Protocol
 
 from pla.errors import Diagnostic, InputError, Location
+from pla.textfile import SourceText
 
 if TYPE_CHECKING:
     from collections.abc import Callable
 
-    from pla.textfile import SourceText
-
 __all__ = ["CsvRows", "InlineRows", "RowSource", "read_csv", "read_inline"]
 
 _CELL = re.compile(r"[^\s|]+")
+# Spreadsheets may write a first line that tells the separator, with empty cells behind it.
+_SAID = re.compile(r'"?sep=(.)"?[,;\t]*', re.IGNORECASE)
+_SEPARATORS = {",": "comma", ";": "semicolon", "\t": "tab"}
+_SEPARATOR_NAMES = "a comma, a semicolon or a tab"
 
 
 class RowSource(Protocol):
@@ -73,7 +76,7 @@ class CsvRows:
         rows: See `RowSource`.
         lines: 1-based line on which the header and each row start.
         source: The text of the file.
-        separator: ``,`` or ``;``.
+        separator: ``,``, ``;`` or a tab.
     """
 
     header: list[list[str]]
@@ -98,7 +101,7 @@ class CsvRows:
         if count < cell:
             start = len(text)
         else:
-            while text[start : start + 1] in (" ", "\t"):
+            while text[start : start + 1] in (" ", "\t") and text[start] != self.separator:
                 start += 1
         before = text[:start]
         column = start - (before.rfind("\n") + 1) + 1
@@ -124,24 +127,21 @@ def read_inline(text: str, place: Callable[[int], Location]) -> InlineRows:
 
 
 def read_csv(source: SourceText) -> CsvRows:
-    """The rows of a CSV file as spreadsheets save it: comma or semicolon, quotes.
+    """The rows of a CSV file as spreadsheets save it: comma, semicolon or tab, quotes.
 
-    Empty rows, and empty cells behind the last column, are left out.
+    The header tells the separator, unless a line such as ``sep=;`` stands before it. A carriage
+    return alone ends a line too. Empty rows, and empty cells behind the last column, are left out.
 
     Raises:
-        InputError: If there is nothing in it, or quotes do not match.
+        InputError: If there is nothing in it, the separator is not clear, or quotes do not match.
     """
-    first = next((line for line in source.lines if line.strip(" \t,;")), None)
-    if first is None:
-        raise InputError([_empty(source.location(0))])
-    bare = re.sub(r'"[^"]*"', "", first)
-    separator = ";" if ";" in bare else ","
-    if ";" in bare and "," in bare:
-        at = source.location_of(source.lines.index(first) + 1, 1)
-        message = "the header has commas and semicolons, expected one kind of separator"
-        raise InputError([Diagnostic("CSV-SEPARATOR", message, at)])
+    source = SourceText(source.file, source.text.replace("\r", "\n"))
+    separator, start = _separator(source)
     reader = csv.reader(
-        source.text.split("\n"), delimiter=separator, skipinitialspace=True, strict=True
+        (f"{line}\n" for line in source.lines[start:]),
+        delimiter=separator,
+        skipinitialspace=True,
+        strict=True,
     )
     rows: list[list[str]] = []
     lines: list[int] = []
@@ -151,12 +151,12 @@ def read_csv(source: SourceText) -> CsvRows:
             cells = [cell.strip() for cell in row]
             if any(cells):
                 rows.append(cells)
-                lines.append(before + 1)
+                lines.append(start + before + 1)
             before = reader.line_num
     except csv.Error as fault:
-        at = source.location_of(min(before + 1, len(source.lines)), 1)
-        message = f"not CSV: {fault}"
+        at = source.location_of(min(start + before + 1, len(source.lines)), 1)
         hint = "a cell in quotes ends with a quote in front of the next separator"
+        message = f"not CSV: {_reason(fault, separator)}"
         raise InputError([Diagnostic("CSV-SYNTAX", message, at, hint)]) from None
     width = len(rows[0])
     while not rows[0][width - 1]:
@@ -165,6 +165,46 @@ def read_csv(source: SourceText) -> CsvRows:
         while len(row) > width and not row[-1]:
             row.pop()
     return CsvRows([rows[0]], [[row] for row in rows[1:]], lines, source, separator)
+
+
+def _separator(source: SourceText) -> tuple[str, int]:
+    """The separator, and how many lines stand in front of the header.
+
+    Raises:
+        InputError: If there is no header, or it has more than one kind of separator.
+    """
+    filled = [i for i, line in enumerate(source.lines) if line.strip(" \t,;")]
+    said = _SAID.fullmatch(source.lines[filled[0]].strip()) if filled else None
+    if said and said[1] not in _SEPARATORS:
+        at = source.location_of(filled[0] + 1, 1)
+        message = f"the separator {said[1]!r} is not supported, expected {_SEPARATOR_NAMES}"
+        raise InputError([Diagnostic("CSV-SEPARATOR", message, at)])
+    if said:
+        del filled[0]
+    if not filled:
+        raise InputError([_empty(source.location(0))])
+    if said:
+        return said[1], filled[0]
+    bare = re.sub(r'"[^"]*"', "", source.lines[filled[0]])
+    if ";" in bare and "," in bare:
+        at = source.location_of(filled[0] + 1, 1)
+        message = "the header has commas and semicolons, expected one kind of separator"
+        raise InputError([Diagnostic("CSV-SEPARATOR", message, at)])
+    # Beside a comma or semicolon a tab is a blank.
+    return next((sign for sign in ";,\t" if sign in bare), ","), filled[0]
+
+
+def _reason(fault: csv.Error, separator: str) -> str:
+    """The fault of a CSV file in the words of this program."""
+    text = str(fault)
+    if "expected after" in text:
+        shown = _SEPARATORS[separator]
+        return f"something stands between a closing quote and the next {shown}"
+    if "unexpected end" in text:
+        return "a quote is not closed before the end of the file"
+    if "field limit" in text:
+        return f"a cell has more than {csv.field_size_limit()} characters, is a quote not closed?"
+    return text
 
 
 def _empty(at: Location) -> Diagnostic:

@@ -498,6 +498,11 @@ BAD = [
         id="others-twice",
     ),
     pytest.param(
+        table("0 - | 1 1\nOTHERS | x x"),
+        (13, 1, "OTHERS", "'OTHERS' does not start a row"),
+        id="others-capitals",
+    ),
+    pytest.param(
         table("others - | x x"),
         (12, 8, "OTHERS", "others stands for all inputs"),
         id="others-cells",

@@ -60,6 +60,16 @@ def lamp(step, go):
         pytest.param(ROWS, id="commas"),
         pytest.param(ROWS.replace(",", ";"), id="semicolons"),
         pytest.param(ROWS.replace("\n", "\r\n"), id="crlf"),
+        pytest.param(ROWS.replace("\n", "\r"), id="cr"),
+        pytest.param(ROWS.replace(",", "\t"), id="tabs"),
+        pytest.param(
+            "\n".join("\t".join(f'"{c}"' for c in line.split(",")) for line in ROWS.split("\n")),
+            id="tabs-quotes",
+        ),
+        pytest.param(ROWS.replace(",", ",\t"), id="tabs-as-blanks"),
+        pytest.param("sep=;\n" + ROWS.replace(",", ";"), id="sep-semicolon"),
+        pytest.param("\ufeffsep=,\r\n" + ROWS.replace("\n", "\r\n"), id="sep-comma"),
+        pytest.param('"SEP=\t"\t\t\n' + ROWS.replace(",", "\t"), id="sep-tab"),
         pytest.param("\ufeff" + ROWS, id="byte-order-mark"),
         pytest.param(ROWS.rstrip("\n"), id="no-last-newline"),
         pytest.param(ROWS.replace("\n", "\n\n"), id="blank-lines"),
@@ -131,9 +141,61 @@ def test_variants(tmp_path, content):
             id="others",
         ),
         pytest.param(
-            'step,go,code,lamp\n0,1,3,"1"x\n', (2, 1, "CSV-SYNTAX", "not CSV: "), id="quote"
+            'step,go,code,lamp\n0,1,3,"1"x\n',
+            (2, 1, "CSV-SYNTAX", "something stands between a closing quote and the next comma"),
+            id="quote",
         ),
-        pytest.param('step,go,code,lamp\n0,1,3,"1\n', (2, 1, "CSV-SYNTAX", "not CSV: "), id="open"),
+        pytest.param(
+            'sep=;\n\nstep;go;code;lamp\n0;1;3;"1"x\n',
+            (4, 1, "CSV-SYNTAX", "something stands between a closing quote and the next semicolon"),
+            id="quote-behind-sep",
+        ),
+        pytest.param(
+            'step,go,code,lamp\n0,1,3,"1\n',
+            (2, 1, "CSV-SYNTAX", "a quote is not closed before the end of the file"),
+            id="open",
+        ),
+        pytest.param(
+            'step,go,code,lamp\n0,1,3,"' + "1" * 200_000,
+            (2, 1, "CSV-SYNTAX", "a cell has more than 131072 characters, is a quote not closed?"),
+            id="long-cell",
+        ),
+        pytest.param(
+            "sep=|\nstep|go|code|lamp\n",
+            (1, 1, "CSV-SEPARATOR", "the separator '|' is not supported, expected a comma"),
+            id="sep-other",
+        ),
+        pytest.param("sep=;\n", (1, 1, "TABLE-EMPTY", "the table is empty"), id="sep-alone"),
+        pytest.param(
+            "step\tgo\tcode\tlamp\n0\t\t3\t1\n",
+            (2, 3, "CELL-EMPTY", "the cell of go is empty"),
+            id="tabs-cell",
+        ),
+        pytest.param(
+            "step,go,code,lamp\r0,1,3,1\r011,1,1,1\r",
+            (3, 1, "NUMBER", "leading zero"),
+            id="cr-line",
+        ),
+        pytest.param(
+            "step,go,|,code,lamp\n0,1,|,3,1\n",
+            (1, 9, "HEADER", "'|' is not the name of a column: a CSV file has no bars, its first"),
+            id="bar-column",
+        ),
+        pytest.param(
+            "step go | code lamp\n0 1 | 3 1\n",
+            (1, 1, "HEADER", "'step go | code lamp' is not the name of a column: a CSV file has"),
+            id="inline-layout",
+        ),
+        pytest.param(
+            "step go code lamp\n0 1 3 1\n",
+            (1, 1, "HEADER", "'step go code lamp' is not the name of a column"),
+            id="blanks-for-separators",
+        ),
+        pytest.param(
+            "step,go,code,lamp\n0,1,3,1\nOthers,,x,x\n",
+            (3, 1, "OTHERS", "'Others' does not start a row"),
+            id="others-capital",
+        ),
         pytest.param(
             "step,go,code,lamp\n0,1,3,1\n0,-,2,1\nothers,,x,x\n",
             (3, 1, "ROW-CONFLICT", "'code[0]' gets two values for step = 0, go = 1"),
