@@ -2,62 +2,73 @@
 
 from __future__ import annotations
 
-from typing import TYPE_CHECKING
-
 import click
 
 from pla.cli.output import emit_json, emit_text, show_diagnostics
 
-if TYPE_CHECKING:
-    from pla.fuses.jesd3 import FuseFile
-
 __all__ = ["command"]
+
+_NO = 1
 
 
 @click.command("inspect")
 @click.argument("file", metavar="FILE.jed")
+@click.option(
+    "--device",
+    metavar="NAME-OR-FILE",
+    help="Say whether QF and QP are those of this device; if not, exit code 1.",
+)
+@click.option(
+    "--strict",
+    is_flag=True,
+    help="Exit code 1 if there is any departure from the standard. Without it departures are "
+    "shown but do not fail.",
+)
 @click.option("--json", "as_json", is_flag=True, help="One JSON document on standard output.")
-def command(file: str, as_json: bool) -> int:
+def command(file: str, device: str | None, strict: bool, as_json: bool) -> int:
     """Hold a fuse file against the standard JESD3.
 
     Shows what the file says, both sums as given and as computed, every departure from the standard
     with its byte and field, and which devices of the catalogue have as many fuses and pins. FILE
-    may be - for standard input. Exit code 2 if the file cannot be relied on: a wrong fuse
-    checksum, fuses the device does not have, a damaged list.
+    may be - for standard input.
+
+    A file that cannot be relied on is refused with exit code 2: a wrong fuse checksum, fuses the
+    device does not have, a damaged list. What it claims to be is shown all the same.
 
     \b
       fuseplan inspect out/dryer.jed
+      fuseplan inspect --strict --device my-array.toml out/dryer.jed
       fuseplan inspect --json - < old.jed
     """
+    from pla.device.catalogue import catalogue, find_device
     from pla.files import read_bytes
-    from pla.fuses.jesd3 import FuseFileError, departures, read_fuse_file
+    from pla.fuses.jesd3 import FuseFile, FuseFileError, RefusedFile, departures, read_fuse_file
     from pla.fuses.jesd3_model import MAX_BYTES
+    from pla.fuses.sizes import devices_of_size, match_size
 
+    wanted = find_device(device) if device is not None else None
     data = read_bytes(file, MAX_BYTES)
+    read: FuseFile | RefusedFile
     try:
         read = read_fuse_file(data, "standard input" if file == "-" else file)
-    except FuseFileError as refused:
-        show_diagnostics(refused.warnings)
-        raise
+    except FuseFileError as problem:
+        read = problem.refused
     found = departures(read)
-    devices = _same_size(read)
+    devices = devices_of_size(read, map(find_device, catalogue()))
+    match = match_size(read, wanted) if wanted is not None else None
+    if wanted is not None:
+        show_diagnostics(wanted.warnings)
     if as_json:
         from pla.report.inspect_json import inspection
 
-        emit_json(inspection(read, found, devices))
+        emit_json(inspection(read, found, devices, match))
     else:
         from pla.report.inspect_text import inspection_text
 
-        emit_text(inspection_text(read, found, devices))
-    return 0
-
-
-def _same_size(file: FuseFile) -> list[str]:
-    """Devices of the catalogue with as many fuses, and as many pins where the file says so."""
-    from pla.device.catalogue import catalogue, find_device
-
-    return [
-        device.name
-        for device in map(find_device, catalogue())
-        if device.fuses == len(file.fuses) and file.pins in {None, device.pins}
-    ]
+        emit_text(inspection_text(read, found, devices, match))
+    if isinstance(read, RefusedFile):
+        wrong = sorted((*read.errors, *found), key=lambda d: d.offset)
+        show_diagnostics(wrong)
+        return FuseFileError.exit_code
+    differs = match is not None and match.matches is False
+    return _NO if differs or (strict and found) else 0

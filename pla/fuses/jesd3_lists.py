@@ -44,11 +44,14 @@ class Fuses:
     """What the programming fields say together.
 
     Attributes:
-        map: Every fuse; ``None`` if errors were found.
+        size: How many, by QF; ``None`` if that is unknown.
+        map: Every fuse as the lists and the default have it, also where the checksum disagrees;
+            ``None`` if the lists leave open what is meant.
         default: State of the fuses in no list.
         given_checksum: As written.
     """
 
+    size: int | None
     map: FuseMap | None
     default: int | None
     given_checksum: int | None
@@ -67,24 +70,26 @@ def read_fuses(findings: Findings, fields: Sequence[Field]) -> Fuses:
         read = _read_list(findings, field, size)
         if read is not None and size is not None:
             _place(findings, field, read, states, listed)
-    given = checksum[0] if checksum else None
+    said = (default[0] if default else None, checksum[0] if checksum else None)
     if size is None or _errors(findings) > errors:
-        return Fuses(None, default[0] if default else None, given)
+        return Fuses(size, None, *said)
 
     unlisted = listed.count(0)
     if unlisted and default is None:
         _unlisted(findings, fields, listed, unlisted)
-        return Fuses(None, None, given)
+        return Fuses(size, None, *said)
     if default is not None and default[0]:
         # A fuse in no list is 0 in both arrays so far.
         states = bytearray((np.frombuffer(states, np.uint8) | (1 - _octets(listed))).tobytes())
     fuses = FuseMap(bytes(states))
     if checksum is not None and checksum[0] != fuses.checksum:
         _wrong_checksum(findings, checksum[1], checksum[0], fuses.checksum)
-        return Fuses(None, default[0] if default else None, given)
+        return Fuses(size, fuses, *said)
     if default is not None and lists and default[1].offset > lists[0].offset:
         _late_default(findings, default[1], lists[0], confirmed=checksum is not None)
-    return Fuses(fuses, default[0] if default else None, given)
+        if checksum is None:
+            return Fuses(size, None, *said)
+    return Fuses(size, fuses, *said)
 
 
 def _octets(data: bytearray) -> np.ndarray[tuple[int], np.dtype[np.uint8]]:

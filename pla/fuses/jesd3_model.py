@@ -26,6 +26,8 @@ __all__ = [
     "Frame",
     "FuseDiagnostic",
     "FuseFile",
+    "FuseFileContents",
+    "RefusedFile",
     "Vector",
 ]
 
@@ -162,20 +164,18 @@ class Vector:
     conditions: str
 
 
-@dataclass(frozen=True, slots=True)
-class FuseFile:
-    """A fuse file that was read and found to be consistent.
+@dataclass(frozen=True, slots=True, kw_only=True)
+class FuseFileContents:
+    """What a fuse file says beside its fuses, whether or not it can be relied on.
 
     Attributes:
         name: Of the file.
         design: Design specification.
         notes: One for each ``N`` field.
-        fuses: State of every fuse; its length is QF.
         pins: QP: positions of a vector.
         vector_limit: QV: largest number of vectors.
         default: State of the fuses that no list names.
-        given_checksum: Fuse checksum as written; the true one is `FuseMap.checksum`, and a file
-            with a wrong one is refused.
+        given_checksum: Fuse checksum as written; the true one is `FuseMap.checksum`.
         given_sum: Transmission sum as written; 0 is a placeholder for one not computed.
         computed_sum: Transmission sum of the bytes that arrived (a missing STX or ETX counted).
         security: State that the security fuse shall get.
@@ -189,7 +189,6 @@ class FuseFile:
     name: str
     design: str
     notes: tuple[str, ...]
-    fuses: FuseMap
     pins: int | None
     vector_limit: int | None
     default: int | None
@@ -207,7 +206,41 @@ class FuseFile:
     def fields(self) -> tuple[Field, ...]:
         return self.frame.fields
 
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class FuseFile(FuseFileContents):
+    """A fuse file that was read and found to be consistent.
+
+    Attributes:
+        fuses: State of every fuse; its length is QF.
+    """
+
+    fuses: FuseMap
+
+    @property
+    def size(self) -> int:
+        """QF: fuses in the device."""
+        return len(self.fuses)
+
     def at_pins(self, vector: Vector) -> dict[int, str]:
         """The condition at each pin: position i is pin i unless a pin sequence says otherwise."""
         order = self.pin_order or range(1, len(vector.conditions) + 1)
         return dict(zip(order, vector.conditions, strict=True))
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class RefusedFile(FuseFileContents):
+    """A fuse file that cannot be relied on, as far as it could be read.
+
+    Good for looking at, never for use.
+
+    Attributes:
+        size: QF: fuses in the device; ``None`` if the file does not say.
+        fuses: State of every fuse as the lists have it; ``None`` if the lists themselves are
+            damaged.
+        errors: Why it is refused, in order of place.
+    """
+
+    size: int | None
+    fuses: FuseMap | None
+    errors: tuple[FuseDiagnostic, ...]

@@ -7,20 +7,27 @@ JEDEC Standard No. 3-A).
 
 from __future__ import annotations
 
+import dataclasses
 import re
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Any
 
 from pla.errors import InputError
 from pla.fuses.jesd3_fields import Findings, cut, transmission_sum
 from pla.fuses.jesd3_lists import read_fuses
-from pla.fuses.jesd3_model import CONDITIONS, IDENTIFIERS, FuseFile
+from pla.fuses.jesd3_model import (
+    CONDITIONS,
+    IDENTIFIERS,
+    FuseFile,
+    FuseFileContents,
+    RefusedFile,
+)
 from pla.fuses.jesd3_values import WHITE, bit, name_of, shown, single
 from pla.fuses.jesd3_vectors import read_tests
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
 
-    from pla.fuses.jesd3_model import Field, Frame, FuseDiagnostic
+    from pla.fuses.jesd3_model import Field, Frame
 
 __all__ = ["FuseFileError", "read_fuse_file"]
 
@@ -29,14 +36,12 @@ class FuseFileError(InputError):
     """A fuse file that cannot be relied on.
 
     Attributes:
-        warnings: What else was found, beside the errors.
+        refused: What it says, as far as it could be read.
     """
 
-    def __init__(
-        self, errors: Sequence[FuseDiagnostic], warnings: Sequence[FuseDiagnostic]
-    ) -> None:
-        super().__init__(errors)
-        self.warnings = tuple(warnings)
+    def __init__(self, refused: RefusedFile) -> None:
+        super().__init__(refused.errors)
+        self.refused = refused
 
 
 def read_fuse_file(data: bytes, file: str) -> FuseFile:
@@ -64,15 +69,11 @@ def read_fuse_file(data: bytes, file: str) -> FuseFile:
     security = single(findings, fields, "G", bit)
     level = single(findings, fields, "X", bit)
     found = findings.sorted()
-    errors = [d for d in found if d.severity == "error"]
-    warnings = [d for d in found if d.severity == "warning"]
-    if errors or fuses.map is None:
-        raise FuseFileError(errors, warnings)
-    return FuseFile(
+    errors = tuple(d for d in found if d.severity == "error")
+    contents = FuseFileContents(
         name=file,
         design=fields[0].text,
         notes=tuple(field.text for field in fields if field.identifier == "N"),
-        fuses=fuses.map,
         pins=tests.pins,
         vector_limit=tests.limit,
         default=fuses.default,
@@ -84,8 +85,18 @@ def read_fuse_file(data: bytes, file: str) -> FuseFile:
         pin_order=tests.pin_order,
         vectors=tests.vectors,
         frame=frame,
-        diagnostics=tuple(warnings),
+        diagnostics=tuple(d for d in found if d.severity == "warning"),
     )
+    if errors or fuses.map is None:
+        refused = RefusedFile(
+            size=fuses.size, fuses=fuses.map, errors=errors, **_as_arguments(contents)
+        )
+        raise FuseFileError(refused)
+    return FuseFile(fuses=fuses.map, **_as_arguments(contents))
+
+
+def _as_arguments(contents: FuseFileContents) -> dict[str, Any]:
+    return {part.name: getattr(contents, part.name) for part in dataclasses.fields(contents)}
 
 
 def _check_frame(findings: Findings, frame: Frame) -> int:

@@ -9,7 +9,7 @@ from pla.fuses.jesd3_fields import Findings
 from pla.fuses.jesd3_values import WHITE, name_of, shown
 
 if TYPE_CHECKING:
-    from pla.fuses.jesd3_model import Field, Frame, FuseDiagnostic, FuseFile
+    from pla.fuses.jesd3_model import Field, Frame, FuseDiagnostic, FuseFileContents
 
 __all__ = ["departures"]
 
@@ -18,7 +18,7 @@ _NUMBERED = re.compile(rb"([ \t\r\n]*)([0-9]+)([ \t\r\n]+)")
 _SINGLE = frozenset({"QF", "QP", "QV", "F", "C", "G", "X"})
 
 
-def departures(file: FuseFile) -> tuple[FuseDiagnostic, ...]:
+def departures(file: FuseFileContents) -> tuple[FuseDiagnostic, ...]:
     """All departures from JESD3 in order of place: the reader's warnings, and what it let pass."""
     frame = file.frame
     findings = Findings(file.name, frame.data)

@@ -5,12 +5,13 @@ from __future__ import annotations
 from collections import Counter
 from typing import TYPE_CHECKING
 
-from pla.fuses.jesd3_model import IDENTIFIERS
+from pla.fuses.jesd3_model import IDENTIFIERS, RefusedFile
 
 if TYPE_CHECKING:
     from collections.abc import Iterator, Sequence
 
     from pla.fuses.jesd3 import FuseDiagnostic, FuseFile
+    from pla.fuses.sizes import SizeMatch
 
 __all__ = ["inspection_text"]
 
@@ -20,12 +21,18 @@ _SHOWN_ELSEWHERE = frozenset({"", "N", "QF", "QP", "QV", "F", "C", "G", "X", "V"
 
 
 def inspection_text(
-    file: FuseFile, departures: Sequence[FuseDiagnostic], devices: Sequence[str]
+    file: FuseFile | RefusedFile,
+    departures: Sequence[FuseDiagnostic],
+    devices: Sequence[str] | None,
+    match: SizeMatch | None = None,
 ) -> str:
-    """Contents, sums, devices of that size, and every departure from the standard."""
-    rows = [(label, text) for label, text in _rows(file, devices) if text]
+    """Contents, sums, devices of that size, and every departure from the standard.
+
+    Of a refused file, what it claims to be; what is wrong with it is left to the diagnostics.
+    """
+    rows = [(label, text) for label, text in _rows(file, devices, match) if text]
     width = max(len(label) for label, _ in rows)
-    lines = [f"{_safe(file.name)}: {_verdict(departures)}", ""]
+    lines = [f"{_safe(file.name)}: {_verdict(file, departures)}", ""]
     for label, text in rows:
         for number, line in enumerate(_safe(text).split("\n")):
             lines.append(f"  {'' if number else label:<{width}}  {line}".rstrip())
@@ -35,7 +42,7 @@ def inspection_text(
         left_out = len(file.vectors) - _VECTORS_SHOWN
         if left_out > 0:
             lines.append(f"  and {left_out} more")
-    if departures:
+    if departures and not isinstance(file, RefusedFile):
         lines += ["", "Departures from the standard"]
         for d in departures:
             at = d.location
@@ -46,19 +53,24 @@ def inspection_text(
     return "\n".join(lines)
 
 
-def _verdict(departures: Sequence[FuseDiagnostic]) -> str:
+def _verdict(file: FuseFile | RefusedFile, departures: Sequence[FuseDiagnostic]) -> str:
+    if isinstance(file, RefusedFile):
+        number = len(file.errors)
+        errors = f"{number} error{'s' if number > 1 else ''}"
+        return f"REFUSED, with {errors}; not to be relied on, and this is only what it claims"
     if not departures:
         return "keeps to the standard in every point"
     number = len(departures)
     return f"readable, with {number} departure{'s' if number > 1 else ''} from the standard"
 
 
-def _rows(file: FuseFile, devices: Sequence[str]) -> Iterator[tuple[str, str]]:
-    fuses = file.fuses
+def _rows(
+    file: FuseFile | RefusedFile, devices: Sequence[str] | None, match: SizeMatch | None
+) -> Iterator[tuple[str, str]]:
     yield "design", file.design
     for note in file.notes:
         yield "note", note
-    yield "fuses", f"{len(fuses)}: {fuses.closed} closed, {fuses.opened} open"
+    yield "fuses", _fuses(file)
     if file.default is not None:
         yield "default", f"{file.default} ({_STATE[file.default]}) for fuses in no list"
     yield "pins", "not given" if file.pins is None else str(file.pins)
@@ -75,24 +87,53 @@ def _rows(file: FuseFile, devices: Sequence[str]) -> Iterator[tuple[str, str]]:
         if identifier not in _SHOWN_ELSEWHERE:
             what = IDENTIFIERS.get(identifier, "unknown")
             yield f"{identifier} fields", f"{number} ({what})"
-    size = f"{len(fuses)} fuses" + ("" if file.pins is None else f" and {file.pins} pins")
-    yield "devices", ", ".join(devices) or f"none in the catalogue has {size}"
+    if match is not None:
+        yield "device", _match(match)
+    yield "devices", _devices(file, devices)
 
 
-def _vectors(file: FuseFile) -> str:
+def _fuses(file: FuseFile | RefusedFile) -> str:
+    if file.fuses is not None:
+        return f"{file.size}: {file.fuses.closed} closed, {file.fuses.opened} open"
+    if file.size is not None:
+        return f"{file.size} by QF; their states are not known"
+    return "not known"
+
+
+def _match(match: SizeMatch) -> str:
+    name = match.device.name
+    if match.matches:
+        return f"{name}: QF and QP are those of the device"
+    if match.differences:
+        return f"{name}: NOT THE SAME SIZE: {'; '.join((*match.differences, *match.untold))}"
+    return f"{name}: nothing differs, but {'; '.join(match.untold)}"
+
+
+def _devices(file: FuseFile | RefusedFile, devices: Sequence[str] | None) -> str:
+    if devices is None:
+        return "not known, as the number of fuses is not"
+    size = f"{file.size} fuses" + ("" if file.pins is None else f" and {file.pins} pins")
+    return ", ".join(devices) or f"none in the catalogue has {size}"
+
+
+def _vectors(file: FuseFile | RefusedFile) -> str:
     limit = "" if file.vector_limit is None else f", at most {file.vector_limit} by QV"
     level = "" if file.default_condition is None else f"; X is {file.default_condition}"
     return f"{len(file.vectors) or 'none'}{limit}{level}"
 
 
-def _checksum(file: FuseFile) -> str:
+def _checksum(file: FuseFile | RefusedFile) -> str:
+    given = "not given" if file.given_checksum is None else f"{file.given_checksum:04X} given"
+    if file.fuses is None:
+        return f"{given}; not computable"
     computed = file.fuses.checksum
     if file.given_checksum is None:
-        return f"not given; computed {computed:04X}"
-    return f"{file.given_checksum:04X} given, {computed:04X} computed: equal"
+        return f"{given}; computed {computed:04X}"
+    verdict = "equal" if file.given_checksum == computed else "NOT EQUAL"
+    return f"{given}, {computed:04X} computed: {verdict}"
 
 
-def _sum(file: FuseFile) -> str:
+def _sum(file: FuseFile | RefusedFile) -> str:
     given, computed = file.given_sum, file.computed_sum
     if given is None:
         return f"not given; computed {computed:04X}"

@@ -2,7 +2,9 @@
 
 import io
 import json
+import re
 import sys
+from pathlib import Path
 
 import pytest
 from jesd3_bytes import GOLDEN, SAMPLE, transmission
@@ -76,6 +78,7 @@ def test_json(capsys, tmp_path):
         "pin_order": None,
         "vectors": [{"number": 1, "conditions": "01HLXN"}],
         "fields": dict.fromkeys(("C", "F", "G", "N", "QF", "QP", "QV", "V", "X"), 1) | {"L": 2},
+        "device": None,
         "devices": [],
     }
     keys = list(json.loads(out, object_pairs_hook=lambda pairs: [k for k, _ in pairs]))
@@ -106,18 +109,196 @@ def test_devices_of_that_size_are_named(capsys, tmp_path, name):
 def test_refused_file(capsys, tmp_path):
     data = b"\x02x*QF4*F0*W1*\r\nL0 10*\r\nL2 21*\x030000"
     code, out, err = inspect(capsys, tmp_path, data)
-    assert (code, out) == (2, "")
+    assert code == 2
+    assert "a.jed: REFUSED, with 1 error;" in out
+    assert rows(out)["fuses"] == "4 by QF; their states are not known"
+    assert rows(out)["fuse checksum"] == "not given; not computable"
     assert "a.jed:3:4: error: byte 26, field L2: '2' found among the fuse states" in err
     assert "  | L2 21*.0000\n  |    ^\n" in err
     assert "a.jed:1:11: warning: byte 10, field 'W': no such identifier" in err
 
 
+def rows(out):
+    """The summary as a dictionary; of a label that stands there twice, the last."""
+    block = out.split("\n\n")[1].splitlines()
+    return dict(re.split(r" {2,}", line.strip(), maxsplit=1) for line in block)
+
+
+def golden_array(**changes):
+    """A fuse file of the smallest array of the catalogue, and that array."""
+    device = find_device("shared-8x16x4")
+    data = write_fuse_file(
+        "Grain dryer",
+        ["rev A"],
+        changes.get("pins", device.pins),
+        FuseMap.filled(device.fuses, 1),
+        list(device.blocks()),
+    )
+    return device, data
+
+
+def test_a_changed_fuse_is_refused_and_the_summary_still_shown(capsys, tmp_path):
+    device, data = golden_array()
+    given = re.search(rb"C([0-9A-F]{4})\*", data)[1].decode()
+    changed = re.sub(rb"(L0+ )1", rb"\g<1>0", data, count=1)
+    assert changed != data
+    code, out, err = inspect(capsys, tmp_path, changed)
+    assert code == 2
+    assert out.count("REFUSED") == 1
+    shown = rows(out)
+    assert (shown["design"], shown["note"], shown["pins"]) == (
+        "Grain dryer",
+        "rev A",
+        str(device.pins),
+    )
+    assert shown["fuses"] == f"{device.fuses}: 1 closed, {device.fuses - 1} open"
+    # Fuse 0 weighs 1 in the sum.
+    computed = f"{int(given, 16) - 1:04X}"
+    assert shown["fuse checksum"] == f"{given} given, {computed} computed: NOT EQUAL"
+    assert shown["devices"] == device.name
+    assert "Departures" not in out
+    # The transmission sum is wrong as well; it stands further behind in the file.
+    assert re.findall(r"(error|warning): .*\[(.*)\]", err) == [
+        ("error", "WRONG-CHECKSUM"),
+        ("warning", "WRONG-SUM"),
+    ]
+
+
+def test_diagnostics_of_a_refused_file_stand_in_order_of_place(capsys, tmp_path):
+    data = b"\x02x*QF4*F0*W1*\r\nL0 12*\r\nw*\r\nL2 21*\r\nC 12*\x03FFFF\r\n"
+    _, _, err = inspect(capsys, tmp_path, data)
+    offsets = [int(n) for n in re.findall(r": byte ([0-9]+)", err)]
+    assert offsets == sorted(offsets)
+    assert len(offsets) == 8
+    found = re.findall(r": (error|warning): ", err)
+    assert sorted(set(found)) == ["error", "warning"]
+    assert found != sorted(found)
+
+
 def test_refused_file_in_json(capsys, tmp_path):
-    code, out, _ = inspect(capsys, tmp_path, b"\x02x*F0*\x030000", "--json")
+    code, out, _ = inspect(capsys, tmp_path, b"\x02x*N a*F0*W*\x030000", "--json")
     document = json.loads(out)
     assert code == 2
     assert [e["code"] for e in document["errors"]] == ["NO-QF"]
     assert document["errors"][0]["file"].endswith("a.jed")
+    assert [w["code"] for w in document["warnings"]] == ["UNKNOWN-FIELD"]
+    for entry in document["errors"] + document["warnings"]:
+        assert sorted(entry) == ["code", "column", "file", "line", "message"]
+    assert (document["design"], document["notes"], document["default"]) == ("x", ["a"], 0)
+    for key in ("fuses", "pins", "links", "fuse_checksum", "fuse_checksum_given", "devices"):
+        assert document[key] is None
+
+
+def test_a_wrong_checksum_in_json_leaves_nothing_else_out(capsys, tmp_path):
+    data = GOLDEN.replace(b"C00D0", b"C00D1")
+    code, out, _ = inspect(capsys, tmp_path, data, "--json")
+    refused = json.loads(out)
+    assert code == 2
+    _, out, _ = inspect(capsys, tmp_path, GOLDEN, "--json")
+    whole = json.loads(out)
+    assert refused["fuse_checksum_given"] == "00D1"
+    assert refused["fuse_checksum"] == whole["fuse_checksum"]
+    differ = {key for key in refused if refused[key] != whole.get(key)}
+    assert differ == {
+        "errors",
+        "warnings",
+        "departures",
+        "fuse_checksum_given",
+        "transmission_sum",
+    }
+
+
+def test_a_default_of_doubtful_meaning_leaves_the_fuses_unknown(capsys, tmp_path):
+    _, out, _ = inspect(capsys, tmp_path, b"\x02x*QF4*L0 10*F1*\x030000", "--json")
+    document = json.loads(out)
+    assert [e["code"] for e in document["errors"]] == ["LATE-DEFAULT"]
+    assert (document["fuses"], document["links"]) == (4, None)
+
+
+@pytest.mark.parametrize(
+    ("data", "options", "expected"),
+    [
+        pytest.param(GOLDEN, ["--strict"], 0, id="clean"),
+        pytest.param(GOLDEN + b"\r\n", [], 0, id="departure"),
+        pytest.param(GOLDEN + b"\r\n", ["--strict"], 1, id="departure-strict"),
+        pytest.param(GOLDEN + b"\r\n", ["--strict", "--json"], 1, id="departure-strict-json"),
+        pytest.param(GOLDEN.replace(b"C00D0", b"C00D1"), ["--strict"], 2, id="refused-strict"),
+    ],
+)
+def test_strict(capsys, tmp_path, data, options, expected):
+    code, out, _ = inspect(capsys, tmp_path, data, *options)
+    assert code == expected
+    assert out
+
+
+def test_help_says_what_strict_is_for(capsys):
+    assert run(["inspect", "--help"]) == 0
+    shown = " ".join(capsys.readouterr().out.split())
+    assert "Without it departures are shown but do not fail." in shown
+
+
+def test_the_device_of_the_file(capsys, tmp_path):
+    device, data = golden_array()
+    code, out, _ = inspect(capsys, tmp_path, data, "--device", device.name)
+    assert code == 0
+    assert rows(out)["device"] == f"{device.name}: QF and QP are those of the device"
+
+
+def test_another_device_is_a_no_in_words(capsys, tmp_path):
+    device, data = golden_array()
+    other = find_device("shared-12x32x6")
+    code, out, err = inspect(capsys, tmp_path, data, "--device", other.name)
+    assert (code, err) == (1, "")
+    assert rows(out)["device"] == (
+        f"{other.name}: NOT THE SAME SIZE: QF is {device.fuses}, but the device has 966 fuses; "
+        f"QP is {device.pins}, but the device has 20 pins"
+    )
+    code, out, _ = inspect(capsys, tmp_path, data, "--device", other.name, "--json")
+    assert code == 1
+    assert json.loads(out)["device"] == {
+        "name": other.name,
+        "fuses": 966,
+        "pins": 20,
+        "matches": False,
+        "differences": [
+            f"QF is {device.fuses}, but the device has 966 fuses",
+            f"QP is {device.pins}, but the device has 20 pins",
+        ],
+    }
+
+
+def test_pins_alone_may_differ(capsys, tmp_path):
+    device, data = golden_array(pins=99)
+    code, out, _ = inspect(capsys, tmp_path, data, "--device", device.name)
+    assert code == 1
+    assert "QF is" not in rows(out)["device"]
+    assert f"QP is 99, but the device has {device.pins} pins" in rows(out)["device"]
+
+
+def test_a_file_without_pins_does_not_contradict_a_device(capsys, tmp_path):
+    device, data = golden_array()
+    data = data.replace(f"QP{device.pins}*\r\n".encode(), b"")
+    code, out, _ = inspect(capsys, tmp_path, data, "--device", device.name)
+    assert code == 0
+    assert rows(out)["device"] == (
+        f"{device.name}: nothing differs, but the file does not give QP, and the device has "
+        f"{device.pins} pins"
+    )
+    _, out, _ = inspect(capsys, tmp_path, data, "--device", device.name, "--json")
+    assert json.loads(out)["device"]["matches"] is None
+
+
+def test_a_device_file_of_ones_own(capsys, tmp_path):
+    device, data = golden_array()
+    own = tmp_path / "own.toml"
+    text = Path(device.location.file).read_text(encoding="utf-8")
+    own.write_text(text.replace(device.name, "own-array"), encoding="utf-8")
+    code, out, _ = inspect(capsys, tmp_path, data, "--device", str(own))
+    assert code == 0
+    assert rows(out)["device"].startswith("own-array: QF and QP are those")
+    code, _, err = inspect(capsys, tmp_path, data, "--device", "shared-8x16x5")
+    assert code == 2
+    assert "did you mean 'shared-8x16x4'?" in err
 
 
 def test_standard_input(capsys, monkeypatch):

@@ -614,7 +614,7 @@ def test_all_errors_in_one_go():
 def test_errors_keep_the_warnings():
     with pytest.raises(FuseFileError) as caught:
         read(b"\x02x*QF4*F0*W*L9 0*\x031111")
-    assert [d.code for d in caught.value.warnings] == ["UNKNOWN-FIELD", "WRONG-SUM"]
+    assert [d.code for d in caught.value.refused.diagnostics] == ["UNKNOWN-FIELD", "WRONG-SUM"]
 
 
 @pytest.mark.parametrize(
@@ -698,7 +698,7 @@ def test_many_faults_of_a_kind_are_summed_up():
         read(b"\x02x*QF4*F0*" + b"L9 0*" * 5000 + b"W*" * 5000 + b"\x030000")
     assert len(caught.value.diagnostics) == 21
     assert "4980 more of this kind" in caught.value.diagnostics[-1].message
-    assert len(caught.value.warnings) == 21
+    assert len(caught.value.refused.diagnostics) == 21
 
 
 @pytest.mark.parametrize(
