@@ -134,22 +134,32 @@ class Section:
         """Report something wrong; at the header if no place is given."""
         self.diagnostics.error(code, message, location or self.where, hint)
 
-    def unknown_keys(self, allowed: Iterable[str]) -> None:
-        """Report every key that is not in `allowed`."""
+    def unknown_keys(
+        self, allowed: Iterable[str], meant: Mapping[str, str] | None = None
+    ) -> set[str]:
+        """Report every key that is not in `allowed`, and return what was probably meant by them.
+
+        Args:
+            allowed: Names of keys.
+            meant: For wrong keys that people try, the hint.
+        """
         names = list(allowed)
+        near = set()
         for key in self.data:
             if key not in names:
                 message = f"unknown key {key!r} in {self.title}"
-                hint = did_you_mean(key, names)
+                hint = (meant or {}).get(key) or did_you_mean(key, names)
                 self.diagnostics.error("KEY-UNKNOWN", message, self.key_at(key), hint)
+                near |= {name for name in names if hint == f"did you mean {name!r}?"}
+        return near
 
-    def raw(self, key: str, *, required: bool = False) -> Any:
-        """The value of a key as parsed, or ``None``."""
+    def raw(self, key: str, *, required: bool = False, hint: str | None = None) -> Any:
+        """The value of a key as parsed, or ``None``; `hint` is how to mend an absent one."""
         if key in self.data:
             return self.data[key]
         if required:
             message = f"{self.title} has no {key!r}"
-            self.diagnostics.error("KEY-MISSING", message, self.where, f"add {key} = …")
+            self.diagnostics.error("KEY-MISSING", message, self.where, hint or f"add {key} = …")
         return None
 
     def wrong(self, expected: str, key: str, *more: str | int) -> None:
@@ -301,9 +311,12 @@ class Section:
                 found.append((span, self.at(key, *more)))
         return found if good else None
 
-    def section(self, key: str, *, required: bool = False) -> Section | None:
-        """A table."""
-        value = self._checked(key, lambda v: isinstance(v, dict), "a table", None, required)
+    def section(
+        self, key: str, *, required: bool = False, hint: str | None = None
+    ) -> Section | None:
+        """A table; `hint` is how to mend an absent one."""
+        self.raw(key, required=required, hint=hint)
+        value = self._checked(key, lambda v: isinstance(v, dict), "a table", None, False)
         return None if value is None else Section(self.file, (*self.path, key), self.diagnostics)
 
     def sections(self, key: str, *, required: bool = False) -> list[Section]:

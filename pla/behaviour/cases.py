@@ -43,7 +43,7 @@ def read_cases(section: Section, signals: Signals, claims: Claims) -> Descriptio
     table.read_header(claims)
     if table.good:
         table.read_rows()
-    if len(diagnostics.errors) > before:
+    if len(diagnostics.errors) > before or not table.good:
         return None
     return Description(
         outputs=tuple(bit for f in table.outputs for bit in f.bits if bit is not None),

@@ -10,6 +10,8 @@ from pla.behaviour.unsupported import refuse_unsupported
 from pla.logic.cubes import MAX_INPUTS, MAX_OUTPUTS
 
 if TYPE_CHECKING:
+    from collections.abc import Container
+
     from pla.tomlfile import Section
 
 __all__ = ["read_signals"]
@@ -17,23 +19,44 @@ __all__ = ["read_signals"]
 _NAME = re.compile(r"[A-Za-z_][A-Za-z0-9_]*")
 _SPAN = re.compile(r"([0-9]+):([0-9]+)")
 _MOST = {"input": MAX_INPUTS, "output": MAX_OUTPUTS}
+_EXAMPLE = {"input": "start = 1", "output": "fan = 1"}
 _HIGHEST_BIT = 255
+_MEANT = {
+    "active_low": 'did you mean active = "low"?',
+    "active_high": 'did you mean active = "high"?',
+    "width": "did you mean 'bits'?",
+}
 _KEYS = {"input": ("active", "bits"), "output": ("active", "bits", "impossible")}
 
 
-def read_signals(top: Section) -> Signals:
-    """All declarations; what is wrong goes to the section's diagnostics."""
-    broken: set[str] = set()
-    inputs = _read_role(top, "input", broken, {})
-    outputs = _read_role(top, "output", broken, {s.name: s for s in inputs})
+def read_signals(top: Section, misspelt: Container[str] = ()) -> Signals:
+    """All declarations; what is wrong goes to the section's diagnostics.
+
+    Args:
+        top: The file.
+        misspelt: Keys that were meant by unknown ones, which have been reported.
+    """
+    inner = top.data.get("inner")
+    # Inner signals are refused as a whole, so that their names are no riddle.
+    broken: set[str] = set(inner) if isinstance(inner, dict) else set()
+    inputs = _read_role(top, "input", broken, {}, misspelt)
+    outputs = _read_role(top, "output", broken, {s.name: s for s in inputs}, misspelt)
     return Signals(tuple(inputs), tuple(outputs), frozenset(broken))
 
 
 def _read_role(
-    top: Section, role: Role, broken: set[str], taken: dict[str, Signal]
+    top: Section,
+    role: Role,
+    broken: set[str],
+    taken: dict[str, Signal],
+    misspelt: Container[str],
 ) -> list[Signal]:
     key = f"{role}s"
-    section = top.section(key, required=True)
+    if key not in top and key in misspelt:
+        return []
+    section = top.section(
+        key, required=True, hint=f"begin a section [{key}] with lines such as: {_EXAMPLE[role]}"
+    )
     if section is None:
         return []
     found: list[Signal] = []
@@ -85,10 +108,11 @@ def _read_signal(section: Section, role: Role, name: str, first: int) -> Signal 
     active_low = False
     impossible: Literal[0, 1] | None = None
     bits: tuple[int, int, bool] | None = (0, 0, False)
+    refused: tuple[str, ...] = ()
     table = section.section(name) if isinstance(value, dict) else None
     if table is not None:
         refused = refuse_unsupported(table, role)
-        table.unknown_keys((*_KEYS[role], *refused))
+        table.unknown_keys((*_KEYS[role], *refused), _MEANT)
         active_low = table.choice("active", ("high", "low"), default="high") == "low"
         if role == "output":
             impossible = table.choice("impossible", (0, 1))
@@ -100,7 +124,9 @@ def _read_signal(section: Section, role: Role, name: str, first: int) -> Signal 
         return None
     high, low, is_bus = bits
     at = section.key_at(name)
-    return Signal(name, role, first, high, low, is_bus, active_low, impossible, at)
+    return Signal(
+        name, role, first, high, low, is_bus, active_low, impossible, at, deferred=bool(refused)
+    )
 
 
 def _read_bits(section: Section, role: Role, key: str) -> tuple[int, int, bool] | None:

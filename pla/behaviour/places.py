@@ -6,6 +6,7 @@ from typing import TYPE_CHECKING
 
 from pla.behaviour.model import Place
 from pla.behaviour.problem import Problem
+from pla.tomlfile import kind_of
 
 if TYPE_CHECKING:
     from pla.behaviour.signals import Signals
@@ -17,8 +18,18 @@ __all__ = ["read_places"]
 def read_places(section: Section | None, signals: Signals) -> dict[str, tuple[Place, ...]]:
     """The pins for each device; what is wrong goes to the section's diagnostics."""
     found: dict[str, tuple[Place, ...]] = {}
-    for device in section or ():
-        table = section.section(device) if section is not None else None
+    if section is None:
+        return found
+    for device, value in section.data.items():
+        if not isinstance(value, dict):
+            section.error(
+                "VALUE",
+                f"{device!r} is {kind_of(value)}, expected a table of pins for each device",
+                section.at(device),
+                "write [place.DEVICE-NAME] with the name of the device above the pins",
+            )
+            break  # what follows is most likely the same
+        table = section.section(device)
         if table is not None:
             found[device] = _read_device(table, signals)
     return found

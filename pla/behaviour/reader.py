@@ -65,21 +65,32 @@ def behaviour_of(file: TomlFile) -> Behaviour:
     """
     diagnostics = Diagnostics()
     top = Section.top(file, diagnostics)
+    if not file.data:
+        top.error(
+            "DESIGN-EMPTY",
+            "the file declares nothing, expected a design",
+            None,
+            "begin with a section [inputs] with lines such as: start = 1",
+        )
+        diagnostics.stop_on_error()
     refused = refuse_unsupported(top, "file")
-    top.unknown_keys((*_KEYS, *refused))
+    meant = top.unknown_keys((*_KEYS, *refused))
     name = _title(top, "name", PurePath(file.file).stem)
     revision = _title(top, "revision", "")
-    signals = read_signals(top)
+    signals = read_signals(top, meant)
+    if not all(isinstance(file.data.get(key), dict) for key in ("inputs", "outputs")):
+        # Every name would be unknown: it is enough to say why.
+        diagnostics.stop_on_error()
     claims = Claims(signals, diagnostics)
     never = read_never(top.section("never"), signals)
-    claims.incomplete = bool(refused)
+    claims.incomplete = bool(refused) or _misses_descriptions(top)
     maps: list[AddressMap] = []
     descriptions = _read_descriptions(top, signals, claims, maps)
     places = read_places(top.section("place"), signals)
     _report_undescribed(signals, claims, diagnostics)
     solved: list[Solved] = []
-    if never is not None and not signals.too_many:
-        solved = solve_all(descriptions, never, signals, diagnostics)
+    if never is not None and "never" not in meant and not signals.too_many:
+        solved = solve_all(_supported(descriptions, signals), never, signals, diagnostics)
         warn_of_contention(maps, never, signals, diagnostics)
     diagnostics.stop_on_error()
     if never is None:  # pragma: no cover - there was an error
@@ -98,6 +109,27 @@ def behaviour_of(file: TomlFile) -> Behaviour:
         places=MappingProxyType(places),
         warnings=tuple(sorted(diagnostics.warnings, key=by_place)),
     )
+
+
+def _misses_descriptions(top: Section) -> bool:
+    """Whether a section that may describe outputs cannot be told, which has its own error."""
+    unknown = any(isinstance(v, dict | list) for k, v in top.data.items() if k not in _KEYS)
+    tables = [top.data.get(key, {}) for key in ("minterms", "logic")]
+    lists = [top.data.get(key, []) for key in ("cases", "address_map")]
+    return (
+        unknown
+        or not all(isinstance(value, dict) for value in tables)
+        or not all(isinstance(value, list) for value in lists)
+        or not all(isinstance(element, dict) for value in lists for element in value)
+    )
+
+
+def _supported(descriptions: list[Description], signals: Signals) -> list[Description]:
+    """The descriptions of outputs that ask for nothing that is not supported yet."""
+    deferred = {
+        bit for s in signals.outputs if s.deferred for bit in range(s.first, s.first + s.size)
+    }
+    return [d for d in descriptions if deferred.isdisjoint(d.outputs)]
 
 
 def _title(top: Section, key: str, default: str) -> str:

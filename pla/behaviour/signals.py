@@ -40,6 +40,7 @@ class Signal:
         active_low: The pins carry the complement.
         impossible: Value demanded of an output for impossible inputs.
         location: Where it is declared.
+        deferred: It asks for what is not supported yet, which has been reported.
     """
 
     name: str
@@ -51,6 +52,7 @@ class Signal:
     active_low: bool
     impossible: Literal[0, 1] | None
     location: Location
+    deferred: bool = False
 
     @property
     def size(self) -> int:

@@ -690,8 +690,13 @@ BAD = [
     ),
     pytest.param(
         lamp("1") + "[place]\nlamp = 3\n",
-        (15, 8, "VALUE", "expected a table"),
+        (15, 8, "VALUE", "'lamp' is the number 3, expected a table of pins for each device"),
         id="place-no-device",
+    ),
+    pytest.param(
+        lamp("1") + "[place]\nlamp = 3\nstart = 4\n",
+        (15, 8, "VALUE", "expected a table of pins for each device"),
+        id="place-no-device-twice",
     ),
 ]
 
@@ -750,6 +755,131 @@ f = "one"
         (20, "EQUATION-SYNTAX"),
         (21, "DESCRIBED-TWICE"),
         (23, "VALUE"),
+    ]
+
+
+SMALL = "[inputs]\nlow = 1\nhigh = 1\n[outputs]\nf = 1\n"
+ROWS = '[[cases]]\nrows = """\nlow high | f\n0 0 | 1\n1 - | 0\n"""\n'
+ALL_ROWS = ROWS.replace("1 - | 0", "1 - | 0\nothers | x")
+
+
+# One mistake, one error: nothing is said of what only follows from it.
+@pytest.mark.parametrize(
+    ("text", "expected", "hint"),
+    [
+        pytest.param(
+            SMALL.replace("inputs", "input") + ROWS + "[logic]\nf = 'low high'\n",
+            "1:2 KEY-UNKNOWN unknown key 'input' in the file",
+            "did you mean 'inputs'?",
+            id="inputs-misspelt",
+        ),
+        pytest.param(
+            SMALL.replace("outputs", "Output") + ROWS + "[place.d]\nf = 3\n",
+            "4:2 KEY-UNKNOWN unknown key 'Output' in the file",
+            "did you mean 'outputs'?",
+            id="outputs-misspelt",
+        ),
+        pytest.param(
+            "[outputs]\nf = 1\n" + ROWS,
+            "1:1 KEY-MISSING the file has no 'inputs'",
+            "begin a section [inputs] with lines such as: start = 1",
+            id="no-inputs",
+        ),
+        pytest.param(
+            "[inputs]\nlow = 1\nhigh = 1\n" + ROWS,
+            "1:1 KEY-MISSING the file has no 'outputs'",
+            "begin a section [outputs] with lines such as: fan = 1",
+            id="no-outputs",
+        ),
+        pytest.param(
+            "inputs = 3\n[outputs]\nf = 1\n" + ROWS,
+            "1:10 VALUE 'inputs' is the number 3, expected a table",
+            None,
+            id="inputs-number",
+        ),
+        pytest.param(
+            "",
+            "1:1 DESIGN-EMPTY the file declares nothing, expected a design",
+            "begin with a section [inputs] with lines such as: start = 1",
+            id="empty",
+        ),
+        pytest.param(
+            "# later\n",
+            "1:1 DESIGN-EMPTY the file declares nothing, expected a design",
+            "begin with a section [inputs] with lines such as: start = 1",
+            id="comments",
+        ),
+        pytest.param(
+            SMALL.replace("high = 1", "high = 0") + ROWS,
+            "3:8 WIDTH 'high' has 0 bits, expected 1 to 64",
+            None,
+            id="width-of-a-column",
+        ),
+        pytest.param(
+            SMALL.replace("high = 1", "high = '1:8'") + ROWS,
+            '3:8 PART-REVERSED "1:8" runs from low to high, expected the higher bit first',
+            'write "8:1"',
+            id="span-of-a-column",
+        ),
+        pytest.param(
+            SMALL.replace("low = 1", "low = 4").replace("high = 1", "high = 0")
+            + "[[address_map]]\nbus = 'low'\nwhen = 'high'\nselect.f = 3\n",
+            "3:8 WIDTH 'high' has 0 bits, expected 1 to 64",
+            None,
+            id="width-of-a-condition",
+        ),
+        pytest.param(
+            SMALL + ROWS.replace("1 - | 0", "1 1 | 0") + '[nevr]\nwhen = "low high\'"\n',
+            "12:2 KEY-UNKNOWN unknown key 'nevr' in the file",
+            "did you mean 'never'?",
+            id="never-misspelt",
+        ),
+        pytest.param(
+            SMALL + "[logc]\nf = 'low'\n",
+            "6:2 KEY-UNKNOWN unknown key 'logc' in the file",
+            "did you mean 'logic'?",
+            id="logic-misspelt",
+        ),
+        pytest.param(
+            SMALL + ALL_ROWS.replace("[[cases]]", "[cases]"),
+            "6:1 VALUE 'cases' is a table, expected a list of tables",
+            "write [[cases]] with two brackets",
+            id="one-bracket",
+        ),
+        pytest.param(
+            SMALL + "[inner]\narmed = 1\n[logic]\nf = 'armed'\narmed = 'low'\n",
+            "6:2 NOT-SUPPORTED-YET 'inner': inner signals are not supported yet",
+            "this version plans combinational outputs on a shared OR array",
+            id="inner",
+        ),
+        pytest.param(
+            SMALL.replace("f = 1", "f = { register = 'D' }\ng = 1")
+            + "[logic]\nf = 'f + low'\ng = 'f high'\n",
+            "5:7 NOT-SUPPORTED-YET 'register': registered outputs are not supported yet",
+            "this version plans combinational outputs on a shared OR array",
+            id="register-fed-back",
+        ),
+        pytest.param(
+            SMALL.replace("low = 1", "low = { active_low = true }") + ALL_ROWS,
+            "2:9 KEY-UNKNOWN unknown key 'active_low' in [inputs.low]",
+            'did you mean active = "low"?',
+            id="active-low",
+        ),
+    ],
+)
+def test_one_mistake_is_one_error(text, expected, hint):
+    (found,) = errors_of(text)
+    at = found.location
+    assert f"{at.line}:{at.column} {found.code} {found.message}" == expected
+    assert found.hint == hint
+
+
+def test_a_broken_name_hides_no_error_elsewhere():
+    text = SMALL.replace("high = 1", "high = 0").replace("f = 1", "f = 1\ng = 1")
+    text += ROWS.replace("1 - | 0", "2 - | 0") + '[[cases]]\nrows = """\nlow | g\n0 | 1\n"""\n'
+    assert [(d.location.line, d.code) for d in errors_of(text)] == [
+        (3, "WIDTH"),
+        (15, "OPEN-INPUTS"),
     ]
 
 
