@@ -10,7 +10,7 @@ from pla.cli.output import emit_json, emit_text, note, show_diagnostics
 
 if TYPE_CHECKING:
     from pla.behaviour.model import Behaviour
-    from pla.fitting.model import Fit
+    from pla.fitting.model import Fit, KnownMinima
 
 __all__ = ["command"]
 
@@ -64,9 +64,10 @@ def command(
     array = find_device(device)
     elsewhere = places_elsewhere(behaviour, array)
     show_diagnostics((*behaviour.warnings, *array.warnings, *elsewhere))
-    outcome = fit(behaviour, array, cast("Any", polarity))
+    known: KnownMinima = {}
+    outcome = fit(behaviour, array, cast("Any", polarity), known=known)
     if not outcome.fits:
-        return _refuse(outcome, polarity, as_json=as_json)
+        return _refuse(outcome, polarity, known, as_json=as_json)
     minimum = outcome.minimum
     if require_proof and minimum is not None and not minimum.proven:
         return _unproven(outcome, as_json=as_json)
@@ -94,14 +95,14 @@ def _write(behaviour: Behaviour, outcome: Fit, folder: str, *, force: bool, as_j
     return 0
 
 
-def _refuse(outcome: Fit, polarity: str, *, as_json: bool) -> int:
+def _refuse(outcome: Fit, polarity: str, known: KnownMinima, *, as_json: bool) -> int:
     from pla.device.catalogue import catalogue, find_device
     from pla.fitting.holders import holders
     from pla.report.cover_json import fit_document
     from pla.report.refusal_text import refusal_text
 
     others = [find_device(name) for name in catalogue() if name != outcome.device.name]
-    found = holders(outcome, others, cast("Any", polarity))
+    found = holders(outcome, others, cast("Any", polarity), known)
     if as_json:
         emit_json(fit_document(outcome, None, (), [f.device.name for f in found]))
     else:

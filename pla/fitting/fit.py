@@ -10,15 +10,16 @@ from pla.errors import Diagnostic, InternalError
 from pla.fitting.matching import first_matching
 from pla.fitting.model import Fit, PlacedInput, PlacedOutput, Plan, Usage
 from pla.fitting.places import settled_places
-from pla.fitting.polarity import allowed_polarities, mode_for, tied_polarities
+from pla.fitting.polarity import allowed_polarities, mode_for, tied_polarities, ties_of
 from pla.logic.minimize import minimize
 
 if TYPE_CHECKING:
-    from collections.abc import Iterable, Mapping, MutableMapping, Sequence
+    from collections.abc import Iterable, Mapping, Sequence
 
     from pla.behaviour.model import Behaviour
     from pla.device.model import Cell, Device
-    from pla.fitting.model import PolarityWish
+    from pla.fitting.model import KnownMinima, PolarityWish
+    from pla.fitting.polarity import Ties
     from pla.logic.effort import Effort
     from pla.logic.minimize import Minimum
     from pla.logic.phases import Polarity
@@ -33,7 +34,7 @@ def fit(
     device: Device,
     wish: PolarityWish = "free",
     effort: Effort | None = None,
-    known: MutableMapping[tuple[Polarity, ...], Minimum] | None = None,
+    known: KnownMinima | None = None,
 ) -> Fit:
     """Find the smallest cover that the device can hold and put everything in its place.
 
@@ -42,8 +43,7 @@ def fit(
         device: A shared OR array.
         wish: Polarities that the user allows.
         effort: The budget for minimizing.
-        known: Minima of this behaviour by polarities, to be used again and added to; only where
-            the device does not tie polarities together.
+        known: Minima of this behaviour, to be used again and added to.
 
     Returns:
         The plan, or every reason why there is none.
@@ -73,14 +73,30 @@ def fit(
         nothing = tuple(allowed)
         return Fit(behaviour, device, nothing, None, None, tuple(reasons), needed, pins, outputs)
     polarities = [p for p in allowed if p is not None]
-    minima = {} if known is None or feasible is not None else known
-    key = tuple(polarities)
-    if key not in minima:
-        minima[key] = minimize(
-            behaviour.function, polarities, feasible=_within(feasible, polarities), effort=effort
-        )
-    minimum = minima[key]
+    ties = ties_of(device, cells) if feasible else None
+    within = _within(feasible, polarities)
+    minima = {} if known is None else known
+    minimum = _known(minima, tuple(polarities), ties, within)
+    if minimum is None:
+        minimum = minimize(behaviour.function, polarities, feasible=within, effort=effort)
+        minima[tuple(polarities), ties] = minimum
     return _place(behaviour, device, polarities, minimum, places, cells, outputs)
+
+
+def _known(
+    minima: KnownMinima,
+    polarities: tuple[Polarity, ...],
+    ties: Ties | None,
+    within: Feasible | None,
+) -> Minimum | None:
+    """The minimum of a device that ties polarities alike, or of one that does not tie them at all.
+
+    The latter serves where its polarities happen to be ones that may be had together.
+    """
+    untied = minima.get((polarities, None))
+    if untied is not None and (within is None or within(untied.complemented)):
+        return untied
+    return minima.get((polarities, ties))
 
 
 def _barred(names: Sequence[str], wish: PolarityWish) -> list[str]:

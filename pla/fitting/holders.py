@@ -4,23 +4,26 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
-from pla.fitting.fit import fit
+from pla.fitting.budgets import fits_on
 from pla.logic.effort import Effort
 
 if TYPE_CHECKING:
     from collections.abc import Iterable
 
     from pla.device.model import Device
-    from pla.fitting.model import Fit, PolarityWish
-    from pla.logic.minimize import Minimum
-    from pla.logic.phases import Polarity
+    from pla.fitting.model import Fit, KnownMinima, PolarityWish
 
 __all__ = ["holders"]
 
 HOLDER_EFFORT = 100_000.0
 
 
-def holders(refused: Fit, devices: Iterable[Device], wish: PolarityWish) -> tuple[Fit, ...]:
+def holders(
+    refused: Fit,
+    devices: Iterable[Device],
+    wish: PolarityWish,
+    known: KnownMinima | None = None,
+) -> tuple[Fit, ...]:
     """The fits of all devices that hold a design, in the order given.
 
     Args:
@@ -28,20 +31,13 @@ def holders(refused: Fit, devices: Iterable[Device], wish: PolarityWish) -> tupl
         devices: What to try. Those that lack output pins are left out before anything is
             minimized for them.
         wish: Polarities that the user allows.
-
-    Raises:
-        InputError: If a place in the design names a pin that cannot carry its signal.
+        known: Minima of this design, to be used again and added to.
     """
     behaviour = refused.behaviour
-    minima: dict[tuple[Polarity, ...], Minimum] = {}
-    if refused.minimum is not None:
-        key = tuple(p for p in refused.polarities if p is not None)
-        minima[key] = refused.minimum
-    found = []
-    for device in devices:
-        if len(device.output_pins) < len(behaviour.outputs):
-            continue
-        tried = fit(behaviour, device, wish, Effort(work=HOLDER_EFFORT, nodes=200), minima)
-        if tried.fits:
-            found.append(tried)
-    return tuple(found)
+    candidates = [d for d in devices if len(d.output_pins) >= len(behaviour.outputs)]
+    tried = fits_on(behaviour, candidates, wish, _effort, known)
+    return tuple(found for found in tried if found.fits)
+
+
+def _effort() -> Effort:
+    return Effort(work=HOLDER_EFFORT, nodes=200)

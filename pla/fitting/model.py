@@ -3,18 +3,22 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
-from typing import TYPE_CHECKING, Literal
+from typing import TYPE_CHECKING, Literal, TypeAlias
 
 if TYPE_CHECKING:
     from pla.behaviour.model import Behaviour
     from pla.device.model import Device, Mode
+    from pla.fitting.polarity import Ties
     from pla.logic.minimize import Minimum
     from pla.logic.phases import Polarity
 
-__all__ = ["Fit", "PlacedInput", "PlacedOutput", "Plan", "PolarityWish", "Usage"]
+__all__ = ["Fit", "KnownMinima", "PlacedInput", "PlacedOutput", "Plan", "PolarityWish", "Usage"]
 
 PolarityWish = Literal["true", "free"]
 """``true``: every sum is the asserted function; ``free``: true or complemented as serves best."""
+
+KnownMinima: TypeAlias = "dict[tuple[tuple[Polarity, ...], Ties | None], Minimum]"
+"""Minima of one behaviour by the polarities allowed and by how a device ties them together."""
 
 
 @dataclass(frozen=True, slots=True)

@@ -2,15 +2,18 @@
 
 from __future__ import annotations
 
+import difflib
 from typing import TYPE_CHECKING
 
 from pla.errors import Diagnostic, Diagnostics
 
 if TYPE_CHECKING:
-    from pla.behaviour.model import Behaviour
+    from collections.abc import Sequence
+
+    from pla.behaviour.model import Behaviour, Place
     from pla.device.model import Device
 
-__all__ = ["places_elsewhere", "settled_places"]
+__all__ = ["places_elsewhere", "places_nowhere", "settled_places", "wrong_places"]
 
 
 def settled_places(behaviour: Behaviour, device: Device) -> dict[str, int]:
@@ -19,22 +22,26 @@ def settled_places(behaviour: Behaviour, device: Device) -> dict[str, int]:
     Raises:
         InputError: For every pin that cannot carry its signal, with its location.
     """
-    problems = Diagnostics()
+    problems = Diagnostics(list(wrong_places(behaviour, device).values()))
+    problems.stop_on_error()
+    return {place.signal: place.pin for place in behaviour.places.get(device.name, ())}
+
+
+def wrong_places(behaviour: Behaviour, device: Device) -> dict[Place, Diagnostic]:
+    """The places for this device whose pin cannot carry the signal, each with its error."""
     is_input = set(behaviour.input_names)
-    settled: dict[str, int] = {}
+    wrong = {}
     for place in behaviour.places.get(device.name, ()):
         wanted = device.input_pins if place.signal in is_input else device.output_pins
         if place.pin not in wanted:
             kind = "an input" if place.signal in is_input else "an output"
-            problems.error(
+            wrong[place] = Diagnostic(
                 "PLACE-PIN",
                 f"{place.signal} is {kind}, but {_role(device, place.pin)} on {device.name}",
                 place.location,
                 f"pins for {kind[3:]}s: {_listed(wanted)}",
             )
-        settled[place.signal] = place.pin
-    problems.stop_on_error()
-    return settled
+    return wrong
 
 
 def places_elsewhere(behaviour: Behaviour, device: Device) -> tuple[Diagnostic, ...]:
@@ -42,17 +49,41 @@ def places_elsewhere(behaviour: Behaviour, device: Device) -> tuple[Diagnostic, 
     if not behaviour.places or device.name in behaviour.places:
         return ()
     names = list(behaviour.places)
-    first = next((place for name in names for place in behaviour.places[name]), None)
     return (
-        Diagnostic(
-            "PLACE-ELSEWHERE",
+        _elsewhere(
+            behaviour,
+            names,
             f"no pins are decided for {device.name}; the design decides them for "
             f"{' and '.join(names)}",
-            first.location if first else None,
             f"if they are meant for this device, write [place.{device.name}]",
-            "warning",
         ),
     )
+
+
+def places_nowhere(behaviour: Behaviour, devices: Sequence[Device]) -> tuple[Diagnostic, ...]:
+    """A warning for every device that a design decides pins on and that is none of these."""
+    known = [device.name for device in devices]
+    return tuple(
+        _elsewhere(
+            behaviour,
+            [name],
+            f"pins are decided for {name}, which is none of the devices compared",
+            _near(name, known),
+        )
+        for name in behaviour.places
+        if name not in known
+    )
+
+
+def _elsewhere(behaviour: Behaviour, names: Sequence[str], message: str, hint: str) -> Diagnostic:
+    first = next((place for name in names for place in behaviour.places[name]), None)
+    at = first.location if first else None
+    return Diagnostic("PLACE-ELSEWHERE", message, at, hint, "warning")
+
+
+def _near(name: str, known: Sequence[str]) -> str:
+    near = difflib.get_close_matches(name, known, n=1)
+    return f"did you mean {near[0]!r}?" if near else f"there are: {', '.join(known)}"
 
 
 def _role(device: Device, pin: int) -> str:

@@ -16,7 +16,10 @@ if TYPE_CHECKING:
     from pla.logic.relaxation import Decisions
     from pla.logic.search import Feasible
 
-__all__ = ["allowed_polarities", "mode_for", "tied_polarities", "wished_polarities"]
+__all__ = ["allowed_polarities", "mode_for", "tied_polarities", "ties_of", "wished_polarities"]
+
+Ties = tuple[tuple[tuple[str, ...], tuple[int, ...]], ...]
+"""For each cell what it offers, and which outputs could have it."""
 
 
 def mode_for(cell: Cell, active_low: bool, complemented: bool) -> Mode | None:
@@ -65,7 +68,7 @@ def tied_polarities(
     Cells that differ in their modes tie them: a choice is then feasible when every output can
     still have a cell of its own that offers its polarity.
     """
-    if len({frozenset(mode.pin for mode in cell.modes) for cell in device.cells}) == 1:
+    if not _differ(device):
         return None
 
     def feasible(decisions: Decisions, /) -> bool:
@@ -84,3 +87,26 @@ def tied_polarities(
         )
 
     return feasible
+
+
+def ties_of(device: Device, cells: Sequence[Sequence[Cell]]) -> Ties | None:
+    """What `tied_polarities` depends on beside the outputs: equal for devices that tie them alike.
+
+    Args:
+        device: Whose cells.
+        cells: For each output the cells that it could have.
+    """
+    if not _differ(device):
+        return None
+    takers = {
+        cell.pin: tuple(j for j, own in enumerate(cells) if cell in own) for cell in device.cells
+    }
+    return tuple(sorted((_offer(cell), takers[cell.pin]) for cell in device.cells))
+
+
+def _differ(device: Device) -> bool:
+    return len({_offer(cell) for cell in device.cells}) > 1
+
+
+def _offer(cell: Cell) -> tuple[str, ...]:
+    return tuple(sorted({mode.pin for mode in cell.modes}))
