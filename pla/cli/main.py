@@ -25,6 +25,7 @@ COMMANDS = {
     "check": ("pla.cli.check", "Read and check a design."),
     "terms": ("pla.cli.terms", "Find the smallest set of shared product terms; no device."),
     "plan": ("pla.cli.plan", "Minimize, fit, prove, write fuse file, tables and report."),
+    "budget": ("pla.cli.budget", "Hold a design against every device, best first."),
     "device": ("pla.cli.device", "List, show and check device files."),
     "inspect": ("pla.cli.inspect", "Hold a fuse file against the standard."),
 }

@@ -68,6 +68,7 @@ def fit(
     if not reasons and feasible is not None and not _holds(feasible, allowed):
         reasons.append("the cells cannot give all outputs a polarity that they may have together")
     if reasons:
+        reasons += _too_many_outputs(outputs)
         needed = Usage(0, device.terms)
         pins = Usage(len(behaviour.inputs), len(device.input_pins))
         nothing = tuple(allowed)
@@ -191,12 +192,16 @@ def _shortages(minimum: Minimum, terms: Usage, inputs: Usage, outputs: Usage) ->
             f"{inputs.used} inputs are needed, the device has {inputs.available} input pins: "
             f"{inputs.over} too many"
         )
-    if outputs.over:
-        reasons.append(
-            f"{outputs.used} outputs are needed, the device has {outputs.available} output cells: "
-            f"{outputs.over} too many"
-        )
-    return reasons
+    return reasons + _too_many_outputs(outputs)
+
+
+def _too_many_outputs(outputs: Usage) -> list[str]:
+    if not outputs.over:
+        return []
+    return [
+        f"{outputs.used} outputs are needed, the device has {outputs.available} output cells: "
+        f"{outputs.over} too many"
+    ]
 
 
 def _lines_needed(behaviour: Behaviour, minimum: Minimum) -> list[frozenset[bool]]:

@@ -1,0 +1,127 @@
+"""Devices against a design, as tables for people."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+from pla.report.notation import listed, plural
+from pla.report.table import Table
+from pla.report.text import filled, table_text
+from pla.report.verdict import title
+
+if TYPE_CHECKING:
+    from collections.abc import Collection, Iterator, Sequence
+
+    from pla.behaviour.model import Behaviour
+    from pla.fitting.budgets import DeviceBudget, Resource
+    from pla.fitting.model import Usage
+
+__all__ = ["RANKING", "budgets_text"]
+
+RANKING = (
+    "Best first: devices that hold the design, by fewest pins, then fewest fuses, then name; then "
+    "the others, by how many product terms, input pins and output cells are missing together, of "
+    "equals the smallest; last those for which the number of product terms is not known."
+)
+
+
+def budgets_text(
+    behaviour: Behaviour,
+    found: Sequence[DeviceBudget],
+    reserve: int = 0,
+    catalogue: Collection[str] = (),
+) -> str:
+    """Which devices hold a design, what they leave spare, and why the others do not hold it.
+
+    Args:
+        behaviour: What is wanted.
+        found: Every device, best first.
+        reserve: Product terms that have to stay spare.
+        catalogue: Names of devices that ship with the program; the others name their file.
+    """
+    holding = [budget for budget in found if budget.fits]
+    others = [budget for budget in found if not budget.fits]
+    kept = f" with {plural(reserve, 'product term')} spare" if reserve else ""
+    verb = "holds" if len(holding) == 1 else "hold"
+    parts = [
+        f"{title(behaviour)}: {len(holding)} of {plural(len(found), 'device')} {verb} it{kept}",
+        filled(RANKING),
+    ]
+    if holding:
+        parts.append(table_text(_holding(holding)))
+    if others:
+        parts.append(table_text(_others(others)))
+    parts += map(filled, _remarks(behaviour, found, catalogue))
+    return "\n\n".join(parts)
+
+
+def _holding(found: Sequence[DeviceBudget]) -> Table:
+    rows = []
+    for budget in found:
+        usages = (budget.fit.terms, budget.fit.inputs, budget.fit.outputs)
+        cells = [text for u in usages for text in (_used(u), str(u.available - u.used))]
+        size = (str(budget.device.pins), str(budget.device.fuses))
+        rows.append((budget.device.name, *cells, budget.tightest, *size))
+    return Table(
+        "Devices that hold it",
+        (
+            "device",
+            *("terms", "spare", "inputs", "spare", "outputs", "spare"),
+            *("tightest", "pins", "fuses"),
+        ),
+        tuple(rows),
+        aligned="lrrrrrrlrr",
+    )
+
+
+def _others(found: Sequence[DeviceBudget]) -> Table:
+    rows = []
+    for budget in found:
+        known = budget.usages
+        resources: tuple[Resource, ...] = ("terms", "inputs", "outputs")
+        cells = [_used(known[r]) if r in known else "not known" for r in resources]
+        why = "; ".join(budget.reasons)
+        rows.append((budget.device.name, *cells, budget.tightest, f"{why[:1].upper()}{why[1:]}."))
+    return Table(
+        "Devices that do not",
+        ("device", "terms", "inputs", "outputs", "tightest", "why"),
+        tuple(rows),
+        aligned="lrrrll",
+        wrapped=(5,),
+    )
+
+
+def _used(usage: Usage) -> str:
+    return f"{usage.used} of {usage.available}"
+
+
+def _remarks(
+    behaviour: Behaviour, found: Sequence[DeviceBudget], catalogue: Collection[str]
+) -> Iterator[str]:
+    """How to read the tables."""
+    yield "Tightest: what is used up by the largest share."
+    yield from _proofs(found)
+    needed = [b.fit.inputs.used for b in found if b.fit.minimum]
+    if any(used < len(behaviour.inputs) for used in needed):
+        yield "Inputs that no term needs are not counted."
+    own = [b.device for b in found if b.device.name not in catalogue]
+    if own:
+        files = listed([f"{device.name} in {device.location.file}" for device in own])
+        yield f"Not of the catalogue: {files}."
+
+
+def _proofs(found: Sequence[DeviceBudget]) -> Iterator[str]:
+    """How far the numbers of terms are known to be the fewest."""
+    minima = [(b.fit.minimum, b.device.name) for b in found if b.fit.minimum]
+    gaps: dict[tuple[int, int], list[str]] = {}
+    for minimum, name in minima:
+        if not minimum.proven:
+            gaps.setdefault((minimum.count, minimum.lower_bound), []).append(name)
+    for (count, bound), names in gaps.items():
+        yield (
+            f"{plural(count, 'product term')} for {listed(names)}: NOT proven to be the fewest, "
+            f"at least {bound} are needed."
+        )
+    if any(minimum.proven for minimum, _ in minima):
+        which = "Each other number of terms" if gaps else "Each number of terms"
+        yield f"{which} is proven to be the fewest for the polarities that the device allows."
