@@ -56,6 +56,7 @@ def summary_table(
             ),
         ),
         remarks=tuple(_remarks(behaviour, found, prices, minimum)),
+        wrapped=(0,),
         repeated=1,
     )
 
@@ -115,7 +116,7 @@ def detail_table(behaviour: Behaviour, found: Sequence[Settled]) -> Table:
         ),
         aligned="lllrl",
         lead=(_READING,) if found else ("There are none.",),
-        wrapped=(4,),
+        wrapped=(0, 4),
         repeated=3,
     )
 

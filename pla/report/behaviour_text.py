@@ -5,6 +5,8 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from pla.report.behaviour_counts import OutputCounts, count_outputs
+from pla.report.layout import WIDTH, broken
+from pla.report.text import filled, kept_together
 
 if TYPE_CHECKING:
     from collections.abc import Iterator, Sequence
@@ -15,6 +17,8 @@ __all__ = ["behaviour_text"]
 
 MAX_PLAIN = 1 << 24
 """Up to so many combinations numbers are shown as they are; above, as shares."""
+
+_NAME = 40  # a longer name of an output is broken into lines
 
 _FORMS = {
     "cases": "table",
@@ -43,7 +47,7 @@ def behaviour_text(behaviour: Behaviour) -> str:
     plain = total <= MAX_PLAIN
     rows = [
         [
-            output.name,
+            "\n".join(broken(output.name, _NAME)),
             _described(output, behaviour.file),
             *_shares(count, plain=plain),
             ", ".join(_sources(count, plain=plain)),
@@ -61,8 +65,8 @@ def behaviour_text(behaviour: Behaviour) -> str:
     lines = [
         title,
         "",
-        f"  inputs   {len(behaviour.inputs):>2}  {_signals(behaviour.inputs)}",
-        f"  outputs  {len(behaviour.outputs):>2}  {_signals(behaviour.outputs)}",
+        *_side("inputs", behaviour.inputs),
+        *_side("outputs", behaviour.outputs),
         "",
         f"Input combinations that ask for 1, for 0 and for nothing, of {total} in all"
         + ("." if plain else ";"),
@@ -104,8 +108,15 @@ def _sources(count: OutputCounts, *, plain: bool) -> Iterator[str]:
         yield f"{_REASONS[reason]} {top}/{bottom}"
 
 
+def _side(side: str, bits: Sequence[Input | Output]) -> Iterator[str]:
+    """How many, and their names in order, the bits of a bus as one."""
+    start = f"  {side:<7}  {len(bits):>2}  "
+    for line in filled(_signals(bits), WIDTH - len(start)).split("\n"):
+        yield start + line
+        start = " " * len(start)
+
+
 def _signals(bits: Sequence[Input | Output]) -> str:
-    """Names in order, the bits of a bus as one."""
     shown: list[str] = []
     groups: dict[str, list[Input | Output]] = {}
     for bit in bits:
@@ -115,5 +126,5 @@ def _signals(bits: Sequence[Input | Output]) -> str:
         text = first
         if len(group) > 1:
             text = f"{name}[{first[len(name) + 1 : -1]}:{last[len(name) + 1 : -1]}]"
-        shown.append(f"{text} (active low)" if group[0].active_low else text)
+        shown.append(kept_together(f"{text} (active low)") if group[0].active_low else text)
     return ", ".join(shown)

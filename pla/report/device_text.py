@@ -10,6 +10,8 @@ from typing import TYPE_CHECKING
 from tabulate import tabulate
 
 from pla.device.consistency import spans
+from pla.report.layout import drawn
+from pla.report.table import Table
 
 if TYPE_CHECKING:
     from collections.abc import Iterator, Sequence
@@ -351,7 +353,7 @@ def _labels(device: Device) -> Iterator[tuple[list[str], list[str]]]:
 
 
 def catalogue_table(devices: Sequence[Device]) -> str:
-    """One line for each device: the figures by which it is chosen."""
+    """A row for each device: the figures by which it is chosen."""
     rows = [
         (
             d.name,
@@ -365,7 +367,5 @@ def catalogue_table(devices: Sequence[Device]) -> str:
         )
         for d in devices
     ]
-    head = ["name", "inputs", "terms", "outputs", "pins", "fuses", "technology", "summary"]
-    right = "right"
-    align = ("left", right, right, right, right, right, "left", "left")
-    return str(tabulate(rows, head, tablefmt="plain", disable_numparse=True, colalign=align))
+    head = ("name", "inputs", "terms", "outputs", "pins", "fuses", "technology", "summary")
+    return drawn(Table("", head, tuple(rows), aligned="lrrrrrll", wrapped=(7,)))

@@ -50,6 +50,7 @@ def pin_list(plan: Plan) -> Table:
             for pin in range(1, device.pins + 1)
         ),
         aligned="rllll",
+        wrapped=(1, 4),
         remarks=tuple(_remarks(plan)),
     )
 

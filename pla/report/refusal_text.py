@@ -64,6 +64,7 @@ def _term_costs(fit: Fit, minimum: Minimum) -> Table:
             for j in order
         ),
         aligned="lrrrr",
+        wrapped=(0,),
         remarks=(_enough([names[j] for j in order if without[j].terms <= fit.terms.available]),),
     )
 
@@ -101,7 +102,7 @@ def _input_costs(fit: Fit, minimum: Minimum) -> Table:
         ("output", "its inputs", "private", "which"),
         tuple(rows),
         aligned="lrrl",
-        wrapped=(3,),
+        wrapped=(0, 3),
     )
 
 

@@ -90,7 +90,7 @@ def output_table(behaviour: Behaviour, minimum: Minimum, alone: Sequence[Count])
         ("output", "sum", "terms", "private", "shared", "alone", "numbers of the terms"),
         rows,
         aligned="llrrrrl",
-        wrapped=(6,),
+        wrapped=(0, 6),
         remarks=(
             (
                 "Sum T: the asserted function; C: its complement. Private terms are in no other "

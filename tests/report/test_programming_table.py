@@ -15,6 +15,7 @@ from pla.fitting.prices import alone_counts
 from pla.logic.cubes import Cover, Cube
 from pla.logic.minimize import minimize
 from pla.logic.phases import Polarity
+from pla.report.layout import broken
 from pla.report.markdown import escaped, table_markdown
 from pla.report.notation import groups_of, product
 from pla.report.programming_table import programming_table
@@ -151,24 +152,71 @@ def test_bars_in_cells_do_not_make_columns():
     assert r"## T\|" in lines
 
 
-def test_wide_tables_read_downwards_and_stay_within_the_width():
-    names = [f"signal_{k:02}" for k in range(20)]
-    table = Table(
+def wide_table(names, body, parts=None):
+    columns = len(names)
+    return Table(
         "Wide",
         ("term", *names),
-        (("1", *("10–1" * 5)),),
-        "r" + "l" * 20,
-        under=(("pin", *map(str, range(1, 21))),),
-        strips=tuple(Strip(k, name, ("",), int(k > 15)) for k, name in enumerate(names, 1)),
+        (("1", *body),),
+        "r" + "l" * columns,
+        under=(("pin", *map(str, range(1, columns + 1))),),
+        strips=tuple(
+            Strip(k, name, ("",), int(k > (parts or columns))) for k, name in enumerate(names, 1)
+        ),
     )
-    lines = table_text(table).split("\n")
-    assert max(map(len, lines)) <= WIDTH
-    heads = lines[3 : next(k for k, line in enumerate(lines[3:], 3) if set(line) == {"-"})]
-    last = lines[3 + len(heads) + 1]
-    for k, name in enumerate(names):
-        column = [m.start() for m in re.finditer(r"\S", last)][k + 1]
-        down = "".join(line[column : column + 1] for line in heads)
-        assert down.split() == [name + str(k + 1)] or down.split() == [name, str(k + 1)]
+
+
+def read_blocks(text):
+    """Name, pin and cell of every column, by the place where its name stands and its line ends."""
+    found = []
+    for block in text.split("\n\n")[1:]:
+        lines = block.split("\n")
+        rule = next(k for k, line in enumerate(lines) if set(line) == {"-"})
+        heads, (body,) = lines[:rule], lines[rule + 1 :]
+        named = [
+            (match.start(), match[0], k)
+            for k, line in enumerate(heads)
+            for match in re.finditer(r"[a-z]\w*", line)
+            if match[0] not in ("pin", "term")
+        ]
+        for at, name, k in sorted(named):
+            below = "".join(line[at : at + 1] for line in heads[k + 1 :]).replace(" ", "")
+            found.append((name, int(below.replace("|", "")), body[at]))
+    return found
+
+
+@pytest.mark.parametrize(
+    ("count", "length", "blocks"),
+    [
+        pytest.param(20, 9, 1, id="twenty"),
+        pytest.param(20, 46, 1, id="long names"),
+        pytest.param(20, 64, 2, id="names longer than half the width"),
+        pytest.param(64, 9, 2, id="sixty-four"),
+    ],
+)
+def test_names_in_wide_tables_are_horizontal_and_within_the_width(count, length, blocks):
+    names = [f"s{'_' * (length - 3)}{k:02}" for k in range(count)]
+    body = ("10–1" * count)[:count]
+    text = table_text(wide_table(names, body, count - 4))
+    assert max(map(len, text.split("\n"))) <= WIDTH
+    expected = [(name, k, body[k - 1]) for k, name in enumerate(names, 1)]
+    assert read_blocks(text) == expected
+    assert text.count("term") == blocks
+
+
+def test_names_stand_no_higher_than_they_need():
+    long = "lamp_that_tells_the_operator_of_the_press_to_step_back_now"
+    names = ["hatch", "b", "c", "guard", f"{long}_a", f"{long}_b", "bell"]
+    expected = f"""\
+            guard
+            |    {long}_a
+      hatch |    | {long}_b
+      | b c |    | | bell
+ pin  1 2 3 4    5 6 7
+term
+----------------------
+   1  1 0 – 1    1 – 1"""
+    assert table_text(wide_table(names, "10–11–1", 4)).split("\n\n")[1] == expected
 
 
 def test_long_cells_are_broken_between_words():
@@ -177,6 +225,19 @@ def test_long_cells_are_broken_between_words():
     text = table_text(table)
     assert max(map(len, text.split("\n"))) <= WIDTH
     assert [w for w in text.split() if w.startswith("addr")] == words.split()
+
+
+@pytest.mark.parametrize(
+    ("text", "lines"),
+    [
+        pytest.param("", [""], id="nothing"),
+        pytest.param("one two three", ["one two", "three"], id="between words"),
+        pytest.param("lamp_that_warns on", ["lamp_", "that_", "warns on"], id="behind underscores"),
+        pytest.param("abcdefghijklmn", ["abcdefghi", "jklmn"], id="anywhere if there is no other"),
+    ],
+)
+def test_long_names_are_broken_behind_underscores(text, lines):
+    assert broken(text, 9) == lines
 
 
 def test_repeated_cells_are_left_empty_only_under_their_like():
