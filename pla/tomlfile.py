@@ -6,13 +6,13 @@ an error with a place, and reading goes on, so that all errors of a file are fou
 
 from __future__ import annotations
 
-import difflib
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Any, TypeVar, overload
 
 from pla.numerals import is_hexadecimal, parse_span, proposal
 from pla.tomlindex import Path
 from pla.tomltext import TomlFile, parse_toml, read_toml
+from pla.wording import did_you_mean, kind_of, span_of_numbers
 
 if TYPE_CHECKING:
     from collections.abc import Callable, Iterable, Iterator, Mapping, Sequence
@@ -23,44 +23,11 @@ __all__ = [
     "Path",
     "Section",
     "TomlFile",
-    "did_you_mean",
-    "kind_of",
     "parse_toml",
     "read_toml",
 ]
 
 T = TypeVar("T")
-
-
-def did_you_mean(name: str, valid: Iterable[str]) -> str:
-    """A hint: the nearest valid name, or all of them when none is near."""
-    names = list(dict.fromkeys(valid))
-    if not names:
-        return "there is none to choose from"
-    folded = {n.casefold(): n for n in reversed(names)}
-    near = difflib.get_close_matches(name.casefold(), folded, n=1)
-    if near:
-        return f"did you mean {folded[near[0]]!r}?"
-    shown = names[:20]
-    rest = f" and {len(names) - len(shown)} more" if len(names) > len(shown) else ""
-    return f"valid are: {', '.join(shown)}{rest}"
-
-
-def kind_of(value: Any) -> str:
-    """A TOML value in words, for messages."""
-    if isinstance(value, bool):
-        return f"{'true' if value else 'false'}"
-    if isinstance(value, int):
-        return f"the number {value}" if abs(value) < 10**20 else "a huge number"
-    if isinstance(value, float):
-        return f"the number {value}"
-    if isinstance(value, str):
-        return f"the text {value!r}" if len(value) <= 40 else f"the text {value[:37] + '…'!r}"
-    if isinstance(value, list):
-        return "a list"
-    if isinstance(value, dict):
-        return "a table"
-    return "a date or time"
 
 
 @dataclass(frozen=True, slots=True)
@@ -201,7 +168,7 @@ class Section:
         if value is None:
             return default
         if not _is_integer(value, low, high):
-            self.wrong(_span("a whole number", low, high), key)
+            self.wrong(span_of_numbers("a whole number", low, high), key)
             return default
         return int(value)
 
@@ -270,7 +237,7 @@ class Section:
         good = True
         for index, value in enumerate(values):
             if not _is_integer(value, low, high):
-                self.wrong(_span("a whole number", low, high), key, index)
+                self.wrong(span_of_numbers("a whole number", low, high), key, index)
                 good = False
         return values if good else None
 
@@ -356,7 +323,7 @@ class Section:
             hexadecimal = is_hexadecimal(element)
         else:
             hexadecimal = _starts_hexadecimal(at)
-        span = _span("a whole number", low, high, hexadecimal=hexadecimal)
+        span = span_of_numbers("a whole number", low, high, hexadecimal=hexadecimal)
         expected = f'{span}, or a range "a..b" of such'
         if _is_integer(element, None, None):
             first = last = element
@@ -404,14 +371,3 @@ def _is_integer(value: Any, low: int | None, high: int | None) -> bool:
         and (low is None or value >= low)
         and (high is None or value <= high)
     )
-
-
-def _span(what: str, low: int | None, high: int | None, *, hexadecimal: bool = False) -> str:
-    shown = (lambda limit: f"0x{limit:X}" if limit else "0") if hexadecimal else str
-    if low is not None and high is not None:
-        return f"{what} from {shown(low)} to {shown(high)}"
-    if low is not None:
-        return f"{what} of at least {shown(low)}"
-    if high is not None:
-        return f"{what} of at most {shown(high)}"
-    return what

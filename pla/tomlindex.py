@@ -7,10 +7,11 @@ the parser has already accepted, so it needs no error handling of its own. Gramm
 from __future__ import annotations
 
 import re
+from contextlib import suppress
 from dataclasses import dataclass, field
 from functools import lru_cache
 
-__all__ = ["Path", "TomlIndex", "decode_string", "index_toml"]
+__all__ = ["Path", "TomlIndex", "decode_string", "find_repeated", "index_toml"]
 
 Path = tuple[str | int, ...]
 """Keys and positions in arrays, from the top of the document."""
@@ -55,6 +56,19 @@ def index_toml(text: str) -> TomlIndex:
     scanner = _Scanner(text)
     scanner.document()
     return scanner.index
+
+
+def find_repeated(text: str) -> tuple[Path, int, int] | None:
+    """The first key or section that stands twice: its path, and the offsets of both.
+
+    Args:
+        text: The part of a text in front of the place where the parser refused it for such a
+            reason. It may end within a statement.
+    """
+    scanner = _Scanner(text)
+    with suppress(IndexError, ValueError):  # at the end of the part
+        scanner.document()
+    return scanner.repeated
 
 
 @lru_cache(maxsize=16)
@@ -110,11 +124,19 @@ class _Scanner:
         self.position = 0
         self.index = TomlIndex()
         self.array_sizes: dict[Path, int] = {}
+        self.written: dict[Path, int] = {}
+        self.repeated: tuple[Path, int, int] | None = None
 
     def skip(self, pattern: re.Pattern[str]) -> None:
         found = pattern.match(self.text, self.position)
         if found:
             self.position = found.end()
+
+    def write(self, path: Path, offset: int) -> None:
+        """Note that a key or section is given, at most once in a valid text."""
+        if path in self.written and self.repeated is None:
+            self.repeated = (path, self.written[path], offset)
+        self.written.setdefault(path, offset)
 
     def document(self) -> None:
         table: Path = ()
@@ -152,6 +174,7 @@ class _Scanner:
             else:
                 self.index.keys[path] = offset
                 self.index.values[path] = start
+        self.write(path, parts[-1][1])
         return path
 
     def key(self) -> list[tuple[str, int]]:
@@ -178,6 +201,7 @@ class _Scanner:
             path = (*path, name)
             self.index.keys.setdefault(path, offset)
             self.index.values.setdefault(path, offset)
+        self.write(path, offset)
         self.position += 1  # the equals sign
         self.skip(_SPACE)
         self.value(path)

@@ -9,11 +9,14 @@ from typing import Any
 
 from pla.errors import Diagnostic, InputError, Location
 from pla.textfile import SourceText, read_text
-from pla.tomlindex import Path, TomlIndex, decode_string, index_toml
+from pla.tomlindex import Path, TomlIndex, decode_string, find_repeated, index_toml
 
 __all__ = ["TomlFile", "parse_toml", "read_toml"]
 
 _PLACE = re.compile(r" ?\(at line (\d+), column (\d+)\)$")
+_REPEATED = re.compile(
+    r"Cannot overwrite a value|Cannot declare .* twice|Duplicate inline table key"
+)
 _AT_END = re.compile(r" ?\(at end of document\)$")
 
 
@@ -93,7 +96,14 @@ def _parse(source: SourceText) -> TomlFile:
 
 def _syntax_error(source: SourceText, fault: str) -> Diagnostic:
     """The parser's complaint with its place as a location."""
+    if "\r" in source.text:
+        return _lone_return(source)
     found = _PLACE.search(fault)
+    if _REPEATED.match(fault):
+        end = _offset(source, int(found[1]), int(found[2])) if found else len(source.text)
+        repeated = find_repeated(source.text[:end])
+        if repeated is not None:
+            return _stands_twice(source, *repeated)
     if found:
         at = source.location_of(int(found[1]), int(found[2]))
     elif _AT_END.search(fault):
@@ -110,3 +120,36 @@ def _syntax_error(source: SourceText, fault: str) -> Diagnostic:
     elif re.match(r"\s*[A-Za-z0-9_]+\[[0-9:]+\]\s*=", text):
         hint = 'write the name of a bit in quotes: "step[0]" = …'
     return Diagnostic("TOML-SYNTAX", f"not TOML: {reason[:1].lower()}{reason[1:]}", at, hint)
+
+
+def _offset(source: SourceText, line: int, column: int) -> int:
+    """The character offset of a 1-based line and column."""
+    return sum(len(text) + 1 for text in source.lines[: line - 1]) + column - 1
+
+
+def _stands_twice(source: SourceText, path: Path, first: int, second: int) -> Diagnostic:
+    name = ".".join(str(part) for part in path if isinstance(part, str))
+    earlier = source.location(first)
+    at = source.location(second)
+    sections = [(place.source or "").lstrip().startswith("[") for place in (earlier, at)]
+    if sections == [False, True]:
+        message = f"{name!r} is given twice: as a section here, and with a value at {earlier}"
+        hint = "leave one of them out, or rename it"
+    elif sections[1]:
+        message = f"the section [{name}] stands twice: here and at {earlier}"
+        hint = "put all its lines under the first one"
+    else:
+        message = f"the key {path[-1]!r} stands twice: here and at {earlier}"
+        hint = f"the other is: {(earlier.source or '').strip()}"
+    return Diagnostic("TOML-SYNTAX", message, at, hint)
+
+
+def _lone_return(source: SourceText) -> Diagnostic:
+    """TOML 1.0.0 has no line ends of a carriage return alone, anywhere."""
+    lines = SourceText(source.file, source.text.replace("\r", "\n"))
+    return Diagnostic(
+        "TOML-SYNTAX",
+        "a carriage return without a line feed, expected line ends LF or CR LF",
+        lines.location(source.text.index("\r")),
+        "save the file with one of these line ends",
+    )

@@ -9,8 +9,9 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from pla.errors import Diagnostics, InputError
-from pla.tomlfile import Section, did_you_mean, parse_toml, read_toml
+from pla.tomlfile import Section, parse_toml, read_toml
 from pla.tomlindex import decode_string
+from pla.wording import did_you_mean
 
 SAMPLE = '''\
 name = "x"
@@ -104,9 +105,14 @@ def test_line_ends_and_byte_order_mark_do_not_move_places(tmp_path):
         ("a = ", (1, 5), "invalid value before the end of the file"),
         ("a = [1\n", (2, 1), "unclosed array before the end of the file"),
         ("a = 1\nx y = 1", (2, 3), "expected '=' after a key"),
-        ("a = 1\na = 2\n", (2, 6), "cannot overwrite a value"),
+        ("a = 1\nb = 2\na.b = 2\n", (3, 8), "cannot overwrite a value"),
         ('a = "abc\n"', (1, 9), "illegal character '\\n'"),
-        ("[a]\n[a]\n", (2, 3), "cannot declare ('a',) twice"),
+        (
+            "a = {b = 1}\n[a]\nc = 1\n",
+            (2, 2),
+            "'a' is given twice: as a section here, and with a value at s.toml:1:1",
+        ),
+        ("b = 1\r\na = 1\rc = 2\r", (2, 6), "a carriage return without a line feed, expected"),
         ("a = " + "[" * 5000, (None, None), "brackets are nested too deeply"),
         ("a = " + "9" * 5000, (None, None), "a number with too many digits"),
     ],
@@ -119,6 +125,37 @@ def test_syntax_errors(text, place, message):
     assert (found.location.line, found.location.column) == place
     assert message in found.message
     assert "(at" not in found.message
+
+
+@pytest.mark.parametrize(
+    ("text", "place", "message", "hint"),
+    [
+        ("a = 1\n  a = 2\n", (2, 3), "key 'a' stands twice: here and at s.toml:1:1", "a = 1"),
+        ("a = 1\na = 2", (2, 1), "key 'a' stands twice: here and at s.toml:1:1", "a = 1"),
+        (
+            "[x]\n'b c' = [1,\n2]\n[[y]]\n'b c' = 1\n[[y]]\n'b c' = 1\n\"b c\" = {d = 1}\n",
+            (8, 1),
+            "key 'b c' stands twice: here and at s.toml:7:1",
+            "'b c' = 1",
+        ),
+        (
+            "a = { b = 1, b = { c = 2 } }\n",
+            (1, 14),
+            "key 'b' stands twice: here and at s.toml:1:7",
+            "a = { b = 1, b = { c = 2 } }",
+        ),
+        ("x.a = {b = 1}\nx.a = {b = 1}", (2, 3), "'a' stands twice: here and at s.toml:1:3", "x.a"),
+        ("[a]\nx = 1\n[b]\n[a]\n", (4, 2), "section [a] stands twice: here and at s.toml:1:2", ""),
+        ("[a.b]\nx = 1\n[a]\n[ a . b ]\n", (4, 7), "section [a.b] stands twice: here and at", ""),
+    ],
+)
+def test_what_stands_twice_is_shown_with_the_first(text, place, message, hint):
+    with pytest.raises(InputError) as caught:
+        parse_toml(text, "s.toml")
+    (found,) = caught.value.diagnostics
+    assert (found.code, found.location.line, found.location.column) == ("TOML-SYNTAX", *place)
+    assert message in found.message
+    assert found.hint.startswith(f"the other is: {hint}" if hint else "put all its lines under")
 
 
 def test_bits_as_keys_get_a_hint():

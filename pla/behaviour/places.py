@@ -6,7 +6,7 @@ from typing import TYPE_CHECKING
 
 from pla.behaviour.model import Place
 from pla.behaviour.problem import Problem
-from pla.tomlfile import kind_of
+from pla.wording import kind_of
 
 if TYPE_CHECKING:
     from pla.behaviour.signals import Signals

@@ -9,7 +9,7 @@ from typing import TYPE_CHECKING, Literal
 
 from pla.behaviour.problem import Problem
 from pla.logic.cubes import MAX_INPUTS, MAX_OUTPUTS
-from pla.tomlfile import did_you_mean
+from pla.wording import did_you_mean
 
 if TYPE_CHECKING:
     from collections.abc import Iterable, Iterator
