@@ -10,7 +10,7 @@ from pla.device.reader import read_device
 from pla.errors import Diagnostic, Diagnostics, InputError, Location
 
 if TYPE_CHECKING:
-    from collections.abc import Iterable
+    from collections.abc import Collection, Iterable
 
     from pla.device.model import Device
 
@@ -18,7 +18,7 @@ __all__ = ["devices_in"]
 
 
 def devices_in(
-    folder: str, taken: Iterable[Device] = ()
+    folder: str, catalogue: Iterable[Device] = ()
 ) -> tuple[tuple[Device, ...], tuple[Diagnostic, ...]]:
     """The devices that the ``.toml`` files of a folder describe, in order of file names.
 
@@ -27,8 +27,8 @@ def devices_in(
 
     Args:
         folder: Its path.
-        taken: Devices whose names are taken. A file that says the same as one of them is left out
-            without a word.
+        catalogue: Devices whose names are taken. A file that says the same as one of them is left
+            out without a word.
 
     Returns:
         The devices, and a warning for every file that is left out and for a folder without device
@@ -39,7 +39,8 @@ def devices_in(
     """
     found: list[Device] = []
     warnings = Diagnostics()
-    by_name = {device.name: device for device in taken}
+    shipped = tuple(catalogue)
+    by_name = {device.name: device for device in shipped}
     paths = _device_files(folder)
     for path in paths:
         try:
@@ -52,8 +53,8 @@ def devices_in(
             found.append(device)
         elif not _same(device, other):
             warnings.warning(
-                "DEVICE-LEFT-OUT",
-                f"left out: there is another device {device.name}, in {other.location.file}",
+                "DEVICE-NAME-TAKEN",
+                f"left out: {_place(other, shipped)} has another device {device.name}",
                 device.location,
                 "give this one a name of its own",
             )
@@ -86,12 +87,16 @@ def _left_out(fault: InputError, path: Path) -> Diagnostic:
     first, more = fault.diagnostics[0], len(fault.diagnostics) - 1
     others = f" (and {more} more error{'s' if more > 1 else ''})" if more else ""
     return Diagnostic(
-        "DEVICE-LEFT-OUT",
-        f"left out: {first.message} [{first.code}]{others}",
+        first.code,
+        f"left out: {first.message}{others}",
         first.location,
         f"fuseplan device check {path} shows everything that is wrong with it",
         "warning",
     )
+
+
+def _place(device: Device, catalogue: Collection[Device]) -> str:
+    return "the catalogue" if device in catalogue else device.location.file
 
 
 def _same(one: Device, other: Device) -> bool:

@@ -198,10 +198,11 @@ def _shortages(minimum: Minimum, terms: Usage, inputs: Usage, outputs: Usage) ->
 def _too_many_outputs(outputs: Usage) -> list[str]:
     if not outputs.over:
         return []
-    return [
+    reason = (
         f"{outputs.used} outputs are needed, the device has {outputs.available} output cells: "
         f"{outputs.over} too many"
-    ]
+    )
+    return [reason]
 
 
 def _lines_needed(behaviour: Behaviour, minimum: Minimum) -> list[frozenset[bool]]:
