@@ -20,8 +20,9 @@ __all__ = ["RANKING", "budgets_text"]
 
 RANKING = (
     "Best first: devices that hold the design, by fewest pins, then fewest fuses, then name; then "
-    "the others, by how many product terms, input pins and output cells are missing together, of "
-    "equals the smallest; last those for which the number of product terms is not known."
+    "the others, by how many product terms (the reserve included), input pins and output cells are "
+    "missing together, of equals the smallest; last those for which the number of product terms is "
+    "not known."
 )
 
 

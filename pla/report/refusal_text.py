@@ -108,7 +108,10 @@ def _input_costs(fit: Fit, minimum: Minimum) -> Table:
 
 def _on_holders(holders: Sequence[Fit]) -> str:
     if not holders:
-        return "No other device of the catalogue would hold this design."
+        return filled(
+            "No other device of the catalogue would hold this design; `fuseplan budget` shows what "
+            "each of them lacks."
+        )
     table = Table(
         "Devices of the catalogue that would hold it",
         ("device", "product terms", "input pins", "output cells", "pins"),
