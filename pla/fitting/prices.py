@@ -6,6 +6,8 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 from pla.logic import algebra
+from pla.logic.blocks import blocks_of
+from pla.logic.dense import MAX_DENSE_INPUTS
 from pla.logic.effort import Effort
 from pla.logic.function import Function
 from pla.logic.minimize import minimize
@@ -38,12 +40,13 @@ class SafetyPrice:
     Attributes:
         output: Index of the output.
         demanded: Its asserted value for impossible inputs.
-        freed: The whole design's terms if this output did not care.
+        freed: The whole design's terms if this output did not care; ``None`` if that was not
+            computed, since the design is wide and its own minimum not proven.
     """
 
     output: int
     demanded: int
-    freed: Count
+    freed: Count | None
 
 
 def alone_counts(function: Function, polarities: Sequence[Polarity]) -> tuple[Count, ...]:
@@ -60,13 +63,33 @@ def counts_without(function: Function, polarities: Sequence[Polarity]) -> tuple[
     return tuple(counts)
 
 
-def safety_prices(behaviour: Behaviour, polarities: Sequence[Polarity]) -> tuple[SafetyPrice, ...]:
-    """The price of every ``impossible = 0`` or ``1``, one output at a time."""
+def safety_prices(
+    behaviour: Behaviour, polarities: Sequence[Polarity], minimum: Minimum
+) -> tuple[SafetyPrice, ...]:
+    """The price of every ``impossible = 0`` or ``1``, one output at a time.
+
+    Args:
+        behaviour: The design.
+        polarities: What each output may be realised as.
+        minimum: Its terms. Where they are not proven fewest and more inputs belong together than
+            can be listed, comparing two guesses would cost much and tell nothing: no price then.
+    """
     return tuple(
-        SafetyPrice(j, output.impossible, _count(_freed(behaviour, j), polarities))
+        SafetyPrice(j, output.impossible, _freed_count(behaviour, j, polarities, minimum))
         for j, output in enumerate(behaviour.outputs)
         if output.impossible is not None
     )
+
+
+def _freed_count(
+    behaviour: Behaviour, output: int, polarities: Sequence[Polarity], minimum: Minimum
+) -> Count | None:
+    function = _freed(behaviour, output)
+    if not minimum.proven and any(
+        part.function.n_inputs > MAX_DENSE_INPUTS for part in blocks_of(function, polarities)
+    ):
+        return None
+    return _count(function, polarities)
 
 
 def _count(function: Function, polarities: Sequence[Polarity]) -> Count:

@@ -88,7 +88,13 @@ def _remarks(
 
 
 def _price(name: str, price: SafetyPrice, minimum: Minimum) -> str:
-    free, cost = price.freed, minimum.count - price.freed.terms
+    free = price.freed
+    if free is None:
+        return (
+            f"What impossible = {price.demanded} of {name} costs was not computed: the design is "
+            "wide, and its own number of terms not proven smallest."
+        )
+    cost = minimum.count - free.terms
     costs = f"costs {plural(cost, 'term')}" if cost > 0 else "costs no term"
     doubt = "" if free.proven and minimum.proven else " (best sets found, not proven smallest)"
     return (

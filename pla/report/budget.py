@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
-from pla.report.notation import plural
+from pla.report.notation import listed, plural
 from pla.report.table import Table
 
 if TYPE_CHECKING:
@@ -37,6 +37,14 @@ def _remarks(fit: Fit, fuses: FuseMap | None) -> Iterator[str]:
     if idle and fit.minimum is not None:
         counted = "is not counted" if idle == 1 else "are not counted"
         yield f"{plural(idle, 'input')} that no term needs {counted}."
+    if fit.minimum is None:
+        barred = [
+            name
+            for name, polarity in zip(fit.behaviour.output_names, fit.polarities, strict=True)
+            if polarity is None
+        ]
+        why = f"no polarity is left for {listed(barred)}" if barred else "see above"
+        yield f"Not minimized: {why}, so how many product terms it takes was not worked out."
     if fuses is not None:
         yield links_sentence(fit.device, fuses)
 
@@ -49,6 +57,6 @@ def links_sentence(device: Device, fuses: FuseMap) -> str:
 
 def _row(what: str, usage: Usage, *, known: bool = True) -> tuple[str, str, str, str]:
     if not known:
-        return what, "not known", str(usage.available), "not known"
+        return what, "not minimized", str(usage.available), ""
     spare = f"{usage.over} too few" if usage.over else str(usage.available - usage.used)
     return what, str(usage.used), str(usage.available), spare

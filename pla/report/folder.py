@@ -48,7 +48,7 @@ def _tables(fit: Fit, plan: Plan, proven: ProvenFile) -> dict[str, list[Table]]:
     polarities = [p for p in fit.polarities if p is not None]
     open_ = audit(behaviour, minimum)
     together = together_table(behaviour, open_together(behaviour, minimum))
-    prices = safety_prices(behaviour, polarities)
+    prices = safety_prices(behaviour, polarities, minimum)
     return {
         "pin-list": [pin_list(plan)],
         "programming-table": [programming_table(behaviour, minimum, plan)],

@@ -21,7 +21,7 @@ __all__ = ["terms_text"]
 
 
 def terms_text(behaviour: Behaviour, minimum: Minimum, polarities: Sequence[Polarity]) -> str:
-    """Programming table, term sharing, how good the count is; no newline at the end.
+    """How good the count is, programming table, term sharing; no newline at the end.
 
     Args:
         behaviour: The design.
@@ -35,4 +35,4 @@ def terms_text(behaviour: Behaviour, minimum: Minimum, polarities: Sequence[Pola
     )
     sentences = [" ".join(count_sentences(minimum)), *design_sentences(behaviour, minimum)]
     verdict = "\n".join(map(filled, sentences))
-    return "\n\n".join([title(behaviour), *map(table_text, tables), verdict])
+    return "\n\n".join([title(behaviour), verdict, *map(table_text, tables)])

@@ -1,5 +1,6 @@
 """Designs on devices: polarity by cell, places, shortages, what would hold a design."""
 
+from dataclasses import replace
 from itertools import product
 
 import pytest
@@ -211,5 +212,32 @@ def test_prices(tmp_path):
     assert minimize(behaviour.function, true).count == 3
     assert [c.terms for c in counts_without(behaviour.function, true)] == [1, 3]
     # Freed, x may be a + c, and y may be a.
-    (price,) = safety_prices(behaviour, true)
+    (price,) = safety_prices(behaviour, true, minimize(behaviour.function, true))
     assert (price.output, price.demanded, price.freed.terms) == (0, 0, 2)
+
+
+@pytest.mark.parametrize(
+    ("width", "proven", "computed"),
+    [
+        pytest.param(17, False, False, id="wide and not proven"),
+        pytest.param(17, True, True, id="wide"),
+        pytest.param(16, False, True, id="not proven"),
+    ],
+)
+def test_price_of_a_wide_design_is_not_guessed(tmp_path, width, proven, computed):
+    names = [f"s{k}" for k in range(width)]
+    text = (
+        'name = "Wide"\n[inputs]\n'
+        + "".join(f"{name} = 1\n" for name in names)
+        + '[outputs]\nf = { impossible = 0 }\n[never]\nwhen = ["s0 s1"]\n'
+        + f'[logic]\nf = "{" ".join(names[1:])}"\n'
+    )
+    path = tmp_path / "wide.toml"
+    path.write_text(text)
+    behaviour = read_behaviour(str(path))
+    true = [Polarity(complement=False)]
+    minimum = minimize(behaviour.function, true)
+    if not proven:
+        minimum = replace(minimum, proven_by=None)
+    (price,) = safety_prices(behaviour, true, minimum)
+    assert (price.freed is not None) == computed

@@ -220,12 +220,13 @@ def behaviour_of(tmp_path, text):
         pytest.param(0, True, "costs 1 term: the design has 1, and would have 0", id="a term"),
         pytest.param(1, True, "costs no term: the design has 1", id="nothing"),
         pytest.param(0, False, "(best sets found, not proven smallest)", id="not proven"),
+        pytest.param(None, False, "of fan costs was not computed", id="not computed"),
     ],
 )
 def test_the_price_of_safety_is_told(tmp_path, freed, proven, words):
     behaviour = behaviour_of(tmp_path, DRYER.format(impossible=0))
     minimum = minimize(behaviour.function)
-    prices = (SafetyPrice(0, 0, Count(freed, proven)),)
+    prices = (SafetyPrice(0, 0, None if freed is None else Count(freed, proven)),)
     table = summary_table(behaviour, audit(behaviour, minimum), prices, minimum)
     assert any(words in remark for remark in table.remarks)
     assert table.rows == (("fan", "impossible, demanded 0", "1", "0", "1"),)

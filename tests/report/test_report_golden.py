@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from dataclasses import replace
 from pathlib import Path
 
@@ -16,6 +17,7 @@ from pla.logic.minimize import minimize
 from pla.logic.phases import Polarity
 from pla.report.folder import plan_files
 from pla.report.markdown import escaped
+from pla.report.notation import listed
 from pla.report.pins import pin_list
 from pla.report.plan_text import plan_text
 from pla.report.refusal_text import refusal_text
@@ -98,9 +100,32 @@ def test_refusal_without_a_cover_has_no_number_of_terms():
     barred = replace(outcome, minimum=None, plan=None, reasons=("no cell can show output pump",))
     text = refusal_text(barred, ())
     assert "No cell can show output pump." in text
-    assert "not known" in text
+    assert re.search(r"^product terms +not minimized +32$", text, re.MULTILINE)
+    assert "Not minimized: " in text
     assert "No other device of the catalogue would hold this design;" in text
     assert "`fuseplan budget` shows what" in " ".join(text.split())
+
+
+def test_budget_names_the_outputs_that_keep_it_from_being_minimized():
+    outcome = fit(read_behaviour(DESIGN), find_device("shared-10x24x6"), "true")
+    assert outcome.minimum is None
+    barred = [
+        name
+        for name, polarity in zip(outcome.behaviour.output_names, outcome.polarities, strict=True)
+        if polarity is None
+    ]
+    said = " ".join(refusal_text(outcome, ()).split())
+    assert f"Not minimized: no polarity is left for {listed(barred)}, so" in said
+    assert "not known" not in said
+
+
+def test_verdict_stands_before_the_tables():
+    behaviour = read_behaviour(DESIGN)
+    polarities = [Polarity()] * len(behaviour.outputs)
+    minimum = minimize(behaviour.function, polarities)
+    text = terms_text(behaviour, minimum, polarities)
+    assert text.index("proven to be the fewest") < text.index("Programming table")
+    assert text.split("\n\n")[1].startswith(f"{minimum.count} product terms")
 
 
 def test_text_of_a_plan_needs_a_plan(planned):
