@@ -7,30 +7,44 @@ it serves any number of inputs; it promises nothing about how near the minimum i
 
 from __future__ import annotations
 
+from typing import TYPE_CHECKING
+
 import numpy as np
 
 from pla.logic import algebra
 from pla.logic.cubes import Cover, Cube
 
+if TYPE_CHECKING:
+    from pla.logic.effort import Effort
+
 __all__ = ["MAX_ROUNDS", "expand", "heuristic_cover", "irredundant_cover", "reduce_cover"]
 
 MAX_ROUNDS = 12
+_WORK_PER_PAIR = 100
 
 
-def heuristic_cover(on: Cover, off: Cover, n_outputs: int) -> Cover:
+def heuristic_cover(on: Cover, off: Cover, n_outputs: int, effort: Effort | None = None) -> Cover:
     """A complete cover of primes in which no term and no link is superfluous.
 
     Args:
         on: What must be covered, for the outputs of each cube's mask.
         off: What no term may touch, likewise.
         n_outputs: How many outputs the masks speak of.
+        effort: Paid from; when it is used up no further round is begun.
 
     Returns:
         The best of at most `MAX_ROUNDS` rounds; each begins from the last, reduced.
     """
-    best = irredundant_cover(expand(on.fed().absorbed(), off, n_outputs), on, n_outputs)
+    primes = expand(on.fed().absorbed(), off, n_outputs)
+    best = irredundant_cover(primes, on, n_outputs)
+    if effort is not None:
+        effort.spend(len(primes), _WORK_PER_PAIR * (len(primes) + len(on)))
     current = best
     for _ in range(MAX_ROUNDS):
+        if effort is not None:
+            effort.spend(len(current), 2 * _WORK_PER_PAIR * (len(current) + len(on)))
+            if effort.exhausted:
+                break
         shrunk = reduce_cover(current, on, n_outputs)
         current = irredundant_cover(expand(shrunk, off, n_outputs), on, n_outputs)
         if (len(current), current.links) >= (len(best), best.links):

@@ -8,7 +8,7 @@ import numpy as np
 
 from pla.logic.block_minimum import BlockMinimum
 from pla.logic.cubes import Cover
-from pla.logic.heuristic import heuristic_cover
+from pla.logic.heuristic import expand, heuristic_cover
 from pla.logic.independent import independent_bound, sample_points
 from pla.logic.phases import phase_function, phases_of
 
@@ -23,6 +23,8 @@ if TYPE_CHECKING:
 
 __all__ = ["minimize_wide"]
 
+_HOPELESS = 4
+
 
 def minimize_wide(
     function: Function,
@@ -36,42 +38,65 @@ def minimize_wide(
     complemented (which pays where the complements have terms in common, as those of a decoder do);
     then single changes are tried.
     """
-    preferred, floor = _preferred(function, polarities)
-    starts = [
-        preferred,
-        *([p.complement and (wish or not p.true) for p in polarities] for wish in (False, True)),
-    ]
+    sizes, floor = _sizes_alone(function, polarities, effort)
+    starts = [[min(size, key=lambda c: (size[c], c)) for size in sizes]]
+    starts += [[max(size) if wish else min(size) for size in sizes] for wish in (False, True)]
     choices = dict.fromkeys(_feasible_choice(start, feasible) for start in starts)
-    covers = [(choice, _cover(function, choice)) for choice in choices]
-    choice, best = min(covers, key=lambda pair: (len(pair[1]), pair[1].links))
-    movable = [j for j, p in enumerate(polarities) if p.true and p.complement]
-    if any(not (p.true and p.complement) for p in polarities) or len(function.on) <= 2_000:
-        for j in movable:
-            changed = (*choice[:j], not choice[j], *choice[j + 1 :])
-            if effort.exhausted or (feasible is not None and not feasible(changed)):
-                continue
-            effort.spend(len(function.on), len(function.off))
-            cover = _cover(function, changed)
-            if (len(cover), cover.links) < (len(best), best.links):
-                best, choice = cover, changed
+    best, choice = None, next(iter(choices))
+    for tried in choices:
+        if best is None or (not effort.exhausted and _promising(tried, choice, sizes)):
+            cover = _cover(function, tried, effort)
+            if best is None or (len(cover), cover.links) < (len(best), best.links):
+                best, choice = cover, tried
+    if best is None:  # pragma: no cover - there is always a first choice
+        raise ValueError("no polarity to choose")
+    for j, size in enumerate(sizes):
+        changed = (*choice[:j], not choice[j], *choice[j + 1 :])
+        if len(size) < 2 or effort.exhausted or not _promising(changed, choice, sizes):
+            continue
+        if feasible is not None and not feasible(changed):
+            continue
+        cover = _cover(function, changed, effort)
+        if (len(cover), cover.links) < (len(best), best.links):
+            best, choice = cover, changed
     floor = min(floor, len(best))
     return BlockMinimum(best, choice, floor, floor, None, None)
 
 
-def _preferred(function: Function, polarities: Sequence[Polarity]) -> tuple[list[bool], int]:
-    """For each output the polarity that serves it best alone, and a bound over all polarities."""
+def _sizes_alone(
+    function: Function, polarities: Sequence[Polarity], effort: Effort
+) -> tuple[list[dict[bool, int]], int]:
+    """For each output its terms alone in each polarity, and a bound over all polarities.
+
+    Of a polarity that begins with far more primes than the other needs terms, only those are
+    counted: it will hardly be chosen.
+    """
     phases = phases_of(polarities)
     on, off = phase_function(function, phases)
     samples: list[Samples] = [{} for _ in polarities]
     sizes: list[dict[bool, int]] = [{} for _ in polarities]
-    for bit, phase in enumerate(phases):
-        cover = heuristic_cover(on.of_output(bit), off.of_output(bit), 1)
+    demanded = [on.of_output(bit) for bit in range(len(phases))]
+    for bit in sorted(range(len(phases)), key=lambda bit: (len(demanded[bit]), bit)):
+        wanted, walls, phase = demanded[bit], off.of_output(bit), phases[bit]
+        cover = expand(wanted.absorbed(), walls, 1)
+        known = min(sizes[phase.output].values(), default=len(cover))
+        if len(cover) <= _HOPELESS * known:
+            cover = heuristic_cover(wanted, walls, 1, effort)
         sizes[phase.output][phase.complemented] = len(cover)
-        samples[phase.output][bit] = sample_points(cover, on.of_output(bit))
-    preferred = [min(size, key=lambda c: (size[c], c)) for size in sizes]
+        samples[phase.output][bit] = sample_points(cover, wanted)
     alone = max((independent_bound([own], off) for own in samples), default=0)
     together = max(independent_bound(order, off) for order in (samples, samples[::-1]))
-    return preferred, max(alone, together)
+    return sizes, max(alone, together)
+
+
+def _promising(
+    tried: Sequence[bool], standing: Sequence[bool], sizes: Sequence[dict[bool, int]]
+) -> bool:
+    """Whether sharing could make up for what other polarities cost the outputs alone."""
+    new, old = (
+        sum(size[c] for size, c in zip(sizes, choice, strict=True)) for choice in (tried, standing)
+    )
+    return new <= _HOPELESS * max(1, old)
 
 
 def _feasible_choice(preferred: Sequence[bool], feasible: Feasible | None) -> tuple[bool, ...]:
@@ -95,6 +120,6 @@ def _in_polarity(function: Function, complemented: Sequence[bool]) -> tuple[Cove
     return on, off
 
 
-def _cover(function: Function, complemented: Sequence[bool]) -> Cover:
+def _cover(function: Function, complemented: Sequence[bool], effort: Effort) -> Cover:
     on, off = _in_polarity(function, complemented)
-    return heuristic_cover(on, off, function.n_outputs)
+    return heuristic_cover(on, off, function.n_outputs, effort)
