@@ -18,12 +18,7 @@ from pla.logic.dense import MAX_DENSE_INPUTS, fed_outputs, smallest_type
 if TYPE_CHECKING:
     from numpy.typing import NDArray
 
-__all__ = ["dense_primes", "lattice_bytes"]
-
-
-def lattice_bytes(n_inputs: int, n_outputs: int) -> int:
-    """Size of the largest array that `dense_primes` makes."""
-    return int(3**n_inputs * np.dtype(smallest_type(n_outputs)).itemsize)
+__all__ = ["dense_primes"]
 
 
 def dense_primes(off: Cover, n_outputs: int) -> Cover:

@@ -14,9 +14,9 @@ from pla.logic.connections import (
     without_superfluous_links,
 )
 from pla.logic.covering import MAX_COMPARED
-from pla.logic.cubes import Cover
+from pla.logic.cubes import MAX_OUTPUTS, Cover
 from pla.logic.dense import MAX_DENSE_INPUTS, coordinates, fed_outputs
-from pla.logic.lattice import dense_primes, lattice_bytes
+from pla.logic.lattice import dense_primes
 from pla.logic.lazy import LazyProgram
 from pla.logic.phases import Polarity, phase_function, phases_of
 from pla.logic.search import search_polarities
@@ -36,8 +36,6 @@ if TYPE_CHECKING:
 
 __all__ = ["minimize_block"]
 
-MAX_PHASES = 64
-MAX_LATTICE_BYTES = 1 << 29
 MAX_PRODUCTS = 60_000_000_000
 MAX_ENTRIES = 120_000_000
 
@@ -54,10 +52,17 @@ def minimize_block(
     if function.n_outputs == 1 and polarities[0].true and polarities[0].complement:
         return _better_polarity(function, effort, feasible, connections=connections)
     phases = phases_of(polarities)
-    fits = function.n_inputs <= MAX_DENSE_INPUTS and len(phases) <= MAX_PHASES
-    if fits and lattice_bytes(function.n_inputs, len(phases)) <= MAX_LATTICE_BYTES:
+    if function.n_inputs <= MAX_DENSE_INPUTS and len(phases) <= MAX_OUTPUTS:
         return _by_primes(function, polarities, phases, effort, feasible, connections)
-    return minimize_wide(function, polarities, effort, feasible)
+    rough = minimize_wide(function, polarities, effort, feasible)
+    if function.n_inputs > MAX_DENSE_INPUTS or len(polarities) == len(phases):
+        return rough
+    # Too many phases for one mask, so the polarities are guessed; in these the cover is exact.
+    settled = [Polarity(not c, c) for c in rough.complemented]
+    exact = _by_primes(function, settled, phases_of(settled), effort, None, connections)
+    floor = min(rough.exact, len(exact.cover))
+    scope: Scope | None = "these polarities" if exact.connections else None
+    return replace(exact, exact=floor, trusted=floor, connections=scope)
 
 
 def _better_polarity(

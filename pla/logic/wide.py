@@ -7,7 +7,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from pla.logic.block_minimum import BlockMinimum
-from pla.logic.cubes import Cover
+from pla.logic.cubes import MAX_OUTPUTS, Cover
 from pla.logic.heuristic import expand, heuristic_cover
 from pla.logic.independent import independent_bound, sample_points
 from pla.logic.phases import phase_function, phases_of
@@ -71,22 +71,39 @@ def _sizes_alone(
     Of a polarity that begins with far more primes than the other needs terms, only those are
     counted: it will hardly be chosen.
     """
-    phases = phases_of(polarities)
-    on, off = phase_function(function, phases)
-    samples: list[Samples] = [{} for _ in polarities]
     sizes: list[dict[bool, int]] = [{} for _ in polarities]
-    demanded = [on.of_output(bit) for bit in range(len(phases))]
-    for bit in sorted(range(len(phases)), key=lambda bit: (len(demanded[bit]), bit)):
-        wanted, walls, phase = demanded[bit], off.of_output(bit), phases[bit]
-        cover = expand(wanted.absorbed(), walls, 1)
-        known = min(sizes[phase.output].values(), default=len(cover))
-        if len(cover) <= _HOPELESS * known:
-            cover = heuristic_cover(wanted, walls, 1, effort)
-        sizes[phase.output][phase.complemented] = len(cover)
-        samples[phase.output][bit] = sample_points(cover, wanted)
-    alone = max((independent_bound([own], off) for own in samples), default=0)
-    together = max(independent_bound(order, off) for order in (samples, samples[::-1]))
-    return sizes, max(alone, together)
+    samples: list[dict[bool, list[int]]] = [{} for _ in polarities]
+    alone = 0
+    for j, polarity in enumerate(polarities):
+        sets = (function.on.of_output(j), function.off.of_output(j))
+        ways = [c for c in (False, True) if (polarity.complement if c else polarity.true)]
+        for complemented in sorted(ways, key=lambda c: len(sets[c])):
+            wanted, walls = sets[complemented], sets[not complemented]
+            cover = expand(wanted.absorbed(), walls, 1)
+            known = min(sizes[j].values(), default=len(cover))
+            if len(cover) <= _HOPELESS * known:
+                cover = heuristic_cover(wanted, walls, 1, effort)
+            sizes[j][complemented] = len(cover)
+            samples[j][complemented] = sample_points(cover, wanted)
+        bounds = [independent_bound([{0: samples[j][c]}], sets[not c]) for c in ways]
+        alone = max(alone, min(bounds))
+    return sizes, max(alone, _bound_together(function, polarities, samples))
+
+
+def _bound_together(
+    function: Function,
+    polarities: Sequence[Polarity],
+    samples: Sequence[dict[bool, list[int]]],
+) -> int:
+    """A bound over all polarities that counts what the outputs cannot share."""
+    phases = phases_of(polarities)
+    if len(phases) > MAX_OUTPUTS:
+        return 0
+    _, off = phase_function(function, phases)
+    by_phase: list[Samples] = [{} for _ in polarities]
+    for bit, phase in enumerate(phases):
+        by_phase[phase.output][bit] = samples[phase.output][phase.complemented]
+    return max(independent_bound(order, off) for order in (by_phase, by_phase[::-1]))
 
 
 def _promising(

@@ -215,3 +215,15 @@ def test_wide_sums_of_products_by_simulation(inputs, seed):
     inverted = np.uint64(sum(1 << j for j, c in enumerate(free.complemented) if c))
     assert ((cover_at(free.cover, points) ^ inverted) == cover_at(made, points)).all()
     assert free.lower_bound <= free.count <= found.count
+
+
+def test_more_phases_than_a_mask_has_bits():
+    """40 outputs in either polarity are 80 phases: the polarities are guessed, the rest exact."""
+    table = sample(0, 4, 3)
+    wide = type(table)(table.inputs, table.on * 14, table.off * 14)
+    assert wide.outputs > 32
+    polarities = [FREE] * wide.outputs
+    found = minimize(function_of(wide), polarities)
+    assert wrong_points(found.cover, found.complemented, wide) == []
+    # Equal outputs cost no more than one of them.
+    assert found.lower_bound <= cover_search.fewest_terms_free(table) <= found.count
