@@ -220,7 +220,8 @@ def test_wide_sums_of_products_by_simulation(inputs, seed):
 def test_more_phases_than_a_mask_has_bits():
     """40 outputs in either polarity are 80 phases: the polarities are guessed, the rest exact."""
     table = sample(0, 4, 3)
-    wide = type(table)(table.inputs, table.on * 14, table.off * 14)
+    copies = 40 // table.outputs
+    wide = type(table)(table.inputs, table.on * copies, table.off * copies)
     assert wide.outputs > 32
     polarities = [FREE] * wide.outputs
     found = minimize(function_of(wide), polarities)
