@@ -6,14 +6,12 @@ from pathlib import PurePath
 from types import MappingProxyType
 from typing import TYPE_CHECKING
 
-from pla.behaviour.address_map import read_address_map
 from pla.behaviour.cases import read_cases
 from pla.behaviour.conditions import read_logic, read_never
 from pla.behaviour.declare import read_signals
 from pla.behaviour.description import Claims, Description, solve_all
 from pla.behaviour.minterms import read_minterms
 from pla.behaviour.model import Behaviour, DontCareSource, Input, Output
-from pla.behaviour.overlaps import warn_of_contention
 from pla.behaviour.places import read_places
 from pla.behaviour.unsupported import refuse_unsupported
 from pla.errors import Diagnostics, by_place
@@ -91,7 +89,10 @@ def behaviour_of(file: TomlFile) -> Behaviour:
     solved: list[Solved] = []
     if never is not None and "never" not in meant and not signals.too_many:
         solved = solve_all(_supported(descriptions, signals), never, signals, diagnostics)
-        warn_of_contention(maps, never, signals, diagnostics)
+        if maps:
+            from pla.behaviour.overlaps import warn_of_contention  # noqa: PLC0415 - likewise
+
+            warn_of_contention(maps, never, signals, diagnostics)
     diagnostics.stop_on_error()
     if never is None:  # pragma: no cover - there was an error
         raise AssertionError
@@ -149,7 +150,11 @@ def _read_descriptions(
     logic = top.section("logic")
     if logic is not None:
         found += [read_logic(logic, name, signals, claims) for name in logic]
-    found += [read_address_map(s, signals, claims, maps) for s in top.sections("address_map")]
+    sections = top.sections("address_map")
+    if sections:
+        from pla.behaviour.address_map import read_address_map  # noqa: PLC0415 - few designs need it
+
+        found += [read_address_map(s, signals, claims, maps) for s in sections]
     return [description for description in found if description is not None]
 
 

@@ -63,6 +63,10 @@ class Program(Protocol):
         """Allow the work that is kept back for a first answer; whether there was any."""
 
 
+_Node = tuple[int, int, float, int, "Decisions", "Relaxed | None"]
+"""Bound, minus depth, how far the relaxation leans the other way, number, decisions, relaxation."""
+
+
 @dataclass(frozen=True, slots=True, eq=False)
 class Selection:
     """The outcome of the search.
@@ -96,9 +100,9 @@ def search_polarities(
     answered = False
     exact_floor = trusted_floor = len(best.columns)
     order = count()
-    queue = [(root.bound, 0, next(order), allowed, root)]
+    queue: list[_Node] = [(root.bound, 0, 0.0, next(order), allowed, root)]
     while queue:
-        bound, _, _, decisions, relaxed = heapq.heappop(queue)
+        bound, depth, lean, number, decisions, relaxed = heapq.heappop(queue)
         if bound >= len(best.columns):
             break
         if program.exhausted:
@@ -106,6 +110,12 @@ def search_polarities(
             if not answered and program.renew():
                 best = _answer(program, best)
             break
+        if relaxed is None:
+            # Until now it stood here with its parent's bound; many never come to be looked at.
+            relaxed = program.relax(decisions)
+            if relaxed.bound > bound:
+                heapq.heappush(queue, (relaxed.bound, depth, lean, number, decisions, relaxed))
+                continue
         open_outputs = [j for j in range(n_outputs) if decisions[j] is None]
         if not open_outputs:
             complete = tuple(bool(d) for d in decisions)
@@ -120,13 +130,11 @@ def search_polarities(
         branch = max(open_outputs, key=lambda j: (round(float(undecided[j]), 6), -j))
         for complemented in (False, True):
             child = (*decisions[:branch], complemented, *decisions[branch + 1 :])
-            if not feasible(child):
-                continue
-            lower = program.relax(child)
-            child_bound = max(lower.bound, bound)
-            if child_bound < len(best.columns):
-                depth = n_outputs - len(open_outputs) + 1
-                heapq.heappush(queue, (child_bound, -depth, next(order), child, lower))
+            if feasible(child):
+                share = round(float(relaxed.true[branch]), 6)
+                against = share if complemented else 1 - share
+                node = (bound, depth - 1, against, next(order), child, None)
+                heapq.heappush(queue, node)
     size = len(best.columns)
     return Selection(
         best.columns, best.complemented, min(size, exact_floor), min(size, trusted_floor)

@@ -15,7 +15,6 @@ __all__ = ["bullets", "escaped", "table_markdown"]
 # Characters that would be taken for markup; an underscore inside a word is none, and a bracket
 # only where a link would follow.
 _MARKUP = re.compile(r"[\\`*<>|~$]|(?<![A-Za-z0-9])_|_(?![A-Za-z0-9])|(?<=\])\(|\[(?=\^)")
-_ALIGN = {"l": "left", "r": "right"}
 
 
 def escaped(text: str) -> str:
@@ -30,19 +29,32 @@ def bullets(sentences: Iterable[str]) -> str:
 
 def table_markdown(table: Table) -> str:
     """A heading, the paragraphs and the table, which has a bar between columns."""
-    from tabulate import tabulate  # noqa: PLC0415 - slow to import
-
     parts = [f"## {escaped(table.title)}", *map(escaped, table.lead)]
     if table.rows:
-        cells = [[escaped(cell) for cell in row] for row in (*table.under, *table.shown_rows())]
-        parts.append(
-            tabulate(
-                cells,
-                [escaped(heading) for heading in table.headings],
-                tablefmt="pipe",
-                disable_numparse=True,
-                colalign=[_ALIGN[letter] for letter in table.aligned],
-            )
-        )
+        parts.append(_piped(table))
     parts += map(escaped, table.remarks)
     return "\n\n".join(parts)
+
+
+def _piped(table: Table) -> str:
+    """Headings, alignment and rows between bars, padded so that the source can be read too.
+
+    Written out here since importing tabulate takes longer than everything else in a report.
+    """
+    lines = [
+        [escaped(cell) for cell in row]
+        for row in (table.headings, *table.under, *table.shown_rows())
+    ]
+    widths = [max(3, *map(len, column)) for column in zip(*lines, strict=True)]
+    rule = [
+        "-" * (width - 1) + ":" if side == "r" else ":" + "-" * (width - 1)
+        for width, side in zip(widths, table.aligned, strict=True)
+    ]
+    padded = [
+        [
+            cell.rjust(width) if side == "r" else cell.ljust(width)
+            for cell, width, side in zip(line, widths, table.aligned, strict=True)
+        ]
+        for line in lines
+    ]
+    return "\n".join(f"| {' | '.join(line)} |" for line in (padded[0], rule, *padded[1:]))
