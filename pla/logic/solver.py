@@ -25,6 +25,7 @@ if TYPE_CHECKING:
 __all__ = ["IntegerOutcome", "Solver", "solve_integer"]
 
 SAFETY_SECONDS = 600.0
+_SMALL = 300
 
 
 class Solver(highspy.Highs):
@@ -89,7 +90,13 @@ class Solver(highspy.Highs):
 
 @contextlib.contextmanager
 def interruptible(solver: Solver) -> Iterator[None]:
-    """Let Ctrl-C stop a run: the library loses exceptions that are raised in its callbacks."""
+    """Let Ctrl-C stop a run: the library loses exceptions that are raised in its callbacks.
+
+    A small program is left alone: it ends sooner than anyone could press a key.
+    """
+    if solver.getNumRow() + solver.getNumCol() < _SMALL:
+        yield
+        return
     if threading.current_thread() is not threading.main_thread():
         yield
         return
