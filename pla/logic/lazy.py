@@ -12,6 +12,7 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
+from pla.logic.covering import reduce_to_core
 from pla.logic.dense import coordinates, cube_slices
 from pla.logic.relaxation import Relaxation
 from pla.logic.search import Settled
@@ -80,9 +81,8 @@ class LazyProgram:
         while len(best) > trusted and not self.exhausted:
             columns, matrix = self._matrix(decisions)
             share = relaxed.x[columns]
-            chosen, bound = smallest_cover(
-                matrix, self._cost[columns], share, trusted, self._effort
-            )
+            core = reduce_to_core(matrix, self._cost[columns])
+            chosen, bound = smallest_cover(core, share, trusted, self._effort)
             trusted = max(trusted, bound)
             picked = columns[chosen]
             complete = self._complete(decisions, picked)

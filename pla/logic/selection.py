@@ -8,6 +8,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from pla.logic.covering import (
+    Core,
     Table,
     greedy_cover,
     incidence,
@@ -30,7 +31,7 @@ if TYPE_CHECKING:
     from pla.logic.phases import Phase
     from pla.logic.relaxation import Decisions
 
-__all__ = ["TableProgram", "smallest_cover", "table_of"]
+__all__ = ["TableProgram", "quick_cover", "smallest_cover", "table_of"]
 
 
 def table_of(primes: Cover, required: Sequence[Words]) -> Table:
@@ -65,6 +66,7 @@ class TableProgram:
         self._table = Table(table.matrix[:, self._kept], table.phase)
         self._effort = effort
         self._n_outputs = n_outputs
+        self._last_core: tuple[Decisions, Core] | None = None
 
     @cached_property
     def _relaxation(self) -> Relaxation:
@@ -84,7 +86,7 @@ class TableProgram:
 
     def relax(self, decisions: Decisions) -> Relaxed:
         if None not in decisions:
-            core = reduce_to_core(self._demanded(decisions), self._cost)
+            core = self._core(decisions)
             if not len(core.columns):
                 # Dominance and essential columns are exact: no cover has fewer terms.
                 share = np.zeros(len(self._kept))
@@ -96,44 +98,50 @@ class TableProgram:
         return relaxed
 
     def guess(self, decisions: tuple[bool, ...], relaxed: Relaxed) -> NDArray[np.intp]:
-        return self._kept[greedy_cover(self._demanded(decisions), relaxed.x)]
+        return self._kept[quick_cover(self._core(decisions), relaxed.x)]
 
     def settle(self, decisions: tuple[bool, ...], relaxed: Relaxed) -> Settled:
-        matrix = self._demanded(decisions)
-        chosen, trusted = smallest_cover(matrix, self._cost, relaxed.x, relaxed.bound, self._effort)
+        core = self._core(decisions)
+        chosen, trusted = smallest_cover(core, relaxed.x, relaxed.bound, self._effort)
         return Settled(self._kept[chosen], relaxed.bound, trusted)
+
+    def _core(self, decisions: Decisions) -> Core:
+        """What is open when all polarities are decided; the last one asked for is kept."""
+        if self._last_core is None or self._last_core[0] != decisions:
+            self._last_core = (decisions, reduce_to_core(self._demanded(decisions), self._cost))
+        return self._last_core[1]
 
     def _demanded(self, decisions: Decisions) -> Matrix:
         active = np.array([decisions[p.output] == p.complemented for p in self._phases])
         return self._table.demanded_by(active)
 
 
+def quick_cover(core: Core, share: NDArray[np.float64]) -> NDArray[np.intp]:
+    """The columns of a cover by greed, led by the relaxation's shares; ascending."""
+    inner = greedy_cover(core.matrix, share[core.columns])
+    return np.sort(np.concatenate([core.chosen, core.columns[inner]]))
+
+
 def smallest_cover(
-    matrix: Matrix,
-    cost: NDArray[np.float64],
-    share: NDArray[np.float64],
-    bound: int,
-    effort: Effort,
+    core: Core, share: NDArray[np.float64], bound: int, effort: Effort
 ) -> tuple[NDArray[np.intp], int]:
     """A smallest cover of a table, and the lower bound that speaks for it.
 
     Args:
-        matrix: ``bool[R, P]``; every row has a column.
-        cost: Breaks ties between equal columns.
+        core: The table with everything forced decided.
         share: The relaxation's values, as a guide for the first cover.
         bound: What is known already; a cover of this size ends the search.
         effort: What may be spent.
 
     Returns:
-        Columns, ascending, and a bound that may rest on the solver.
+        Columns of the table, ascending, and a bound that may rest on the solver.
     """
-    core = reduce_to_core(matrix, cost)
-    inner = greedy_cover(core.matrix, share[core.columns])
-    chosen = np.sort(np.concatenate([core.chosen, core.columns[inner]]))
+    chosen = quick_cover(core, share)
     if not len(core.columns):
         return chosen, len(chosen)
     if len(chosen) <= bound:
         return chosen, bound
+    inner = np.flatnonzero(np.isin(core.columns, chosen))
     rows, columns = core.matrix.shape
     solver = Solver()
     entries = np.nonzero(core.matrix)

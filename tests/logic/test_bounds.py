@@ -182,7 +182,8 @@ def test_tables_are_reduced_without_loss(matrix, costs):
     for k in range(len(greedy)):
         assert not matrix[:, np.delete(greedy, k)].any(axis=1).all()
     assert len(irredundant(matrix, np.arange(matrix.shape[1]))) >= least
-    chosen, bound = smallest_cover(matrix, cost, np.zeros(matrix.shape[1]), 0, Effort())
+    core = reduce_to_core(matrix, cost)
+    chosen, bound = smallest_cover(core, np.zeros(matrix.shape[1]), 0, Effort())
     assert matrix[:, chosen].any(axis=1).all()
     assert len(chosen) == bound == least
 
