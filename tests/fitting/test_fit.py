@@ -4,6 +4,7 @@ from dataclasses import replace
 from itertools import product
 
 import pytest
+from mixed_device import MIXED
 
 from pla.behaviour.reader import read_behaviour
 from pla.device.catalogue import catalogue, find_device
@@ -16,50 +17,6 @@ from pla.fuses.link import link
 from pla.fuses.proof import prove
 from pla.logic.minimize import minimize
 from pla.logic.phases import Polarity
-
-# Six pins for inputs, three cells: one shows its sum, one its complement, one either.
-MIXED = """
-name = "mixed-6x10x3"
-summary = "cells of three kinds"
-technology = "one-time"
-pins = 11
-fuses = 151
-ground = 5
-power = 11
-
-[links]
-blank = 0
-connected = 0
-unused_term = "blank"
-
-[and]
-columns = "1 1' 2 2' 3 3' 4 4' 6 6' 7 7'"
-terms = 10
-first_fuse = 0
-term_step = 15
-column_step = 1
-
-[or]
-columns = "8 9 10"
-first_fuse = 12
-term_step = 15
-column_step = 1
-
-[kind.high]
-bits = []
-modes = [ { set = "", pin = "sum" } ]
-cells = [ { pin = 8, links = [] } ]
-
-[kind.low]
-bits = []
-modes = [ { set = "", pin = "sum'" } ]
-cells = [ { pin = 9, links = [] } ]
-
-[kind.either]
-bits = ["polarity"]
-modes = [ { set = "0", pin = "sum" }, { set = "1", pin = "sum'" } ]
-cells = [ { pin = 10, links = [150] } ]
-"""
 
 # x: 4 terms true, 1 complemented. y: 1 true, 3 complemented. z: 2 true, 2 complemented.
 WISHES = {
