@@ -6,7 +6,7 @@ that is wrong, so that all errors of a file are shown in one go.
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field, replace
+from dataclasses import dataclass, field
 from typing import TYPE_CHECKING, Literal
 
 if TYPE_CHECKING:
@@ -160,8 +160,3 @@ def by_place(diagnostic: Diagnostic) -> tuple[str, int, int]:
     if at is None:
         return ("", 0, 0)
     return (at.file, at.line or 0, at.column or 0)
-
-
-def relocated(diagnostic: Diagnostic, location: Location) -> Diagnostic:
-    """The same diagnostic at another place."""
-    return replace(diagnostic, location=location)

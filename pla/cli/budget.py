@@ -6,6 +6,7 @@ from typing import TYPE_CHECKING, Any, cast
 
 import click
 
+from pla.cli.options import json_option, polarity_option
 from pla.cli.output import emit_json, emit_text, show_diagnostics
 
 if TYPE_CHECKING:
@@ -29,14 +30,8 @@ __all__ = ["command"]
     help="Product terms that must stay spare; a device with fewer to spare does not count as "
     "holding the design.",
 )
-@click.option(
-    "--polarity",
-    type=click.Choice(["true", "free"]),
-    default="free",
-    show_default=True,
-    help="Sums of the asserted functions only, or of their complements where that saves terms.",
-)
-@click.option("--json", "as_json", is_flag=True, help="One JSON document on standard output.")
+@polarity_option
+@json_option
 def command(design: str, folder: str | None, reserve: int, polarity: str, as_json: bool) -> int:
     """Hold DESIGN against every device of the catalogue, best first.
 

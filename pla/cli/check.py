@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import click
 
+from pla.cli.options import json_option
 from pla.cli.output import emit_json, emit_text, show_diagnostics
 
 __all__ = ["command"]
@@ -11,7 +12,7 @@ __all__ = ["command"]
 
 @click.command("check")
 @click.argument("design", metavar="DESIGN")
-@click.option("--json", "as_json", is_flag=True, help="One JSON document on standard output.")
+@json_option
 def command(design: str, as_json: bool) -> int:
     """Read and check a design.
 

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import click
 
+from pla.cli.options import json_option
 from pla.cli.output import emit_json, emit_text, show_diagnostics
 
 __all__ = ["command"]
@@ -24,7 +25,7 @@ def command() -> None:
 
 
 @command.command("list")
-@click.option("--json", "as_json", is_flag=True, help="One JSON document on standard output.")
+@json_option
 def list_devices(as_json: bool) -> None:
     """List the devices of the catalogue, smallest first."""
     from pla.device.catalogue import catalogue, find_device
@@ -42,7 +43,7 @@ def list_devices(as_json: bool) -> None:
 
 @command.command("show")
 @click.argument("device", metavar="NAME-OR-FILE")
-@click.option("--json", "as_json", is_flag=True, help="One JSON document on standard output.")
+@json_option
 def show(device: str, as_json: bool) -> None:
     """Explain a device in words, with its pins and fuses, and draw its array.
 
@@ -65,7 +66,7 @@ def show(device: str, as_json: bool) -> None:
 
 @command.command("check")
 @click.argument("file", metavar="FILE")
-@click.option("--json", "as_json", is_flag=True, help="One JSON document on standard output.")
+@json_option
 def check(file: str, as_json: bool) -> None:
     """Check a device file as a whole, and explain what it says.
 

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import click
 
+from pla.cli.options import json_option
 from pla.cli.output import emit_json, emit_text, show_diagnostics
 
 __all__ = ["command"]
@@ -24,7 +25,7 @@ _NO = 1
     help="Exit code 1 if there is any departure from the standard. Without it departures are "
     "shown but do not fail.",
 )
-@click.option("--json", "as_json", is_flag=True, help="One JSON document on standard output.")
+@json_option
 def command(file: str, device: str | None, strict: bool, as_json: bool) -> int:
     """Hold a fuse file against the standard JESD3.
 

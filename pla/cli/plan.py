@@ -6,6 +6,7 @@ from typing import TYPE_CHECKING, Any, cast
 
 import click
 
+from pla.cli.options import json_option, polarity_option, proof_option
 from pla.cli.output import emit_json, emit_text, note, show_diagnostics
 
 if TYPE_CHECKING:
@@ -26,16 +27,10 @@ __all__ = ["command"]
 @click.option(
     "-o", "--output", "folder", required=True, metavar="FOLDER", help="Where all files go."
 )
-@click.option(
-    "--polarity",
-    type=click.Choice(["true", "free"]),
-    default="free",
-    show_default=True,
-    help="Sums of the asserted functions only, or of their complements where that saves terms.",
-)
-@click.option("--require-proof", is_flag=True, help="An unproven minimum is a no (exit code 1).")
+@polarity_option
+@proof_option
 @click.option("--force", is_flag=True, help="Write into FOLDER though it exists.")
-@click.option("--json", "as_json", is_flag=True, help="One JSON document on standard output.")
+@json_option
 def command(
     design: str,
     device: str,

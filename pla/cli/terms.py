@@ -6,6 +6,7 @@ from typing import Any, cast
 
 import click
 
+from pla.cli.options import json_option, polarity_option, proof_option
 from pla.cli.output import emit_json, emit_text, show_diagnostics
 
 __all__ = ["command"]
@@ -13,15 +14,9 @@ __all__ = ["command"]
 
 @click.command("terms")
 @click.argument("design", metavar="DESIGN")
-@click.option(
-    "--polarity",
-    type=click.Choice(["true", "free"]),
-    default="free",
-    show_default=True,
-    help="Sums of the asserted functions only, or of their complements where that saves terms.",
-)
-@click.option("--require-proof", is_flag=True, help="An unproven minimum is a no (exit code 1).")
-@click.option("--json", "as_json", is_flag=True, help="One JSON document on standard output.")
+@polarity_option
+@proof_option
+@json_option
 def command(design: str, polarity: str, require_proof: bool, as_json: bool) -> int:
     """Find the smallest set of shared product terms of DESIGN, with proof; no device.
 
