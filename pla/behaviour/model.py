@@ -8,12 +8,15 @@ from typing import TYPE_CHECKING, Literal
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
+    from fractions import Fraction
 
     from pla.errors import Diagnostic, Location
     from pla.logic.cubes import Cover
     from pla.logic.function import Function
 
-__all__ = ["Behaviour", "DontCareSource", "Input", "Output", "Place"]
+__all__ = ["Behaviour", "DontCareSource", "Enabling", "Form", "Inner", "Input", "Output", "Place"]
+
+Form = Literal["cases", "minterms", "logic", "address_map"]
 
 
 @dataclass(frozen=True, slots=True)
@@ -24,10 +27,30 @@ class Input:
         name: ``start``, or ``step[3]`` for a bit of a bus.
         active_low: The pin carries the complement of the asserted value.
         location: Where it is declared.
+        read_from: For the level of a bidirectional pin, the output that drives the pin.
     """
 
     name: str
     active_low: bool
+    location: Location
+    read_from: str | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class Enabling:
+    """When a three-state output drives its pin.
+
+    Attributes:
+        on: Input combinations in which it drives.
+        off: Those in which it does not. Together with `on` all combinations, unless the design
+            leaves the impossible ones open.
+        text: The expression as written.
+        location: Where it stands.
+    """
+
+    on: Cover
+    off: Cover
+    text: str
     location: Location
 
 
@@ -42,6 +65,9 @@ class Output:
         location: Where it is declared.
         described: Where its logic is given.
         form: By what kind of section.
+        enable: When it drives its pin; ``None`` for always.
+        reads: The input that is the level at its pin, for a bidirectional pin.
+        max_delay: The longest delay from any input to it, in ns; ``None`` where nothing is asked.
     """
 
     name: str
@@ -49,7 +75,27 @@ class Output:
     impossible: Literal[0, 1] | None
     location: Location
     described: Location
-    form: Literal["cases", "minterms", "logic", "address_map"]
+    form: Form
+    enable: Enabling | None = None
+    reads: str | None = None
+    max_delay: Fraction | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class Inner:
+    """One bit of a signal that needs no pin.
+
+    Attributes:
+        name: ``armed``, or ``state[1]`` for a bit of a bus.
+        location: Where it is declared.
+        described: Where its logic is given.
+        form: By what kind of section.
+    """
+
+    name: str
+    location: Location
+    described: Location
+    form: Form
 
 
 @dataclass(frozen=True, slots=True)
@@ -57,14 +103,14 @@ class DontCareSource:
     """Input combinations that some outputs do not care about, and why.
 
     Attributes:
-        reason: ``never``, ``others``, ``x`` (rows that say so), ``dont_care`` (minterm lists) or
-            ``elsewhere`` (address maps).
+        reason: ``never``, ``others``, ``x`` (rows that say so), ``dont_care`` (minterm lists),
+            ``elsewhere`` (address maps) or ``disabled`` (the output does not drive its pin).
         cubes: The combinations; the output mask of each cube tells the outputs concerned. The
             sources of one output have no combination in common, and together are exactly the
             combinations that `Behaviour.function` leaves open for it.
     """
 
-    reason: Literal["never", "others", "x", "dont_care", "elsewhere"]
+    reason: Literal["never", "others", "x", "dont_care", "elsewhere", "disabled"]
     cubes: Cover
 
 
@@ -89,13 +135,19 @@ class Behaviour:
         name: Title of the design.
         revision: As the user counts them; ``""`` if not given.
         file: The design file as named by the user.
-        inputs: In order of declaration.
+        inputs: In order of declaration; behind them those that are read from bidirectional pins.
         outputs: In order of declaration.
-        function: ON-set and OFF-set of all outputs.
+        function: ON-set and OFF-set of all outputs, with inner signals folded in.
         never: Impossible inputs (output masks mean nothing).
         dont_cares: Where the freedom comes from.
         places: For each device name, the pins decided beforehand.
         warnings: What is doubtful in the design, in order of place.
+        inner: Signals without a pin, in order of declaration.
+        inner_function: ON-set and OFF-set of these, over the same inputs.
+        named: For each output and inner signal whose description names others, these others
+            (outputs and inner signals, not inputs), in order of declaration. No ring among them.
+        signature: Text for the device's signature fuses; ``None`` if not given.
+        max_delay: The longest delay of any output, in ns; ``None`` where nothing is asked.
     """
 
     name: str
@@ -108,6 +160,11 @@ class Behaviour:
     dont_cares: tuple[DontCareSource, ...]
     places: Mapping[str, tuple[Place, ...]] = field(default_factory=lambda: MappingProxyType({}))
     warnings: tuple[Diagnostic, ...] = ()
+    inner: tuple[Inner, ...] = ()
+    inner_function: Function | None = None
+    named: Mapping[str, tuple[str, ...]] = field(default_factory=lambda: MappingProxyType({}))
+    signature: str | None = None
+    max_delay: Fraction | None = None
 
     @property
     def input_names(self) -> tuple[str, ...]:

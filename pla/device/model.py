@@ -1,37 +1,52 @@
 """A programmable array as its data sheet's logic diagram shows it.
 
 Only structure and fuse numbers stand here; how a file says them is `pla.device.reader`'s concern.
-Registers, output enables, feedback and terms of a cell's own have their place in the model: a
-`Mode` says what its pin shows and what it feeds back, a `Cell` may have terms of its own instead of
-a column of the shared OR array.
+A row of the AND array is a product term of a shared OR array, a term or the output enable of one
+cell. A cell's modes are resolved for the cell: their rows are rows of the device, and what the
+cell's columns carry is said mode by mode. Registers have their place in `Mode`.
 """
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from functools import cached_property
-from typing import TYPE_CHECKING, Literal
+from typing import TYPE_CHECKING, Literal, TypeAlias
 
 if TYPE_CHECKING:
-    from collections.abc import Iterator
+    from collections.abc import Iterator, Mapping
+    from fractions import Fraction
 
     from pla.errors import Diagnostic, Location
 
 __all__ = [
+    "ALWAYS",
     "AndArray",
     "BlankRow",
     "Block",
+    "Carries",
     "Cell",
     "Column",
     "Device",
+    "Drop",
+    "Enable",
+    "Line",
     "Links",
     "Mode",
     "OrArray",
     "Shows",
+    "Signature",
+    "Source",
+    "Timing",
 ]
 
+Source: TypeAlias = "int | str"
+"""A pin, or the name of a cell."""
+
 Shows = Literal["sum", "sum'", "none"]
-"""What a pin shows or a feedback line carries in a mode."""
+"""What a pin shows in a mode; ``none`` is high impedance."""
+
+Carries = Literal["sum", "sum'", "pin", "none"]
+"""What a feedback line carries in a mode."""
 
 BlankRow = Literal["dead", "true", "live"]
 """What a row of a blank part is worth: ``dead`` always 0, ``true`` always 1, ``live`` neither."""
@@ -44,13 +59,16 @@ class Links:
     Attributes:
         blank: State of every link of an unprogrammed part.
         connected: State that joins a line to a term, and a term to a sum.
-        unused_term: How a row without a term is left: ``blank`` untouched, or ``dead`` with every
-            line and its complement connected.
+        unused_term: How a row without a term is left: ``blank`` untouched, ``dead`` with every
+            line and its complement connected, ``drop`` cut off by its drop link.
+        unused_enable: How the enable row of a cell that no output uses is left: ``blank``
+            untouched, ``off`` dead, ``on`` with no line connected; ``None`` where no cell has one.
     """
 
     blank: Literal[0, 1]
     connected: Literal[0, 1]
-    unused_term: Literal["blank", "dead"]
+    unused_term: Literal["blank", "dead", "drop"]
+    unused_enable: Literal["blank", "off", "on"] | None = None
 
     @property
     def blank_connected(self) -> bool:
@@ -60,13 +78,41 @@ class Links:
 
 @dataclass(frozen=True, slots=True)
 class Column:
-    """A line that crosses the AND array: the level of a pin, or its complement."""
+    """A line that crosses the AND array, as the device file names it, or its complement.
 
-    pin: int
+    Attributes:
+        source: A pin, or the name of a cell.
+        complement: Whether it is the complement line.
+    """
+
+    source: Source
     complement: bool
 
     def __str__(self) -> str:
-        return f"{self.pin}'" if self.complement else str(self.pin)
+        return f"{self.source}'" if self.complement else str(self.source)
+
+
+@dataclass(frozen=True, slots=True)
+class Line:
+    """What a column really carries once all cells are set.
+
+    Attributes:
+        kind: The level of a pin, or the sum of a cell before its pin's polarity and enable.
+        of: The pin, or the key of the cell.
+        complement: Whether it is the complement of that.
+    """
+
+    kind: Literal["pin", "sum"]
+    of: Source
+    complement: bool = False
+
+    @property
+    def inverse(self) -> Line:
+        return Line(self.kind, self.of, not self.complement)
+
+    def __str__(self) -> str:
+        what = f"pin {self.of}" if self.kind == "pin" else f"the sum of {self.of}"
+        return f"the complement of {what}" if self.complement else what
 
 
 @dataclass(frozen=True, slots=True)
@@ -96,21 +142,24 @@ class OrArray:
     """Rows are product terms, columns are sums; a link where they cross.
 
     Attributes:
-        pins: The output pin whose cell each column's sum belongs to.
-        rows: First fuse of each term's OR links.
+        sums: The key of the cell that each column's sum belongs to.
+        terms: The row of the AND array that each row here belongs to.
+        rows: First fuse of each row's links.
         column_step: Fuses from one column to the next.
     """
 
-    pins: tuple[int, ...]
+    sums: tuple[Source, ...]
+    terms: tuple[int, ...]
     rows: tuple[int, ...]
     column_step: int
 
-    def fuse(self, term: int, column: int) -> int:
-        return self.rows[term] + column * self.column_step
+    def fuse(self, row: int, column: int) -> int:
+        """The link of the `row`-th row here, not of the AND array."""
+        return self.rows[row] + column * self.column_step
 
-    def fuses_of(self, term: int) -> range:
+    def fuses_of(self, row: int) -> range:
         """The links of one row, in order of the columns."""
-        return _strided(self.rows[term], len(self.pins), self.column_step)
+        return _strided(self.rows[row], len(self.sums), self.column_step)
 
 
 def _strided(first: int, count: int, step: int) -> range:
@@ -118,39 +167,159 @@ def _strided(first: int, count: int, step: int) -> range:
 
 
 @dataclass(frozen=True, slots=True)
+class Drop:
+    """Links that cut a whole row off, so that it counts as 0.
+
+    Attributes:
+        terms: The rows that have such a link.
+        fuses: The link of each of them.
+        dropped: The state that cuts the row off.
+    """
+
+    terms: tuple[int, ...]
+    fuses: tuple[int, ...]
+    dropped: Literal[0, 1]
+
+    def fuse(self, term: int) -> int | None:
+        """The drop link of a row, if it has one."""
+        return dict(zip(self.terms, self.fuses, strict=True)).get(term)
+
+
+@dataclass(frozen=True, slots=True)
+class Enable:
+    """When the pin of a cell is driven.
+
+    Attributes:
+        kind: ``always``; while a ``row`` is 1; or by the level of a ``pin``.
+        row: Row of the AND array.
+        pin: Enable pin.
+        active_low: The enable pin enables while it is low.
+    """
+
+    kind: Literal["always", "row", "pin"] = "always"
+    row: int | None = None
+    pin: int | None = None
+    active_low: bool = False
+
+
+ALWAYS = Enable()
+
+
+@dataclass(frozen=True, slots=True)
 class Mode:
-    """One setting of a cell's configuration links.
+    """One setting of a cell's configuration links, with the rows of this cell.
 
     Attributes:
         set: State of each configuration link, in the order of `Cell.links`; ``""`` if it has none.
-        pin: What the pin shows.
+        pin: What the pin shows while it is driven; ``none`` for a cell without a pin.
+        feedback: What the unprimed column of the cell carries; ``None`` if the cell has no
+            columns, or `lines` are given one by one.
+        terms: Rows of the cell's own OR gate, ascending; empty if its sum is a column of the OR
+            array.
+        enable: When the pin is driven.
+        lines: What each of the cell's own columns in the AND array carries in this mode, as
+            (column, line); ``None`` for nothing.
     """
 
     set: str
     pin: Shows
+    feedback: Carries | None = None
+    terms: tuple[int, ...] = ()
+    enable: Enable = ALWAYS
+    lines: tuple[tuple[int, Line | None], ...] = ()
 
 
 @dataclass(frozen=True, slots=True)
 class Cell:
-    """An output cell.
+    """A cell: a sum, its pin if it has one, its feedback if it has any.
 
     Attributes:
-        pin: Its output pin.
+        key: What names it: its pin, or its name if it is buried.
+        pin: Its pin; ``None`` for a buried cell.
         kind: Name of its kind in the device file.
         links: Its configuration links.
         modes: The settings that are allowed.
         bits: Names of the configuration links, in the order of `links`.
+        name: Its name, if it has one; columns of that name carry its feedback.
+        rows: Rows of the AND array that are its own in any mode, ascending.
+        unused: The setting for a cell that no output uses, if the file says so.
     """
 
-    pin: int
+    key: Source
+    pin: int | None
     kind: str
     links: tuple[int, ...]
     modes: tuple[Mode, ...]
     bits: tuple[str, ...] = ()
+    name: str | None = None
+    rows: tuple[int, ...] = ()
+    unused: str | None = None
+
+    def __str__(self) -> str:
+        return f"the cell on pin {self.pin}" if self.pin is not None else f"cell {self.name}"
 
     def mode_of(self, states: str) -> Mode | None:
         """The mode that these states of the configuration links select, if they select one."""
         return next((mode for mode in self.modes if mode.set == states), None)
+
+    @property
+    def capacity(self) -> int:
+        """The most terms that its own OR gate has in any mode; 0 if its OR gate is shared."""
+        return max(len(mode.terms) for mode in self.modes)
+
+    @property
+    def enable_rows(self) -> tuple[int, ...]:
+        """The rows that are an output enable in some mode, ascending."""
+        return tuple(sorted({m.enable.row for m in self.modes if m.enable.row is not None}))
+
+
+@dataclass(frozen=True, slots=True)
+class Signature:
+    """Fuses that hold a text of the user's.
+
+    Attributes:
+        first_fuse: Of the first byte.
+        bits: Number of fuses, a multiple of 8.
+        order: Which bit of each byte stands first.
+        ones: The state that stands for a bit that is 1.
+    """
+
+    first_fuse: int
+    bits: int
+    order: Literal["most significant bit first", "least significant bit first"]
+    ones: Literal[0, 1] = 1
+
+    @property
+    def fuses(self) -> range:
+        return range(self.first_fuse, self.first_fuse + self.bits)
+
+    @property
+    def length(self) -> int:
+        """Characters that it holds."""
+        return self.bits // 8
+
+
+@dataclass(frozen=True, slots=True)
+class Timing:
+    """Delays from the data sheet, in ns; ``None`` where it gives none.
+
+    Attributes:
+        tpd: From an input to an output, one pass through the array.
+        tfb: Added by each further pass through a feedback line; `tpd` if not given.
+        ten: From an input to an output that is enabled.
+        tdis: From an input to an output that is disabled.
+    """
+
+    tpd: Fraction | None = None
+    tfb: Fraction | None = None
+    ten: Fraction | None = None
+    tdis: Fraction | None = None
+
+    def delay(self, passes: int) -> Fraction | None:
+        """From an input to an output after so many passes through the array."""
+        if self.tpd is None:
+            return None
+        return self.tpd + (passes - 1) * (self.tfb if self.tfb is not None else self.tpd)
 
 
 @dataclass(frozen=True, slots=True)
@@ -172,16 +341,21 @@ class Device:
         technology: ``one-time`` links are programmed once; ``erasable`` ones any number of times.
         pins: Number of pins; they count from 1.
         fuses: Number of fuses; they count from 0.
-        ground: Ground pin.
-        power: Supply pin.
+        ground: Ground pins.
+        power: Supply pins.
         unconnected: Pins with no connection.
         links: What the states mean.
-        and_array: Product terms.
-        or_array: Sums of a shared OR array.
-        cells: Output cells in order of the file.
+        and_array: Rows and columns.
+        or_array: Sums of a shared OR array; ``None`` where every OR gate has terms of its own.
+        cells: Cells in order of the file.
         spare: Fuses that do nothing, as ranges; they stay blank.
         location: Where it was read from.
         warnings: What is doubtful in the description, in order of place.
+        drop: Links that cut rows off.
+        mode_fuses: Fuses that select this device-wide mode, as (fuse, state).
+        family: What the modes and variants of one part have in common.
+        signature: Fuses for a text.
+        timing: Delays.
     """
 
     name: str
@@ -189,77 +363,151 @@ class Device:
     technology: Literal["one-time", "erasable"]
     pins: int
     fuses: int
-    ground: int
-    power: int
+    ground: tuple[int, ...]
+    power: tuple[int, ...]
     unconnected: tuple[int, ...]
     links: Links
     and_array: AndArray
-    or_array: OrArray
+    or_array: OrArray | None
     cells: tuple[Cell, ...]
     spare: tuple[range, ...]
     location: Location
     warnings: tuple[Diagnostic, ...] = ()
+    drop: Drop | None = None
+    mode_fuses: tuple[tuple[int, Literal[0, 1]], ...] = ()
+    family: str = ""
+    signature: Signature | None = None
+    timing: Timing = field(default_factory=Timing)
 
     @property
     def terms(self) -> int:
+        """Rows of the AND array, enable rows among them."""
         return len(self.and_array.rows)
 
     @cached_property
+    def shared_rows(self) -> tuple[int, ...]:
+        """Rows of the AND array that feed the OR array, in its order."""
+        return () if self.or_array is None else self.or_array.terms
+
+    @cached_property
     def cell_of_pin(self) -> dict[int, Cell]:
-        return {cell.pin: cell for cell in self.cells}
+        """Cells that have a pin, by it."""
+        return {cell.pin: cell for cell in self.cells if cell.pin is not None}
+
+    @cached_property
+    def cell_of(self) -> dict[Source, Cell]:
+        """Every cell by its key."""
+        return {cell.key: cell for cell in self.cells}
+
+    @cached_property
+    def or_column(self) -> dict[Source, int]:
+        """For the key of each cell with a shared OR gate, the column of its sum."""
+        sums = () if self.or_array is None else self.or_array.sums
+        return {key: column for column, key in enumerate(sums)}
+
+    @cached_property
+    def fixed_lines(self) -> tuple[Line | None, ...]:
+        """What each column carries whatever the cells are set to; ``None`` where they decide."""
+        by_mode = {column for cell in self.cells for column, _ in cell.modes[0].lines}
+        return tuple(
+            None
+            if column is None or index in by_mode
+            else Line("pin", column.source, column.complement)
+            for index, column in enumerate(self.and_array.columns)
+        )
+
+    def lines(self, modes: Mapping[Source, Mode]) -> tuple[Line | None, ...]:
+        """What each column carries when the cells with these keys are in these modes.
+
+        Columns of cells that are not listed carry nothing.
+        """
+        lines = list(self.fixed_lines)
+        for mode in modes.values():
+            for column, line in mode.lines:
+                lines[column] = line
+        return tuple(lines)
 
     @cached_property
     def input_pins(self) -> tuple[int, ...]:
-        """Pins with a line in the AND array that are no cell's, ascending."""
-        lines = {c.pin for c in self.and_array.columns if c is not None}
-        return tuple(sorted(lines - set(self.cell_of_pin)))
+        """Pins that are no cell's and have a line in the AND array in some mode, ascending."""
+        lines = {line.of for line in self.fixed_lines if line is not None}
+        lines |= {
+            line.of
+            for cell in self.cells
+            for mode in cell.modes
+            for _, line in mode.lines
+            if line is not None and line.kind == "pin"
+        }
+        return tuple(sorted(p for p in lines if isinstance(p, int) and p not in self.cell_of_pin))
 
     @cached_property
     def output_pins(self) -> tuple[int, ...]:
-        return tuple(sorted(self.cell_of_pin))
+        """Pins of cells that can show a sum, ascending."""
+        return tuple(
+            sorted(
+                pin
+                for pin, cell in self.cell_of_pin.items()
+                if any(mode.pin != "none" for mode in cell.modes)
+            )
+        )
 
     @cached_property
-    def column_of(self) -> dict[tuple[int, bool], int]:
-        """Index of the column that carries (pin, complement)."""
+    def enable_pins(self) -> tuple[int, ...]:
+        """Pins that enable cells in some mode, ascending."""
+        pins = {mode.enable.pin for cell in self.cells for mode in cell.modes}
+        return tuple(sorted(pin for pin in pins if pin is not None))
+
+    @cached_property
+    def column_of(self) -> dict[tuple[Source, bool], int]:
+        """Index of the column that the device file names (source, complement)."""
         return {
-            (c.pin, c.complement): i for i, c in enumerate(self.and_array.columns) if c is not None
+            (c.source, c.complement): i
+            for i, c in enumerate(self.and_array.columns)
+            if c is not None
         }
 
     @cached_property
-    def paired_pins(self) -> tuple[int, ...]:
-        """Pins that have both a true and a complement line, ascending."""
+    def paired_sources(self) -> tuple[Source, ...]:
+        """Sources that have both a true and a complement column, in order of the columns."""
         return tuple(
-            sorted(
-                pin for pin, prime in self.column_of if not prime and (pin, True) in self.column_of
-            )
+            source
+            for source, prime in self.column_of
+            if not prime and (source, True) in self.column_of
         )
 
     @property
     def blank_row(self) -> BlankRow:
         """What a row of a blank part is worth.
 
-        A row without a connected line is the empty product, 1. A row with a line and its
-        complement connected is 0. A row that connects no such pair depends on its inputs.
+        A row that its drop link cuts off is 0, and so is one with a line and its complement
+        connected. A row without a connected line is the empty product, 1. A row that connects no
+        such pair depends on its inputs.
         """
+        if self.drop is not None and self.drop.dropped == self.links.blank:
+            return "dead"
         if not self.links.blank_connected or not self.column_of:
             return "true"
-        return "dead" if self.paired_pins else "live"
+        return "dead" if self.paired_sources else "live"
 
     def blank_mode(self, cell: Cell) -> Mode | None:
         """The mode of a cell whose configuration links are all blank, if that is one."""
         return cell.mode_of(str(self.links.blank) * len(cell.links))
 
     def idle_mode(self, cell: Cell) -> Mode:
-        """The mode of a cell that no output uses: blank if that is a mode, else its first one."""
-        return self.blank_mode(cell) or cell.modes[0]
+        """The mode of a cell that no output uses.
+
+        What the file says; else blank if that is a mode, else the first one.
+        """
+        said = cell.mode_of(cell.unused) if cell.unused is not None else None
+        return said or self.blank_mode(cell) or cell.modes[0]
 
     def blocks(self) -> Iterator[Block]:
         """The fuse lists of a fuse file: together every fuse once, in order of address.
 
         One for each row of the AND array, with its OR links where they follow at once; then one
-        for each further region that stands together: OR rows apart, configuration links, spare
-        fuses. In an array whose rows do not stand together the columns make the blocks, and
-        where neither does, the array as a whole.
+        for each further region that stands together: OR rows apart, drop links, configuration
+        links, mode fuses, signature, spare fuses. In an array whose rows do not stand together the
+        columns make the blocks, and where neither does, the array as a whole.
         """
         from pla.device.blocks import blocks_of  # noqa: PLC0415 - `blocks` builds on this module
 
