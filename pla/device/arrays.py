@@ -46,9 +46,9 @@ class ReadAndArray:
         """One for each pin with a line, at its first column."""
         first: dict[int, PinClaim] = {}
         for index, column in enumerate(self.array.columns):
-            if column is not None and column.pin not in first:
-                first[column.pin] = PinClaim(
-                    column.pin,
+            if column is not None and isinstance(column.source, int) and column.source not in first:
+                first[column.source] = PinClaim(
+                    column.source,
                     f"an input with column {index} of [and]",
                     lambda index=index: self.at_column(index),  # type: ignore[misc]
                 )
@@ -58,7 +58,7 @@ class ReadAndArray:
         """Lines whose pin has no line in the other sense, with their columns."""
         lines = {line for line in self.array.columns if line is not None}
         for index, line in enumerate(self.array.columns):
-            if line is not None and Column(line.pin, not line.complement) not in lines:
+            if line is not None and Column(line.source, not line.complement) not in lines:
                 yield index, line
 
     def _words(self, term: int, column: int) -> str:
@@ -80,7 +80,7 @@ class ReadOrArray:
                 self.array.fuses_of(term),
                 "OR",
                 lambda column, term=term: (  # type: ignore[misc]
-                    f"OR row {term} column {column} for pin {self.array.pins[column]}"
+                    f"OR row {term} column {column} for pin {self.array.sums[column]}"
                 ),
                 lambda term=term: _at_row(self.section, term),  # type: ignore[misc]
             )
@@ -93,7 +93,7 @@ class ReadOrArray:
                 f"OR column {column}",
                 lambda column=column: self.section.inside("columns", self.offsets[column]),  # type: ignore[misc]
             )
-            for column, pin in enumerate(self.array.pins)
+            for column, pin in enumerate(self.array.sums)
         ]
 
 
@@ -126,7 +126,7 @@ def read_or_array(section: Section, terms: int | None) -> ReadOrArray | None:
     if columns is None or rows is None or step is None:
         return None
     pins, offsets = columns
-    return ReadOrArray(OrArray(pins, rows, step), section, offsets)
+    return ReadOrArray(OrArray(pins, tuple(range(len(rows))), rows, step), section, offsets)
 
 
 def _split(section: Section) -> list[tuple[str, int]] | None:

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
-from itertools import pairwise
+from itertools import chain, pairwise
 from typing import TYPE_CHECKING, Literal
 
 from pla.device.model import Block
@@ -11,7 +11,7 @@ from pla.device.model import Block
 if TYPE_CHECKING:
     from collections.abc import Iterator, Sequence
 
-    from pla.device.model import AndArray, Cell, Column, Device, OrArray
+    from pla.device.model import AndArray, Column, Device, OrArray, Source
 
 __all__ = ["FuseRole", "blocks_of", "role_of"]
 
@@ -21,32 +21,48 @@ class FuseRole:
     """What one fuse does.
 
     Attributes:
-        kind: ``and`` joins a line to a term, ``or`` a term to a sum, ``cell`` sets an output
-            cell, ``spare`` does nothing.
-        term: Row of the link; ``None`` outside the arrays.
-        column: Column of the link; ``None`` outside the arrays.
+        kind: ``and`` joins a line to a term, ``or`` a term to a sum, ``drop`` cuts a term off,
+            ``cell`` sets a cell, ``mode`` selects a device-wide mode, ``signature`` holds a bit of
+            the user's text, ``spare`` does nothing.
+        term: Row of the AND array; ``None`` outside the arrays and the drop links.
+        column: Column of the link in its array; for a signature its position from the first fuse.
         line: The line of an AND link; ``None`` elsewhere and in a column with no line.
-        pin: Output pin of an OR link's sum, or of a configuration link's cell.
+        pin: Pin of that cell, if it has one.
+        key: Key of the cell of an OR link's sum, or of a configuration link.
         bit: Name of a configuration link.
+        state: State that a mode fuse must have.
     """
 
-    kind: Literal["and", "or", "cell", "spare"]
+    kind: Literal["and", "or", "drop", "cell", "mode", "signature", "spare"]
     term: int | None = None
     column: int | None = None
     line: Column | None = None
     pin: int | None = None
+    key: Source | None = None
     bit: str | None = None
+    state: Literal[0, 1] | None = None
 
     def __str__(self) -> str:
-        if self.kind == "and":
-            if self.line is None:
+        match self.kind:
+            case "and" if self.line is None:
                 return f"crosses term {self.term} in column {self.column}, which has no line"
-            return f"joins line {self.line} to term {self.term}"
-        if self.kind == "or":
-            return f"joins term {self.term} to the sum of pin {self.pin}"
-        if self.kind == "cell":
-            return f"is link {self.bit!r} of the cell on pin {self.pin}"
-        return "is spare"
+            case "and":
+                return f"joins line {self.line} to term {self.term}"
+            case "or":
+                return f"joins term {self.term} to the sum of {self._cell('pin')}"
+            case "drop":
+                return f"is the link that drops term {self.term}"
+            case "cell":
+                return f"is link {self.bit!r} of {self._cell('the cell on pin')}"
+            case "mode":
+                return f"selects the device-wide mode: it is {self.state}"
+            case "signature":
+                return f"is bit {self.column} of the signature"
+            case _:
+                return "is spare"
+
+    def _cell(self, on: str) -> str:
+        return f"{on} {self.pin}" if self.pin is not None else f"cell {self.key}"
 
 
 def role_of(device: Device, fuse: int) -> FuseRole:
@@ -57,34 +73,46 @@ def role_of(device: Device, fuse: int) -> FuseRole:
     """
     if not 0 <= fuse < device.fuses:
         raise IndexError(f"fuse {fuse} of {device.fuses}")
+    return _array_role(device, fuse) or _other_role(device, fuse) or FuseRole("spare")
+
+
+def _array_role(device: Device, fuse: int) -> FuseRole | None:
     for term in range(device.terms):
-        lines, sums = device.and_array.fuses_of(term), device.or_array.fuses_of(term)
+        lines = device.and_array.fuses_of(term)
         if fuse in lines:
             column = lines.index(fuse)
             return FuseRole("and", term, column, line=device.and_array.columns[column])
-        if fuse in sums:
-            column = sums.index(fuse)
-            return FuseRole("or", term, column, pin=device.or_array.pins[column])
+    if device.or_array is not None:
+        for row, term in enumerate(device.or_array.terms):
+            sums = device.or_array.fuses_of(row)
+            if fuse in sums:
+                column = sums.index(fuse)
+                key = device.or_array.sums[column]
+                return FuseRole("or", term, column, pin=device.cell_of[key].pin, key=key)
+    return None
+
+
+def _other_role(device: Device, fuse: int) -> FuseRole | None:
     for cell in device.cells:
         if fuse in cell.links:
-            return FuseRole("cell", pin=cell.pin, bit=_bit_name(cell, fuse))
-    return FuseRole("spare")
-
-
-def _bit_name(cell: Cell, fuse: int) -> str:
-    return cell.bits[cell.links.index(fuse)]
+            bit = cell.bits[cell.links.index(fuse)]
+            return FuseRole("cell", pin=cell.pin, key=cell.key, bit=bit)
+    if device.drop is not None and fuse in device.drop.fuses:
+        return FuseRole("drop", device.drop.terms[device.drop.fuses.index(fuse)])
+    state = dict(device.mode_fuses).get(fuse)
+    if state is not None:
+        return FuseRole("mode", state=state)
+    if device.signature is not None and fuse in device.signature.fuses:
+        return FuseRole("signature", column=device.signature.fuses.index(fuse))
+    return None
 
 
 def blocks_of(device: Device) -> Iterator[Block]:
     """See `Device.blocks`."""
     owner = [""] * device.fuses
-    for spare in device.spare:
-        for fuse in spare:
-            owner[fuse] = "spare"
-    for cell in device.cells:
-        for fuse in cell.links:
-            owner[fuse] = "configuration"
-    _mark_or_array(owner, device)
+    _mark_others(owner, device)
+    if device.or_array is not None:
+        _mark_or_array(owner, device, device.or_array)
     _mark_and_array(owner, device)
     first = 0
     for fuse in range(1, device.fuses + 1):
@@ -93,32 +121,50 @@ def blocks_of(device: Device) -> Iterator[Block]:
             first = fuse
 
 
+def _mark_others(owner: list[str], device: Device) -> None:
+    marks = [
+        ("spare", chain.from_iterable(device.spare)),
+        ("configuration", chain.from_iterable(cell.links for cell in device.cells)),
+        ("drop links", device.drop.fuses if device.drop else ()),
+        ("mode", (fuse for fuse, _ in device.mode_fuses)),
+        ("signature", device.signature.fuses if device.signature else ()),
+    ]
+    for what, fuses in marks:
+        for fuse in fuses:
+            owner[fuse] = what
+
+
 def _mark_and_array(owner: list[str], device: Device) -> None:
-    array = device.and_array
+    array, sums = device.and_array, device.or_array
     grain = _grain(array)
+    both = sums is not None and grain == _grain(sums)
     for term in range(device.terms):
         for column, fuse in enumerate(array.fuses_of(term)):
             line = array.columns[column]
             owner[fuse] = {
                 "row": f"term {term}",
                 "column": f"line {line}" if line else f"column {column}",
-                "array": "AND and OR array" if grain == _grain(device.or_array) else "AND array",
+                "array": "AND and OR array" if both else "AND array",
             }[grain]
 
 
-def _mark_or_array(owner: list[str], device: Device) -> None:
-    array = device.or_array
+def _mark_or_array(owner: list[str], device: Device, array: OrArray) -> None:
     grain = _grain(array)
     adjoining = grain == "row" and _grain(device.and_array) == "row"
-    for term in range(device.terms):
-        fuses = array.fuses_of(term)
+    for row, term in enumerate(array.terms):
+        fuses = array.fuses_of(row)
         joined = adjoining and _adjoin(device.and_array.fuses_of(term), fuses)
         for column, fuse in enumerate(fuses):
             owner[fuse] = {
                 "row": f"term {term}" if joined else f"OR links of term {term}",
-                "column": f"sum of pin {array.pins[column]}",
+                "column": f"sum of {_named(device, array.sums[column])}",
                 "array": "AND and OR array" if grain == _grain(device.and_array) else "OR array",
             }[grain]
+
+
+def _named(device: Device, key: Source) -> str:
+    pin = device.cell_of[key].pin
+    return f"pin {pin}" if pin is not None else f"cell {key}"
 
 
 def _grain(array: AndArray | OrArray) -> Literal["row", "column", "array"]:

@@ -42,7 +42,7 @@ class ReadCell:
         return self.section.at("pin")
 
     def claims(self) -> Iterator[FuseClaim]:
-        pin = self.cell.pin
+        pin = self.cell.key
         for index, fuse in enumerate(self.cell.links):
             yield FuseClaim(
                 (fuse,),
@@ -52,7 +52,7 @@ class ReadCell:
             )
 
     def pin_claim(self) -> PinClaim:
-        return PinClaim(self.cell.pin, "an output", self.at_pin)
+        return PinClaim(cast("int", self.cell.pin), "an output", self.at_pin)
 
 
 def read_kinds(top: Section) -> list[ReadCell] | None:
@@ -99,7 +99,7 @@ def _read_kind(name: str, kind: Section) -> list[ReadCell] | None:
         if pin is None or links is None or bits is None or modes is None:
             good = False
         else:
-            cells.append(ReadCell(Cell(pin, name, links, modes, bits), section))
+            cells.append(ReadCell(Cell(pin, pin, name, links, modes, bits), section))
     return cells if good and cells else None
 
 

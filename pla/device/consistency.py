@@ -226,7 +226,7 @@ def check_rows(device: Device, at_unused: Location, diagnostics: Diagnostics) ->
     inputs, and all their OR links are connected.
     """
     unused = device.links.unused_term
-    if device.paired_pins:
+    if device.paired_sources:
         return
     if unused == "dead":
         diagnostics.error(

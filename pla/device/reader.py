@@ -106,8 +106,8 @@ def device_from(file: TomlFile) -> Device:
         technology=cast("Literal['one-time', 'erasable']", technology),
         pins=pins,
         fuses=fuses,
-        ground=ground,
-        power=power,
+        ground=(ground,),
+        power=(power,),
         unconnected=tuple(unconnected),
         links=links,
         and_array=and_array.array,
@@ -259,18 +259,18 @@ def _input_claims(and_array: ReadAndArray, cells: list[ReadCell]) -> list[PinCla
 
 
 def _cell_claim(cell: ReadCell) -> PinClaim:
-    return PinClaim(cell.cell.pin, f"the cell on pin {cell.cell.pin}", cell.at_pin)
+    return PinClaim(cast("int", cell.cell.pin), f"the cell on pin {cell.cell.pin}", cell.at_pin)
 
 
 def _report_feedback(and_array: ReadAndArray, cells: list[ReadCell]) -> None:
     outputs = {cell.cell.pin for cell in cells}
     for index, line in enumerate(and_array.array.columns):
-        if line is not None and line.pin in outputs:
+        if line is not None and line.source in outputs:
             not_yet(
                 and_array.section,
                 FEEDBACK,
                 and_array.at_column(index),
-                f"column {index} of [and] is line {line}, and pin {line.pin} has an output cell",
+                f"column {index} of [and] is line {line}, and pin {line.source} has an output cell",
             )
 
 
@@ -282,12 +282,12 @@ def _check_fuses(
     cells: list[ReadCell],
     spare: list[tuple[range, Location]],
 ) -> None:
-    links = len(and_array.array.rows) * (len(and_array.array.columns) + len(or_array.array.pins))
+    links = len(and_array.array.rows) * (len(and_array.array.columns) + len(or_array.array.sums))
     if links > fuses:
         top.error(
             "FUSE-COUNT",
             f"{len(and_array.array.rows)} terms with {len(and_array.array.columns)} AND links and "
-            f"{len(or_array.array.pins)} OR links each are {links} fuses, but the device has "
+            f"{len(or_array.array.sums)} OR links each are {links} fuses, but the device has "
             f"{fuses}",
             top.at("fuses"),
         )
@@ -314,7 +314,7 @@ def _warn_of_single_lines(and_array: ReadAndArray, diagnostics: Diagnostics) -> 
         )
         diagnostics.warning(
             "LINE-SINGLE",
-            f"pin {line.pin} has a {has} line but no {lacks} line: "
+            f"pin {line.source} has a {has} line but no {lacks} line: "
             f"a term can ask only for the pin {level}",
             and_array.at_column(index),
         )

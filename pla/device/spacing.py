@@ -94,8 +94,8 @@ def _missing(read: _Read, and_array: ReadAndArray) -> str:
     if not single:
         return "perhaps a column is missing"
     pins = [
-        f"pin {line.pin} has a {'complement' if line.complement else 'true'} line, but no "
-        f"{Column(line.pin, not line.complement)}"
+        f"pin {line.source} has a {'complement' if line.complement else 'true'} line, but no "
+        f"{Column(line.source, not line.complement)}"
         for line in single[:_SHOWN]
     ]
     return f"perhaps a column is missing: {', '.join(pins)}{', …' if len(single) > _SHOWN else ''}"

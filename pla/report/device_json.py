@@ -28,8 +28,8 @@ def describe(device: Device) -> dict[str, Any]:
     """Everything the device file says, with the fuse of every row, and what follows from it."""
     return {
         **summarize(device),
-        "ground": device.ground,
-        "power": device.power,
+        "ground": _one_or_all(device.ground),
+        "power": _one_or_all(device.power),
         "unconnected": list(device.unconnected),
         "input_pins": list(device.input_pins),
         "output_pins": list(device.output_pins),
@@ -45,7 +45,7 @@ def describe(device: Device) -> dict[str, Any]:
             "column_step": device.and_array.column_step,
         },
         "or": {
-            "columns": list(device.or_array.pins),
+            "columns": list(device.or_array.sums),
             "rows": list(device.or_array.rows),
             "column_step": device.or_array.column_step,
         },
@@ -53,6 +53,10 @@ def describe(device: Device) -> dict[str, Any]:
         "spare": [[fuses[0], fuses[-1]] for fuses in device.spare],
         "warnings": [warning.as_json() for warning in device.warnings],
     }
+
+
+def _one_or_all(pins: tuple[int, ...]) -> int | list[int]:
+    return pins[0] if len(pins) == 1 else list(pins)
 
 
 def _cell(device: Device, cell: Cell) -> dict[str, Any]:

@@ -96,8 +96,8 @@ def _on_blank_row(device: Device) -> list[str]:
         ]
     which = (
         "every line and its complement are joined to it"
-        if len(device.paired_pins) == len(device.input_pins)
-        else f"line and complement of pins {spans(device.paired_pins)} are joined to it"
+        if len(device.paired_sources) == len(device.input_pins)
+        else f"line and complement of pins {spans(device.paired_sources)} are joined to it"
     )
     return [
         f"A blank row is dead, always 0: {which}.",
@@ -169,9 +169,9 @@ def _on_unused_output(device: Device, cell: Cell) -> str:
 
 def pin_table(device: Device) -> list[tuple[str, str, str]]:
     """For each pin its number, its role, and where it is in the arrays."""
-    roles = {device.ground: "ground", device.power: "power"}
+    roles = {**dict.fromkeys(device.ground, "ground"), **dict.fromkeys(device.power, "power")}
     roles.update(dict.fromkeys(device.unconnected, "not connected"))
-    sums = {pin: column for column, pin in enumerate(device.or_array.pins)}
+    sums = {pin: column for column, pin in enumerate(device.or_array.sums)}
     rows = []
     for pin in range(1, device.pins + 1):
         if pin in roles:
@@ -248,7 +248,7 @@ def _fuses(number: int) -> str:
 def _parts(device: Device, block: Block) -> str:
     if not block.what.startswith("term "):
         return ""
-    ands, ors = len(device.and_array.columns), len(device.or_array.pins)
+    ands, ors = len(device.and_array.columns), len(device.or_array.sums)
     return ": AND links" if block.size == ands else f": {ands} AND links, {ors} OR links"
 
 
@@ -264,7 +264,7 @@ def draw(device: Device) -> str:
     At most 100 characters wide if the device allows it; rows in the middle are left out of long
     arrays.
     """
-    lines, sums = device.and_array.columns, device.or_array.pins
+    lines, sums = device.and_array.columns, device.or_array.sums
     rows = _shown_rows(device.terms)
     left = [_extent(device.and_array.fuses_of(term)) for term in range(device.terms)]
     right = [_extent(device.or_array.fuses_of(term)) for term in range(device.terms)]
@@ -343,9 +343,9 @@ def _fit(text: str, width: int) -> str:
 
 def _labels(device: Device) -> Iterator[tuple[list[str], list[str]]]:
     """Rows of characters above lines and sums: the digits of the pins, then the primes."""
-    lines, sums = device.and_array.columns, device.or_array.pins
+    lines, sums = device.and_array.columns, device.or_array.sums
     digits = len(str(device.pins))
-    above = [f"{line.pin if line else '':>{digits}}" for line in lines]
+    above = [f"{line.source if line else '':>{digits}}" for line in lines]
     beside = [f"{pin:>{digits}}" for pin in sums]
     for k in range(digits):
         yield [pin[k] for pin in above], [pin[k] for pin in beside]

@@ -67,8 +67,8 @@ def test_every_pin_is_accounted_for(name):
         *device.input_pins,
         *device.output_pins,
         *device.unconnected,
-        device.ground,
-        device.power,
+        *device.ground,
+        *device.power,
     ]
     assert sorted(roles) == list(range(1, device.pins + 1))
 

@@ -27,7 +27,7 @@ def as_truth(device, fuse):
     role = role_of(device, fuse)
     if role.kind == "and":
         line = role.line
-        return ("and", role.term, line and line.pin, bool(line and line.complement))
+        return ("and", role.term, line and line.source, bool(line and line.complement))
     if role.kind == "or":
         return ("or", role.term, role.pin)
     if role.kind == "cell":
@@ -54,7 +54,7 @@ def test_lookups_agree_with_the_fuse_numbers(seed):
         for term in range(device.terms):
             fuse = device.and_array.fuse(term, column)
             assert made.roles[fuse] == ("and", term, pin, complement)
-    for column, pin in enumerate(device.or_array.pins):
+    for column, pin in enumerate(device.or_array.sums):
         for term in range(device.terms):
             assert made.roles[device.or_array.fuse(term, column)] == ("or", term, pin)
 
