@@ -16,7 +16,7 @@ from pla.behaviour.minterms import one_output
 from pla.behaviour.overlaps import AddressMap, Select, report_overlaps
 from pla.behaviour.problem import Problem
 from pla.behaviour.spans import widened
-from pla.behaviour.unsupported import refuse_unsupported
+from pla.behaviour.unsupported import MISPLACED, refuse_unsupported
 from pla.behaviour.values import span_cubes
 from pla.logic import algebra
 from pla.logic.cubes import Cover, Cube
@@ -52,7 +52,7 @@ def read_address_map(
     diagnostics = section.diagnostics
     before = len(diagnostics.errors)
     refused = refuse_unsupported(section, "table")
-    section.unknown_keys(("bus", "when", "select", "elsewhere", "overlap", *refused))
+    section.unknown_keys(("bus", "when", "select", "elsewhere", "overlap", *refused), MISPLACED)
     bus = _read_bus(section, signals)
     condition = None
     text = section.text("when")

@@ -13,7 +13,7 @@ from pla.behaviour.listing import Listing, ListingBuilder, Row, Values, resolve
 from pla.behaviour.problem import Problem
 from pla.behaviour.signals import RESERVED
 from pla.behaviour.sources import RowSource, read_csv, read_inline
-from pla.behaviour.unsupported import refuse_unsupported
+from pla.behaviour.unsupported import MISPLACED, refuse_unsupported
 from pla.errors import Diagnostics, InputError
 from pla.textfile import read_text
 
@@ -34,7 +34,7 @@ def read_cases(section: Section, signals: Signals, claims: Claims) -> Descriptio
     diagnostics = section.diagnostics
     before = len(diagnostics.errors)
     refused = refuse_unsupported(section, "table")
-    section.unknown_keys(("rows", "file", *refused))
+    section.unknown_keys(("rows", "file", *refused), MISPLACED)
     source = _source(section)
     if source is None:
         claims.incomplete = True
@@ -107,7 +107,7 @@ class _Table:
                 0 if names else len(names),
             )
         group_of = [g for g, group in enumerate(self.source.header) for _ in group]
-        seen: dict[tuple[str, int], str] = {}
+        seen: dict[tuple[bool, int], str] = {}
         for index, name in enumerate(names):
             try:
                 column = self.column(name)
@@ -115,7 +115,7 @@ class _Table:
                 claims.incomplete = True
                 self.error(problem, -1, index)
                 continue
-            keys = [(column.role, bit) for bit in column.bits if bit is not None]
+            keys = [(column.is_input, bit) for bit in column.bits if bit is not None]
             earlier = next((seen[key] for key in keys if key in seen), None)
             if earlier is not None:
                 text = f"the column {name!r} shares bits with the column {earlier!r}"
@@ -124,7 +124,7 @@ class _Table:
                 self.error(Problem("COLUMN-TWICE", text), -1, index)
                 continue
             seen |= dict.fromkeys(keys, name)
-            if column.role == "output":
+            if not column.is_input:
                 claims.claim(column, self.source.at(-1, index), "cases")
                 self.outputs.append(column)
             else:

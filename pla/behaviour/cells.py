@@ -68,7 +68,7 @@ def output_cell(field: Field, text: str) -> Values:
         raise Problem(
             "NOT-SUPPORTED-YET",
             "'keep': registered outputs are not supported yet",
-            "this version plans combinational outputs on a shared OR array",
+            "this version plans combinational outputs",
         )
     if not text[:1].isdigit() or ".." in text:
         hint = "a don't care is a small x" if text == "X" else None

@@ -1,4 +1,4 @@
-"""Reading equations from TOML strings: ``[logic]``, ``[never]`` and ``when``."""
+"""Reading equations from TOML strings: ``[logic]``, ``[never]``, ``when`` and ``enable``."""
 
 from __future__ import annotations
 
@@ -11,7 +11,7 @@ from pla.behaviour.equations import (
     check_tree,
     evaluate,
     granule_points,
-    named_outputs,
+    named_bits,
 )
 from pla.behaviour.listing import Solved
 from pla.behaviour.minterms import one_output
@@ -23,7 +23,7 @@ from pla.logic.cubes import Cover
 if TYPE_CHECKING:
     from collections.abc import Callable
 
-    from pla.behaviour.signals import Role, Signals
+    from pla.behaviour.signals import Signals, Wanted
     from pla.errors import Diagnostics, Location
     from pla.tomlfile import Path, Section
 
@@ -47,8 +47,8 @@ class Condition:
     diagnostics: Diagnostics
 
     def needs(self) -> dict[int, Location]:
-        """Outputs named, and where first."""
-        named = named_outputs(self.tree, self.signals)
+        """Described bits named, and where first."""
+        named = named_bits(self.tree, self.signals)
         return {output: self.place(offset) for output, offset in named.items()}
 
     def value(self, output_sets: Callable[[int], Sets]) -> Sets | None:
@@ -61,7 +61,7 @@ class Condition:
 
 
 def read_condition(
-    section: Section, path: Path, text: str, signals: Signals, role: Role | None = None
+    section: Section, path: Path, text: str, signals: Signals, wanted: Wanted | None = None
 ) -> Condition | None:
     """The equation in a string value, reporting everything that is wrong with it.
 
@@ -70,7 +70,7 @@ def read_condition(
         path: The value, from the top of the document.
         text: The value.
         signals: What is declared.
-        role: ``input`` if outputs must not be named.
+        wanted: ``input`` if outputs and inner signals must not be named.
     """
 
     def place(offset: int) -> Location:
@@ -79,7 +79,7 @@ def read_condition(
     tree = None
     try:
         tree = parse_equation(text)
-        problems = check_tree(tree, signals, role)
+        problems = check_tree(tree, signals, wanted)
     except Problem as fault:
         problems = [fault]
     for problem in problems:
@@ -160,4 +160,4 @@ def read_logic(section: Section, name: str, signals: Signals, claims: Claims) ->
         return Solved(on, off)
 
     outputs = tuple(bit for bit in output.bits if bit is not None)
-    return Description(outputs, condition.needs(), solve)
+    return Description(outputs, condition.needs(), solve, condition.value)

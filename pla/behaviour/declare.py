@@ -1,8 +1,11 @@
-"""Reading ``[inputs]`` and ``[outputs]``."""
+"""Reading ``[inputs]``, ``[outputs]`` and ``[inner]``."""
 
 from __future__ import annotations
 
 import re
+from dataclasses import replace
+from fractions import Fraction
+from math import isfinite
 from typing import TYPE_CHECKING, Literal
 
 from pla.behaviour.signals import RESERVED, Role, Signal, Signals
@@ -12,13 +15,15 @@ from pla.logic.cubes import MAX_INPUTS, MAX_OUTPUTS
 if TYPE_CHECKING:
     from collections.abc import Container
 
+    from pla.errors import Location
     from pla.tomlfile import Section
 
-__all__ = ["read_signals"]
+__all__ = ["read_delay", "read_signals"]
 
 _NAME = re.compile(r"[A-Za-z_][A-Za-z0-9_]*")
 _SPAN = re.compile(r"([0-9]+):([0-9]+)")
-_MOST = {"input": MAX_INPUTS, "output": MAX_OUTPUTS}
+_SECTION = {"input": "inputs", "output": "outputs", "inner": "inner"}
+_MOST = {"input": MAX_INPUTS, "output": MAX_OUTPUTS, "inner": MAX_OUTPUTS}
 _EXAMPLE = {"input": "start = 1", "output": "fan = 1"}
 _HIGHEST_BIT = 255
 _MEANT = {
@@ -26,7 +31,13 @@ _MEANT = {
     "active_high": 'did you mean active = "high"?',
     "width": "did you mean 'bits'?",
 }
-_KEYS = {"input": ("active", "bits"), "output": ("active", "bits", "impossible")}
+_KEYS = {
+    "input": ("active", "bits"),
+    "output": ("active", "bits", "impossible", "enable", "never_too", "reads", "max_delay"),
+    "inner": ("bits",),
+}
+_LONGEST_DELAY = 1_000_000  # ns
+_OF_PINS = ("active", "impossible", "enable", "never_too", "reads", "max_delay")
 
 
 def read_signals(top: Section, misspelt: Container[str] = ()) -> Signals:
@@ -36,12 +47,26 @@ def read_signals(top: Section, misspelt: Container[str] = ()) -> Signals:
         top: The file.
         misspelt: Keys that were meant by unknown ones, which have been reported.
     """
-    inner = top.data.get("inner")
-    # Inner signals are refused as a whole, so that their names are no riddle.
-    broken: set[str] = set(inner) if isinstance(inner, dict) else set()
-    inputs = _read_role(top, "input", broken, {}, misspelt)
-    outputs = _read_role(top, "output", broken, {s.name: s for s in inputs}, misspelt)
-    return Signals(tuple(inputs), tuple(outputs), frozenset(broken))
+    broken: set[str] = set()
+    taken: dict[str, Signal] = {}
+    inputs = _read_role(top, "input", broken, taken, misspelt)
+    outputs = _read_role(top, "output", broken, taken, misspelt)
+    n_outputs = sum(s.size for s in outputs)
+    inner = _read_role(top, "inner", broken, taken, misspelt, n_outputs)
+    outputs, read = _read_back(top, inputs, outputs, broken, taken)
+    return Signals(tuple(inputs + read), tuple(outputs), tuple(inner), frozenset(broken))
+
+
+def read_delay(section: Section, key: str) -> Fraction | None:
+    """A time above 0 in ns, as exactly as it is written."""
+    value = section.raw(key)
+    if value is None:
+        return None
+    good = isinstance(value, int | float) and not isinstance(value, bool)
+    if not good or not isfinite(value) or value <= 0 or value > _LONGEST_DELAY:
+        section.wrong(f"a time in ns, above 0 and at most {_LONGEST_DELAY}", key)
+        return None
+    return Fraction(str(value))
 
 
 def _read_role(
@@ -50,17 +75,21 @@ def _read_role(
     broken: set[str],
     taken: dict[str, Signal],
     misspelt: Container[str],
+    first: int = 0,
 ) -> list[Signal]:
-    key = f"{role}s"
-    if key not in top and key in misspelt:
+    """The signals of one section; their names go to `taken` or `broken`."""
+    key = _SECTION[role]
+    if key not in top and (key in misspelt or role == "inner"):
         return []
     section = top.section(
-        key, required=True, hint=f"begin a section [{key}] with lines such as: {_EXAMPLE[role]}"
+        key,
+        required=True,
+        hint=f"begin a section [{key}] with lines such as: {_EXAMPLE.get(role)}",
     )
     if section is None:
         return []
     found: list[Signal] = []
-    first = 0
+    start = first
     for name in section:
         signal = _read_signal(section, role, name, first)
         if signal is None:
@@ -68,54 +97,55 @@ def _read_role(
             continue
         if name in taken:
             broken.add(name)
-            section.error(
-                "NAME-TWICE",
-                f"{name!r} is declared as an input and as an output",
-                section.key_at(name),
-                f"the input is declared at {taken[name].location}",
-            )
+            _report_twice(section, signal, taken[name], section.key_at(name))
             continue
+        taken[name] = signal
         found.append(signal)
         first += signal.size
-    if not section.data:
+    if not section.data and role != "inner":
         section.error(f"NO-{role.upper()}S", f"[{key}] is empty, expected at least one {role}")
-    if first > _MOST[role]:
+    if start <= _MOST[role] < first:
+        bits = "output and inner" if role == "inner" else role
         section.error(
-            f"TOO-MANY-{role.upper()}S",
-            f"{first} {role} bits are declared, at most {_MOST[role]} are possible",
+            "TOO-MANY-OUTPUTS" if role == "inner" else f"TOO-MANY-{role.upper()}S",
+            f"{first} {bits} bits are declared, at most {_MOST[role]} are possible",
         )
     return found
 
 
+def _report_twice(section: Section, signal: Signal, earlier: Signal, at: Location) -> None:
+    first, second = (
+        f"what the output {s.read_from} reads" if s.read_from else s.called
+        for s in (earlier, signal)
+    )
+    section.error(
+        "NAME-TWICE",
+        f"{signal.name!r} is declared as {first} and as {second}",
+        at,
+        f"the {earlier.called.partition(' ')[2]} is declared at {earlier.location}",
+    )
+
+
 def _read_signal(section: Section, role: Role, name: str, first: int) -> Signal | None:
-    if not _NAME.fullmatch(name):
-        section.error(
-            "NAME-SYNTAX",
-            f"{name!r} is not a name: names are made of the letters A to Z and a to z, digits and "
-            "underscores, and do not start with a digit",
-            section.key_at(name),
-        )
-        return None
-    if name in RESERVED:
-        section.error(
-            "NAME-RESERVED",
-            f"{name!r} is a reserved word and cannot name an {role}",
-            section.key_at(name),
-            f"reserved are: {', '.join(RESERVED)}",
-        )
+    if not _check_name(section, name, role, section.key_at(name)):
         return None
     value = section.raw(name)
     active_low = False
     impossible: Literal[0, 1] | None = None
+    max_delay: Fraction | None = None
     bits: tuple[int, int, bool] | None = (0, 0, False)
     refused: tuple[str, ...] = ()
     table = section.section(name) if isinstance(value, dict) else None
     if table is not None:
         refused = refuse_unsupported(table, role)
-        table.unknown_keys((*_KEYS[role], *refused), _MEANT)
-        active_low = table.choice("active", ("high", "low"), default="high") == "low"
+        pins = _refuse_pins(table) if role == "inner" else ()
+        meant = table.unknown_keys((*_KEYS[role], *refused, *pins), _MEANT)
+        if role != "inner":
+            active_low = table.choice("active", ("high", "low"), default="high") == "low"
         if role == "output":
             impossible = table.choice("impossible", (0, 1))
+            max_delay = read_delay(table, "max_delay")
+            _check_enable(table, meant)
         if "bits" in table:
             bits = _read_bits(table, role, "bits")
     else:
@@ -123,9 +153,145 @@ def _read_signal(section: Section, role: Role, name: str, first: int) -> Signal 
     if bits is None:
         return None
     high, low, is_bus = bits
-    at = section.key_at(name)
     return Signal(
-        name, role, first, high, low, is_bus, active_low, impossible, at, deferred=bool(refused)
+        name=name,
+        role=role,
+        first=first,
+        high=high,
+        low=low,
+        is_bus=is_bus,
+        active_low=active_low,
+        impossible=impossible,
+        location=section.key_at(name),
+        deferred=bool(refused),
+        max_delay=max_delay,
+    )
+
+
+def _check_name(section: Section, name: str, role: Role, at: Location) -> bool:
+    if not _NAME.fullmatch(name):
+        section.error(
+            "NAME-SYNTAX",
+            f"{name!r} is not a name: names are made of the letters A to Z and a to z, digits and "
+            "underscores, and do not start with a digit",
+            at,
+        )
+        return False
+    if name in RESERVED:
+        called = "an inner signal" if role == "inner" else f"an {role}"
+        section.error(
+            "NAME-RESERVED",
+            f"{name!r} is a reserved word and cannot name {called}",
+            at,
+            f"reserved are: {', '.join(RESERVED)}",
+        )
+        return False
+    return True
+
+
+def _refuse_pins(table: Section) -> tuple[str, ...]:
+    """Report every key of an inner signal that speaks of a pin, and return these keys."""
+    refused = tuple(key for key in _OF_PINS if key in table)
+    for key in refused:
+        table.error(
+            "INNER-PIN",
+            f"{key!r} in {table.title}: an inner signal has no pin",
+            table.key_at(key),
+            "leave it out, or declare the signal under [outputs]",
+        )
+    return refused
+
+
+def _check_enable(table: Section, meant: Container[str]) -> None:
+    """Report keys that say more about an enable that is not there."""
+    table.flag("never_too")
+    if "enable" in table or "enable" in meant:
+        return
+    for key, why in (
+        ("reads", "a pin that is always driven reads nothing but its own output"),
+        ("never_too", "there is no enable that [never] could hold for"),
+    ):
+        if key in table:
+            table.error(
+                "ENABLE-MISSING",
+                f"{key!r} without 'enable': {why}",
+                table.key_at(key),
+                'add enable = "…", an equation that is 1 while the output drives its pin',
+            )
+
+
+def _read_back(
+    top: Section,
+    inputs: list[Signal],
+    outputs: list[Signal],
+    broken: set[str],
+    taken: dict[str, Signal],
+) -> tuple[list[Signal], list[Signal]]:
+    """The outputs with what their pins are read as, and these inputs."""
+    first = sum(s.size for s in inputs)
+    few = first <= MAX_INPUTS
+    done: list[Signal] = []
+    read: list[Signal] = []
+    for output in outputs:
+        table = _table_of(top, output)
+        signal = None if table is None else _read_input(table, output, first)
+        if table is None or signal is None:
+            done.append(output)
+            continue
+        if signal.name in taken:
+            _report_twice(table, signal, taken[signal.name], signal.location)
+            done.append(output)
+            continue
+        taken[signal.name] = signal
+        done.append(replace(output, reads=signal.name))
+        read.append(signal)
+        first += signal.size
+        if few and first > MAX_INPUTS:
+            few = False
+            table.error(
+                "TOO-MANY-INPUTS",
+                f"with what {output.name} reads there are {first} input bits, at most "
+                f"{MAX_INPUTS} are possible",
+                signal.location,
+            )
+    broken.update(_named_to_read(top) - {s.name for s in read})
+    return done, read
+
+
+def _table_of(top: Section, output: Signal) -> Section | None:
+    """The table of an output, if it is declared by one."""
+    section = top.section("outputs")
+    if section is None or not isinstance(section.raw(output.name), dict):
+        return None
+    return section.section(output.name)
+
+
+def _named_to_read(top: Section) -> set[str]:
+    """Whatever names are given for the levels at pins, so that none is unknown where it is used."""
+    outputs = top.data.get("outputs")
+    tables = outputs.values() if isinstance(outputs, dict) else ()
+    names = (table.get("reads") for table in tables if isinstance(table, dict))
+    return {name for name in names if isinstance(name, str)}
+
+
+def _read_input(table: Section, output: Signal, first: int) -> Signal | None:
+    """The input that an output's table names as the level at its pin."""
+    name = table.text("reads")
+    if name is None:
+        return None
+    at = table.at("reads")
+    if not _check_name(table, name, "input", at) or "enable" not in table:
+        return None
+    return replace(
+        output,
+        name=name,
+        role="input",
+        first=first,
+        impossible=None,
+        location=at,
+        deferred=False,
+        read_from=output.name,
+        max_delay=None,
     )
 
 

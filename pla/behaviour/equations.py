@@ -18,10 +18,10 @@ from pla.numerals import parse_number
 if TYPE_CHECKING:
     from collections.abc import Callable, Iterator
 
-    from pla.behaviour.signals import Field, Role, Signals
+    from pla.behaviour.signals import Field, Signals, Wanted
     from pla.behaviour.values import Masks
 
-__all__ = ["Sets", "check_tree", "evaluate", "granule_points", "named_outputs"]
+__all__ = ["Sets", "check_tree", "evaluate", "granule_points", "named_bits"]
 
 Sets = tuple[Cover, Cover]
 """Single-output covers: where the value is 1, where it is 0."""
@@ -29,25 +29,25 @@ Sets = tuple[Cover, Cover]
 _MOST_CUBES = 1 << 17
 
 
-def check_tree(tree: Node, signals: Signals, role: Role | None = None) -> list[Problem]:
+def check_tree(tree: Node, signals: Signals, wanted: Wanted | None = None) -> list[Problem]:
     """Everything in a tree that cannot be meant, with offsets; in order of the text.
 
     Args:
         tree: The equation.
         signals: What is declared.
-        role: ``input`` if outputs must not be named.
+        wanted: ``input`` if outputs and inner signals must not be named.
     """
     found: list[Problem] = []
-    _check(tree, signals, role, found)
+    _check(tree, signals, wanted, found)
     return sorted(found, key=lambda p: p.offset)
 
 
-def named_outputs(tree: Node, signals: Signals) -> dict[int, int]:
-    """Positions of the outputs that a checked tree names, and the offset of the first naming."""
+def named_bits(tree: Node, signals: Signals) -> dict[int, int]:
+    """Described bits that a checked tree names, by position, and where each is named first."""
     found: dict[int, int] = {}
     for reference in references(tree):
         field = _field(reference, signals, None)
-        if field.role == "output":
+        if not field.is_input:
             for bit in field.bits:
                 if bit is not None:
                     found.setdefault(bit, reference.start)
@@ -72,7 +72,7 @@ def evaluate(tree: Node, signals: Signals, output_sets: Callable[[int], Sets]) -
     Args:
         tree: A tree without problems.
         signals: What is declared.
-        output_sets: The value of an output, by position.
+        output_sets: The value of an output or inner signal, by position.
 
     Raises:
         Problem: If the value needs too many cubes.
@@ -90,14 +90,14 @@ def evaluate(tree: Node, signals: Signals, output_sets: Callable[[int], Sets]) -
     bit = field.bits[0]
     if bit is None:  # pragma: no cover - refused by Signals.select
         return Cover.of(n), Cover.universe(n)
-    if field.role == "output":
+    if not field.is_input:
         return output_sets(bit)
     return Cover.of(n, [Cube(1 << bit, 0)]), Cover.of(n, [Cube(0, 1 << bit)])
 
 
-def _field(reference: Reference, signals: Signals, role: Role | None) -> Field:
+def _field(reference: Reference, signals: Signals, wanted: Wanted | None) -> Field:
     high, low = (None if n is None else _bit_number(n) for n in (reference.high, reference.low))
-    return signals.select(reference.name, high, low, role=role)
+    return signals.select(reference.name, high, low, wanted=wanted)
 
 
 def _bit_number(number: Number) -> int:
@@ -109,10 +109,10 @@ def _bit_number(number: Number) -> int:
         ) from None
 
 
-def _check(tree: Node, signals: Signals, role: Role | None, found: list[Problem]) -> None:
+def _check(tree: Node, signals: Signals, wanted: Wanted | None, found: list[Problem]) -> None:
     if isinstance(tree, Gate):
         for item in tree.items:
-            _check(item, signals, role, found)
+            _check(item, signals, wanted, found)
     elif isinstance(tree, Constant):
         if tree.number.text not in ("0", "1"):
             found.append(
@@ -125,11 +125,11 @@ def _check(tree: Node, signals: Signals, role: Role | None, found: list[Problem]
                 )
             )
     elif isinstance(tree, Comparison):
-        field = _checked_field(tree.reference, signals, role, found)
+        field = _checked_field(tree.reference, signals, wanted, found)
         if field is not None:
             _check_comparison(tree, field, found)
     else:
-        field = _checked_field(tree, signals, role, found)
+        field = _checked_field(tree, signals, wanted, found)
         if field is not None and not field.is_bit:
             found.append(
                 Problem(
@@ -143,10 +143,10 @@ def _check(tree: Node, signals: Signals, role: Role | None, found: list[Problem]
 
 
 def _checked_field(
-    reference: Reference, signals: Signals, role: Role | None, found: list[Problem]
+    reference: Reference, signals: Signals, wanted: Wanted | None, found: list[Problem]
 ) -> Field | None:
     try:
-        return _field(reference, signals, role)
+        return _field(reference, signals, wanted)
     except Problem as problem:
         hint = problem.hint
         if reference.name.lower() in ("and", "or", "xor", "not", "in"):
@@ -223,7 +223,7 @@ def _compare(tree: Comparison, signals: Signals, output_sets: Callable[[int], Se
         outside = span_cubes(field, 0, first - 1) + span_cubes(field, last + 1, top)
     if tree.operator == "!=":
         inside, outside = outside, inside
-    if field.role == "input":
+    if field.is_input:
         n = signals.n_inputs
         return (
             Cover.of(n, (Cube(*masks) for masks in inside)),

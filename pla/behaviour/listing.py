@@ -27,7 +27,7 @@ __all__ = ["Listing", "ListingBuilder", "Row", "Solved", "Values", "resolve"]
 Values = tuple[int, int, int]
 """Masks of the outputs that are 1, 0, and don't care."""
 
-Reason = Literal["never", "others", "x", "dont_care", "elsewhere"]
+Reason = Literal["never", "others", "x", "dont_care", "elsewhere", "disabled"]
 
 _MOST_SHOWN = 10
 _MOST_CUBES = 1 << 18
@@ -254,7 +254,7 @@ def _report_conflicts(
         one, two = listing.rows[first].values, listing.rows[second].values
         differ = next(
             j
-            for j in range(signals.n_outputs)
+            for j in range(len(signals.described_names))
             if any((a ^ b) >> j & 1 for a, b in zip(one, two, strict=True))
         )
         shown = [
@@ -265,8 +265,8 @@ def _report_conflicts(
         source = (earlier.source or "").strip()
         diagnostics.error(
             "ROW-CONFLICT",
-            f"{signals.output_names[differ]!r} gets two values for {example}: {shown[1]} from this "
-            f"{listing.what}, {shown[0]} from the {listing.what} at {earlier}",
+            f"{signals.described_names[differ]!r} gets two values for {example}: {shown[1]} from "
+            f"this {listing.what}, {shown[0]} from the {listing.what} at {earlier}",
             listing.rows[second].place(),
             f"the other is: {source}" if source else None,
         )

@@ -11,7 +11,7 @@ from pla.behaviour.listing import ListingBuilder, Row, resolve
 from pla.behaviour.problem import Problem
 from pla.behaviour.signals import Field
 from pla.behaviour.spans import span_of
-from pla.behaviour.unsupported import refuse_unsupported
+from pla.behaviour.unsupported import MISPLACED, refuse_unsupported
 
 if TYPE_CHECKING:
     from collections.abc import Callable
@@ -37,7 +37,7 @@ def read_minterms(top: Section, name: str, signals: Signals, claims: Claims) -> 
     if section is None:
         return None
     refused = refuse_unsupported(section, "table")
-    section.unknown_keys(("of", "on", "off", "dont_care", "others", *refused))
+    section.unknown_keys(("of", "on", "off", "dont_care", "others", *refused), MISPLACED)
     inputs = _read_of(section, signals)
     others = section.choice("others", tuple(value for _, value in _LISTS))
     if not any(key in section for key, _ in _LISTS):

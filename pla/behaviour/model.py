@@ -144,8 +144,9 @@ class Behaviour:
         warnings: What is doubtful in the design, in order of place.
         inner: Signals without a pin, in order of declaration.
         inner_function: ON-set and OFF-set of these, over the same inputs.
-        named: For each output and inner signal whose description names others, these others
-            (outputs and inner signals, not inputs), in order of declaration. No ring among them.
+        named: For each output and inner signal whose description or enable names others, these
+            others (outputs and inner signals, not inputs), in order of declaration. There is no
+            ring among them: what an enable names in a ring is left out here, and folded in.
         signature: Text for the device's signature fuses; ``None`` if not given.
         max_delay: The longest delay of any output, in ns; ``None`` where nothing is asked.
     """

@@ -35,6 +35,26 @@ def read_places(section: Section | None, signals: Signals) -> dict[str, tuple[Pl
     return found
 
 
+def _refuse_pinless(table: Section, name: str, signals: Signals) -> bool:
+    """Report a signal that has no pin of its own."""
+    signal = signals.by_name[name.partition("[")[0]]
+    if signal.role == "inner":
+        hint = "leave it out, or declare the signal under [outputs]"
+        message = f"{name!r} is an inner signal and has no pin"
+        table.error("PLACE-PINLESS", message, table.key_at(name), hint)
+        return True
+    if signal.read_from is not None:
+        output = name.replace(signal.name, signal.read_from, 1)
+        table.error(
+            "PLACE-PINLESS",
+            f"{name!r} is read at the pin of the output {output} and has no pin of its own",
+            table.key_at(name),
+            f"give the pin to {output}",
+        )
+        return True
+    return False
+
+
 def _read_device(table: Section, signals: Signals) -> tuple[Place, ...]:
     places: list[Place] = []
     pins: dict[int, str] = {}
@@ -54,6 +74,8 @@ def _read_device(table: Section, signals: Signals) -> tuple[Place, ...]:
                 at,
                 f'give each bit a pin: "{bus}[0]" = …',
             )
+            continue
+        if _refuse_pinless(table, name, signals):
             continue
         pin = table.integer(name, low=1)
         if pin is None:

@@ -2,36 +2,45 @@
 
 from __future__ import annotations
 
+from itertools import repeat
 from pathlib import PurePath
 from types import MappingProxyType
 from typing import TYPE_CHECKING
 
+from pla.behaviour.assemble import assemble
+from pla.behaviour.bidirectional import report_holding
 from pla.behaviour.cases import read_cases
 from pla.behaviour.conditions import read_logic, read_never
-from pla.behaviour.declare import read_signals
-from pla.behaviour.description import Claims, Description, solve_all
+from pla.behaviour.declare import read_delay, read_signals
+from pla.behaviour.description import Claims, Description, Solver
+from pla.behaviour.enables import read_enables, solve_enables
 from pla.behaviour.minterms import read_minterms
-from pla.behaviour.model import Behaviour, DontCareSource, Input, Output
+from pla.behaviour.model import Behaviour, Inner, Input, Output
+from pla.behaviour.naming import named_by
 from pla.behaviour.places import read_places
 from pla.behaviour.unsupported import refuse_unsupported
 from pla.errors import Diagnostics, by_place
 from pla.logic import algebra
-from pla.logic.cubes import Cover
-from pla.logic.function import Function
 from pla.tomlfile import Section, TomlFile, read_toml
 
 if TYPE_CHECKING:
-    from pla.behaviour.listing import Reason, Solved
+    from collections.abc import Mapping
+
+    from pla.behaviour.model import Enabling
     from pla.behaviour.overlaps import AddressMap
     from pla.behaviour.signals import Signals
+    from pla.logic.function import Function
 
 __all__ = ["behaviour_of", "read_behaviour"]
 
 _KEYS = (
     "name",
     "revision",
+    "signature",
+    "max_delay",
     "inputs",
     "outputs",
+    "inner",
     "never",
     "cases",
     "minterms",
@@ -39,7 +48,6 @@ _KEYS = (
     "address_map",
     "place",
 )
-_REASONS: tuple[Reason, ...] = ("never", "others", "x", "dont_care", "elsewhere")
 
 
 def read_behaviour(path: str) -> Behaviour:
@@ -75,8 +83,11 @@ def behaviour_of(file: TomlFile) -> Behaviour:
     meant = top.unknown_keys((*_KEYS, *refused))
     name = _title(top, "name", PurePath(file.file).stem)
     revision = _title(top, "revision", "")
+    signature = _signature(top)
+    max_delay = read_delay(top, "max_delay")
     signals = read_signals(top, meant)
-    if not all(isinstance(file.data.get(key), dict) for key in ("inputs", "outputs")):
+    sections = [file.data.get("inputs"), file.data.get("outputs"), file.data.get("inner", {})]
+    if "inner" in meant or not all(isinstance(section, dict) for section in sections):
         # Every name would be unknown: it is enough to say why.
         diagnostics.stop_on_error()
     claims = Claims(signals, diagnostics)
@@ -84,31 +95,44 @@ def behaviour_of(file: TomlFile) -> Behaviour:
     claims.incomplete = bool(refused) or _misses_descriptions(top)
     maps: list[AddressMap] = []
     descriptions = _read_descriptions(top, signals, claims, maps)
+    enables = read_enables(top, signals)
     places = read_places(top.section("place"), signals)
     _report_undescribed(signals, claims, diagnostics)
-    solved: list[Solved] = []
+    enablings: dict[str, Enabling] = {}
+    whole = None
     if never is not None and "never" not in meant and not signals.too_many:
-        solved = solve_all(_supported(descriptions, signals), never, signals, diagnostics)
+        solver = Solver(_supported(descriptions, signals), never, signals, diagnostics)
+        solved = solver.run()
+        enablings = solve_enables(enables, never, solver, signals, diagnostics)
+        whole = assemble(solved, enablings, never, signals)
+        report_holding(whole.outputs, enablings, signals, claims, diagnostics)
         if maps:
             from pla.behaviour.overlaps import warn_of_contention  # noqa: PLC0415 - likewise
 
             warn_of_contention(maps, never, signals, diagnostics)
     diagnostics.stop_on_error()
-    if never is None:  # pragma: no cover - there was an error
+    if never is None or whole is None:  # pragma: no cover - there was an error
         raise AssertionError
-    function = _function(solved, never, signals)
-    _warn_of_idle_inputs(function, signals, diagnostics)
+    _warn_of_idle_inputs(whole.outputs, enablings, signals, diagnostics)
+    needs = [(d.outputs, tuple(d.needs)) for d in descriptions]
+    enable_needs = [(tuple(e.signal.positions), tuple(e.condition.needs())) for e in enables]
+    _warn_of_idle_inner([*needs, *enable_needs], signals, diagnostics)
     return Behaviour(
         name=name,
         revision=revision,
         file=file.file,
         inputs=_inputs(signals),
-        outputs=_outputs(signals, claims),
-        function=function,
+        outputs=_outputs(signals, claims, enablings),
+        function=whole.outputs,
         never=never,
-        dont_cares=_sources(solved, never, signals),
+        dont_cares=whole.dont_cares,
         places=MappingProxyType(places),
         warnings=tuple(sorted(diagnostics.warnings, key=by_place)),
+        inner=_inner(signals, claims),
+        inner_function=whole.inner,
+        named=MappingProxyType(named_by(needs, enable_needs, signals)),
+        signature=signature,
+        max_delay=max_delay,
     )
 
 
@@ -140,6 +164,25 @@ def _title(top: Section, key: str, default: str) -> str:
     return text
 
 
+def _signature(top: Section) -> str | None:
+    text = top.text("signature")
+    if text is None:
+        return None
+    for offset, sign in enumerate(text):
+        if not (sign.isascii() and sign.isprintable()):
+            top.error(
+                "SIGNATURE",
+                f"{sign!r} in 'signature' cannot stand in a device, expected one line of "
+                "printable ASCII characters",
+                top.inside("signature", offset),
+            )
+            return None
+    if not text.strip():
+        top.error("SIGNATURE", "'signature' is empty, expected text", top.at("signature"))
+        return None
+    return text
+
+
 def _read_descriptions(
     top: Section, signals: Signals, claims: Claims, maps: list[AddressMap]
 ) -> list[Description]:
@@ -161,50 +204,30 @@ def _read_descriptions(
 def _report_undescribed(signals: Signals, claims: Claims, diagnostics: Diagnostics) -> None:
     if claims.incomplete:
         return  # the errors about that section say enough
-    for signal in signals.outputs:
-        bits = range(signal.first, signal.first + signal.size)
-        missing = [bit for bit in bits if bit not in claims.places]
+    for signal in signals.described:
+        missing = [bit for bit in signal.positions if bit not in claims.places]
         if not missing:
             continue
-        named = ", ".join(signals.output_names[bit] for bit in missing)
+        named = ", ".join(signals.described_names[bit] for bit in missing)
+        name = signal.name if len(missing) == signal.size else named
         diagnostics.error(
             "NOT-DESCRIBED",
-            f"nothing says what the output {signal.name if len(missing) == len(bits) else named} "
-            "does",
+            f"nothing says what the {signal.called.partition(' ')[2]} {name} does",
             signal.location,
             "describe it in [[cases]], [minterms], [logic] or [[address_map]]",
         )
 
 
-def _function(solved: list[Solved], never: Cover, signals: Signals) -> Function:
-    n = signals.n_inputs
-    on = Cover.joined(n, (s.on for s in solved))
-    off = Cover.joined(n, (s.off for s in solved))
-    on += never.feeding(_impossible(signals, 1)).fed()
-    off += never.feeding(_impossible(signals, 0)).fed()
-    return Function(n, signals.n_outputs, on.merged(), off.merged())
-
-
-def _impossible(signals: Signals, value: int | None) -> int:
-    """The outputs with this value of `impossible`, as a mask."""
-    return sum(((1 << s.size) - 1) << s.first for s in signals.outputs if s.impossible == value)
-
-
-def _sources(solved: list[Solved], never: Cover, signals: Signals) -> tuple[DontCareSource, ...]:
-    free = never.feeding(_impossible(signals, None)).fed()
-    parts = [("never", free), *(part for s in solved for part in s.open)]
-    sources = []
-    for reason in _REASONS:
-        cover = Cover.joined(signals.n_inputs, (c for r, c in parts if r == reason)).merged()
-        if len(cover):
-            sources.append(DontCareSource(reason, cover))
-    return tuple(sources)
-
-
-def _warn_of_idle_inputs(function: Function, signals: Signals, diagnostics: Diagnostics) -> None:
-    used = algebra.support(function.on, function.off)
+def _warn_of_idle_inputs(
+    function: Function,
+    enables: Mapping[str, Enabling],
+    signals: Signals,
+    diagnostics: Diagnostics,
+) -> None:
+    covers = [cover for enable in enables.values() for cover in (enable.on, enable.off)]
+    used = algebra.support(function.on, function.off, *covers)
     for signal in signals.inputs:
-        bits = range(signal.first, signal.first + signal.size)
+        bits = signal.positions
         idle = [bit for bit in bits if not used >> bit & 1]
         if not idle:
             continue
@@ -216,18 +239,60 @@ def _warn_of_idle_inputs(function: Function, signals: Signals, diagnostics: Diag
         )
 
 
+def _warn_of_idle_inner(
+    needs: list[tuple[tuple[int, ...], tuple[int, ...]]], signals: Signals, diagnostics: Diagnostics
+) -> None:
+    named = {bit for _, bits in needs for bit in bits}
+    for signal in signals.inner:
+        idle = [bit for bit in signal.positions if bit not in named]
+        if not idle:
+            continue
+        names = ", ".join(signals.described_names[bit] for bit in idle)
+        diagnostics.warning(
+            "INNER-UNUSED",
+            f"nothing names the inner signal {signal.name if len(idle) == signal.size else names}",
+            signal.location,
+        )
+
+
 def _inputs(signals: Signals) -> tuple[Input, ...]:
-    return tuple(
-        Input(name, s.active_low, s.location) for s in signals.inputs for name in s.bit_names()
-    )
+    found = []
+    for signal in signals.inputs:
+        output = signals.by_name[signal.read_from] if signal.read_from else None
+        pins = output.bit_names() if output else repeat(None)
+        for name, pin in zip(signal.bit_names(), pins, strict=False):
+            found.append(Input(name, signal.active_low, signal.location, pin))
+    return tuple(found)
 
 
-def _outputs(signals: Signals, claims: Claims) -> tuple[Output, ...]:
+def _outputs(
+    signals: Signals, claims: Claims, enables: Mapping[str, Enabling]
+) -> tuple[Output, ...]:
     found = []
     for signal in signals.outputs:
-        for bit, name in enumerate(signal.bit_names(), signal.first):
+        read = signals.by_name[signal.reads].bit_names() if signal.reads else repeat(None)
+        bits = zip(signal.positions, signal.bit_names(), read, strict=False)
+        for bit, name, reads in bits:
             described, form = claims.places[bit]
             found.append(
-                Output(name, signal.active_low, signal.impossible, signal.location, described, form)
+                Output(
+                    name=name,
+                    active_low=signal.active_low,
+                    impossible=signal.impossible,
+                    location=signal.location,
+                    described=described,
+                    form=form,
+                    enable=enables.get(signal.name),
+                    reads=reads,
+                    max_delay=signal.max_delay,
+                )
             )
     return tuple(found)
+
+
+def _inner(signals: Signals, claims: Claims) -> tuple[Inner, ...]:
+    return tuple(
+        Inner(name, signal.location, *claims.places[bit])
+        for signal in signals.inner
+        for bit, name in zip(signal.positions, signal.bit_names(), strict=True)
+    )

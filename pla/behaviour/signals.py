@@ -1,4 +1,4 @@
-"""The declared inputs and outputs, and what names stand for."""
+"""The declared inputs, outputs and inner signals, and what names stand for."""
 
 from __future__ import annotations
 
@@ -12,13 +12,17 @@ from pla.logic.cubes import MAX_INPUTS, MAX_OUTPUTS
 from pla.wording import did_you_mean
 
 if TYPE_CHECKING:
-    from collections.abc import Iterable, Iterator
+    from collections.abc import Iterator
+    from fractions import Fraction
 
     from pla.errors import Location
 
-__all__ = ["RESERVED", "Field", "Role", "Signal", "Signals", "split_name"]
+__all__ = ["RESERVED", "Field", "Role", "Signal", "Signals", "Wanted", "split_name"]
 
-Role = Literal["input", "output"]
+Role = Literal["input", "output", "inner"]
+
+Wanted = Literal["input", "output"]
+"""What a name is wanted for: to be looked at, or to be described, as inner signals are, too."""
 
 RESERVED = ("in", "not", "and", "or", "xor", "others")
 
@@ -26,14 +30,18 @@ _BIT = r"(0|[1-9][0-9]{0,5})"
 _NAME = re.compile(rf"([A-Za-z_][A-Za-z0-9_]*)(?:\[{_BIT}(?::{_BIT})?\])?")
 
 
+_CALLED = {"input": "an input", "output": "an output", "inner": "an inner signal"}
+
+
 @dataclass(frozen=True, slots=True)
 class Signal:
-    """An input or output as declared: a single bit or a bus.
+    """An input, output or inner signal as declared: a single bit or a bus.
 
     Attributes:
         name: Without brackets.
-        role: Input or output.
-        first: Position of its highest bit among all bits of its role.
+        role: Which of these.
+        first: Position of its highest bit among all input bits, or among all described bits: those
+            of the outputs and behind them those of inner signals.
         high: Highest bit; 0 for a single bit.
         low: Lowest bit that reaches the device; bits below it read 0.
         is_bus: Whether its bits have numbers.
@@ -41,6 +49,9 @@ class Signal:
         impossible: Value demanded of an output for impossible inputs.
         location: Where it is declared.
         deferred: It asks for what is not supported yet, which has been reported.
+        read_from: For an input that is the level at an output's pin, the output.
+        reads: For such an output, the input.
+        max_delay: The longest delay of an output, in ns.
     """
 
     name: str
@@ -53,11 +64,24 @@ class Signal:
     impossible: Literal[0, 1] | None
     location: Location
     deferred: bool = False
+    read_from: str | None = None
+    reads: str | None = None
+    max_delay: Fraction | None = None
+
+    @property
+    def called(self) -> str:
+        """Its role in words: ``an input``."""
+        return _CALLED[self.role]
 
     @property
     def size(self) -> int:
         """How many bits reach the device."""
         return self.high - self.low + 1
+
+    @property
+    def positions(self) -> range:
+        """Of its bits, from the highest down."""
+        return range(self.first, self.first + self.size)
 
     @property
     def span(self) -> str:
@@ -72,7 +96,7 @@ class Signal:
         return (self.bit_name(bit) for bit in range(self.high, self.low - 1, -1))
 
     def index(self, bit: int) -> int | None:
-        """Position among all bits of its role; ``None`` if the bit does not reach the device."""
+        """Position, see `first`; ``None`` if the bit does not reach the device."""
         return None if bit < self.low else self.first + self.high - bit
 
 
@@ -82,9 +106,9 @@ class Field:
 
     Attributes:
         name: As written.
-        role: Whether they are inputs or outputs.
-        bits: For each bit, most significant first, its position among all bits of its role;
-            ``None`` for a bit that does not reach the device and reads 0.
+        role: What they are.
+        bits: For each bit, most significant first, its position (see `Signal.first`); ``None`` for
+            a bit that does not reach the device and reads 0.
         is_bit: It was written as one bit, not as a bus or part of one.
     """
 
@@ -92,6 +116,11 @@ class Field:
     role: Role
     bits: tuple[int | None, ...]
     is_bit: bool
+
+    @property
+    def is_input(self) -> bool:
+        """Whether they are looked at; otherwise they are described."""
+        return self.role == "input"
 
     @property
     def width(self) -> int:
@@ -119,29 +148,37 @@ def split_name(text: str) -> tuple[str, int | None, int | None] | None:
 
 @dataclass(frozen=True)
 class Signals:
-    """All inputs and outputs of a design.
+    """All signals of a design.
 
     Attributes:
-        inputs: In order of declaration.
+        inputs: In order of declaration, behind them those that are read from bidirectional pins.
         outputs: In order of declaration.
+        inner: In order of declaration.
         broken: Names whose declaration is wrong.
     """
 
     inputs: tuple[Signal, ...]
     outputs: tuple[Signal, ...]
+    inner: tuple[Signal, ...] = ()
     broken: frozenset[str] = field(default_factory=frozenset)
 
     @cached_property
     def by_name(self) -> dict[str, Signal]:
-        return {s.name: s for s in (*self.outputs, *self.inputs)}
+        return {s.name: s for s in (*self.described, *self.inputs)}
+
+    @property
+    def described(self) -> tuple[Signal, ...]:
+        """What descriptions are about: outputs and inner signals."""
+        return self.outputs + self.inner
 
     @cached_property
     def input_names(self) -> tuple[str, ...]:
         return tuple(name for s in self.inputs for name in s.bit_names())
 
     @cached_property
-    def output_names(self) -> tuple[str, ...]:
-        return tuple(name for s in self.outputs for name in s.bit_names())
+    def described_names(self) -> tuple[str, ...]:
+        """Bits of the outputs, and behind them those of inner signals."""
+        return tuple(name for s in self.described for name in s.bit_names())
 
     @property
     def n_inputs(self) -> int:
@@ -149,27 +186,31 @@ class Signals:
 
     @property
     def n_outputs(self) -> int:
-        return len(self.output_names)
+        return sum(s.size for s in self.outputs)
+
+    @property
+    def n_inner(self) -> int:
+        return sum(s.size for s in self.inner)
 
     @property
     def too_many(self) -> bool:
         """Whether there are more bits than covers can hold; the declarations have that error."""
-        return self.n_inputs > MAX_INPUTS or self.n_outputs > MAX_OUTPUTS
+        return self.n_inputs > MAX_INPUTS or len(self.described_names) > MAX_OUTPUTS
 
-    def names(self, role: Role | None = None) -> list[str]:
+    def names(self, wanted: Wanted | None = None) -> list[str]:
         """Names to choose from, for messages."""
-        listed: Iterable[Signal] = (*self.inputs, *self.outputs)
-        return [s.name for s in listed if role is None or s.role == role]
+        inputs = () if wanted == "output" else self.inputs
+        return [s.name for s in (*inputs, *(() if wanted == "input" else self.described))]
 
-    def find(self, text: str, role: Role | None = None) -> Field:
+    def find(self, text: str, wanted: Wanted | None = None) -> Field:
         """What a written name stands for.
 
         Args:
             text: ``bus``, ``bus[i]``, ``bus[h:l]`` or the name of a single bit.
-            role: Which role is wanted; ``None`` for either.
+            wanted: What for; ``None`` for either.
 
         Raises:
-            Problem: If it stands for nothing, or for the other role.
+            Problem: If it stands for nothing, or for something else.
         """
         parts = split_name(text)
         if parts is None:
@@ -178,26 +219,25 @@ class Signals:
                 f"{text!r} is not a name, expected name, bus[bit] or bus[high:low]",
                 "names are made of the letters A to Z and a to z, digits and underscores",
             )
-        return self.select(*parts, role=role)
+        return self.select(*parts, wanted=wanted)
 
     def select(
-        self, name: str, high: int | None, low: int | None, *, role: Role | None = None
+        self, name: str, high: int | None, low: int | None, *, wanted: Wanted | None = None
     ) -> Field:
         """The same from a name and bit numbers; see `find`."""
         signal = self.by_name.get(name)
         if signal is None:
-            wanted = role or "input or output"
             raise Problem(
                 "NAME-UNKNOWN",
-                f"there is no {wanted} {name!r}",
-                did_you_mean(name, self.names(role)),
+                f"there is no {self._called(wanted)} {name!r}",
+                did_you_mean(name, self.names(wanted)),
                 known=name in self.broken,
             )
-        if role is not None and signal.role != role:
+        if wanted is not None and (signal.role == "input") != (wanted == "input"):
             raise Problem(
                 "NAME-ROLE",
-                f"{name!r} is an {signal.role}, expected an {role}",
-                did_you_mean(name, self.names(role)),
+                f"{name!r} is {signal.called}, expected an {self._called(wanted)}",
+                did_you_mean(name, self.names(wanted)),
                 known=name in self.broken,
             )
         if high is None:
@@ -229,6 +269,13 @@ class Signals:
                 f"{text!r}: only bits {signal.high} down to {signal.low} reach the device",
             )
         return self._field(text, signal, high, high if low is None else low, is_bit=low is None)
+
+    def _called(self, wanted: Wanted | None) -> str:
+        """What there may be, in words: ``input or output``."""
+        words: list[str] = [wanted] if wanted else ["input", "output"]
+        if self.inner and wanted != "input":
+            words.append("inner signal")
+        return " or ".join(filter(None, (", ".join(words[:-1]), words[-1])))
 
     @staticmethod
     def _field(text: str, signal: Signal, high: int, low: int, *, is_bit: bool) -> Field:

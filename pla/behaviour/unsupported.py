@@ -1,4 +1,4 @@
-"""Parts of the design file that the program does not read yet: each is refused by name."""
+"""Parts of the design file that are not read, or not here: each is refused by name."""
 
 from __future__ import annotations
 
@@ -7,13 +7,13 @@ from typing import TYPE_CHECKING
 if TYPE_CHECKING:
     from pla.tomlfile import Section
 
-__all__ = ["refuse_unsupported"]
+__all__ = ["MISPLACED", "refuse_unsupported"]
+
+MISPLACED = {"never_too": "it stands in [outputs], in the table of an output with an enable"}
+"""For keys of descriptions that belong elsewhere, the hint."""
 
 _NOT_YET = {
-    "file": {
-        "inner": "inner signals",
-        "state_table": "state tables",
-    },
+    "file": {"state_table": "state tables"},
     "input": {"asynchronous": "asynchronous inputs"},
     "output": {
         "register": "registered outputs",
@@ -21,12 +21,19 @@ _NOT_YET = {
         "reset": "registered outputs",
         "preset": "registered outputs",
         "start": "registered outputs",
-        "enable": "three-state outputs",
         "glitch_free": "glitch-free outputs",
-        "never_too": "enables, clocks, resets and presets",
         "keep": "registered outputs",
     },
-    "table": {"keep": "registered outputs", "never_too": "enables, clocks, resets and presets"},
+    "inner": {
+        "register": "registered inner signals",
+        "clock": "registered inner signals",
+        "reset": "registered inner signals",
+        "preset": "registered inner signals",
+        "start": "registered inner signals",
+        "glitch_free": "glitch-free inner signals",
+        "keep": "registered inner signals",
+    },
+    "table": {"keep": "registered outputs"},
 }
 
 
@@ -35,7 +42,7 @@ def refuse_unsupported(section: Section, kind: str) -> tuple[str, ...]:
 
     Args:
         section: Where to look.
-        kind: ``file``, ``input``, ``output`` or ``table``.
+        kind: ``file``, ``input``, ``output``, ``inner`` or ``table``.
     """
     refused = tuple(key for key in _NOT_YET[kind] if key in section)
     for key in refused:
@@ -43,6 +50,6 @@ def refuse_unsupported(section: Section, kind: str) -> tuple[str, ...]:
             "NOT-SUPPORTED-YET",
             f"{key!r}: {_NOT_YET[kind][key]} are not supported yet",
             section.key_at(key),
-            "this version plans combinational outputs on a shared OR array",
+            "this version plans combinational outputs",
         )
     return refused

@@ -79,7 +79,7 @@ BAD = [
     ),
     pytest.param(
         lamp("start") + "[inner]\narmed = 1\n",
-        (14, 2, "NOT-SUPPORTED-YET", "'inner': inner signals are not supported yet"),
+        (15, 1, "NOT-DESCRIBED", "nothing says what the inner signal armed does"),
         id="inner",
     ),
     pytest.param(
@@ -167,7 +167,7 @@ BAD = [
             (4, 7, "NOT-SUPPORTED-YET", f"{key!r}: "),
             id=f"output-{key}",
         )
-        for key in ("register", "clock", "reset", "preset", "start", "enable", "glitch_free")
+        for key in ("register", "clock", "reset", "preset", "start", "glitch_free")
     ),
     pytest.param(
         "[inputs]\na = 1\n[outputs]\nf = '7:4'\n[logic]\nf = 'a'",
@@ -847,16 +847,16 @@ ALL_ROWS = ROWS.replace("1 - | 0", "1 - | 0\nothers | x")
             id="one-bracket",
         ),
         pytest.param(
-            SMALL + "[inner]\narmed = 1\n[logic]\nf = 'armed'\narmed = 'low'\n",
-            "6:2 NOT-SUPPORTED-YET 'inner': inner signals are not supported yet",
-            "this version plans combinational outputs on a shared OR array",
-            id="inner",
+            SMALL + "[iner]\narmed = 1\n[logic]\nf = 'armed'\narmed = 'low'\n",
+            "6:2 KEY-UNKNOWN unknown key 'iner' in the file",
+            "did you mean 'inner'?",
+            id="inner-misspelt",
         ),
         pytest.param(
             SMALL.replace("f = 1", "f = { register = 'D' }\ng = 1")
             + "[logic]\nf = 'f + low'\ng = 'f high'\n",
             "5:7 NOT-SUPPORTED-YET 'register': registered outputs are not supported yet",
-            "this version plans combinational outputs on a shared OR array",
+            "this version plans combinational outputs",
             id="register-fed-back",
         ),
         pytest.param(

@@ -1,0 +1,123 @@
+"""Outputs that would hold themselves through what is read at their own pins."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from pla.logic import algebra
+from pla.logic.cubes import Cover
+
+if TYPE_CHECKING:
+    from collections.abc import Iterator, Mapping
+
+    from pla.behaviour.description import Claims
+    from pla.behaviour.model import Enabling
+    from pla.behaviour.signals import Signals
+    from pla.errors import Diagnostics, Location
+    from pla.logic.function import Function
+
+__all__ = ["report_holding"]
+
+
+@dataclass(frozen=True, slots=True)
+class _Holding:
+    """A bit whose value or enable changes with the level at its own pin.
+
+    Attributes:
+        what: ``value`` or ``enable``.
+        output: The bit's name.
+        reads: The name of what is read at its pin.
+        example: An input combination at which it does, as far as it matters: point and mask.
+        at: Where that is described.
+    """
+
+    what: str
+    output: str
+    reads: str
+    example: tuple[int, int]
+    at: Location
+
+
+def report_holding(
+    function: Function,
+    enables: Mapping[str, Enabling],
+    signals: Signals,
+    claims: Claims,
+    diagnostics: Diagnostics,
+) -> None:
+    """Report every bidirectional bit whose value or enable depends on its own pin.
+
+    Args:
+        function: The outputs, which are free while they do not drive their pins.
+        enables: By the name of the output.
+        signals: What is declared.
+        claims: Where each output is described.
+        diagnostics: Takes one error for the bits that are described at one place.
+    """
+    groups: dict[tuple[str, Location], list[_Holding]] = {}
+    for holding in _holding(function, enables, signals, claims):
+        groups.setdefault((holding.what, holding.at), []).append(holding)
+    for group in groups.values():
+        first = group[0]
+        bits = ", ".join(holding.output for holding in group)
+        read = ", ".join(holding.reads for holding in group)
+        its = "its" if len(group) == 1 else "their"
+        diagnostics.error(
+            "HOLDS-ITSELF",
+            f"the {first.what} of {bits} depends on {read}, the level at {its} own pin, for "
+            f"example at {signals.show_point(*first.example)}: driven, the pin would hold itself "
+            "or swing",
+            first.at,
+            "an output may depend on what other pins read, and on its own pin only while it does "
+            "not drive it",
+        )
+
+
+def _holding(
+    function: Function, enables: Mapping[str, Enabling], signals: Signals, claims: Claims
+) -> Iterator[_Holding]:
+    for signal in signals.outputs:
+        enable = enables.get(signal.name)
+        if enable is None or signal.reads is None:
+            continue
+        reads = signals.by_name[signal.reads]
+        names = zip(signal.positions, signal.bit_names(), strict=True)
+        read = zip(reads.positions, reads.bit_names(), strict=True)
+        for (bit, output), (position, pin) in zip(names, read, strict=True):
+            sets = {
+                "value": (function.on.of_output(bit), function.off.of_output(bit)),
+                "enable": (enable.on, enable.off),
+            }
+            for what, (on, off) in sets.items():
+                example = _change(on, off, position)
+                if example is None:
+                    continue
+                at = enable.location
+                if what == "value":
+                    if bit not in claims.places:  # pragma: no cover - then it has no value
+                        continue
+                    at = claims.places[bit][0]
+                yield _Holding(what, output, pin, example, at)
+
+
+def _change(on: Cover, off: Cover, position: int) -> tuple[int, int] | None:
+    """A combination of the other inputs at which one input alone turns 1 into 0: point and mask."""
+    for value in (0, 1):
+        ones, zeros = _cofactor(on, position, value), _cofactor(off, position, 1 - value)
+        found = algebra.find_common(ones, zeros)
+        if found is not None:
+            one, zero = list(ones)[found[0]], list(zeros)[found[1]]
+            point = one.ones | zero.ones
+            return point, point | one.zeros | zero.zeros
+    return None
+
+
+def _cofactor(cover: Cover, position: int, value: int) -> Cover:
+    """The cover as a function of the other inputs while one input has this value."""
+    bit = np.uint64(1 << position)
+    other = cover.zeros if value else cover.ones
+    held = cover.take(other & bit == 0)
+    return Cover(cover.n_inputs, held.ones & ~bit, held.zeros & ~bit, held.outputs)
