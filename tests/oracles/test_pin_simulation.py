@@ -97,13 +97,13 @@ def test_own_or_gates_and_enable_rows(rows, four, five):
     ],
 )
 def test_a_pin_driven_from_outside(outside, four, five):
-    fuses = " ".join(["110111", "011111", DEAD, "111101", DEAD])
+    fuses = f"110111 011111 {DEAD} 111101 {DEAD}"
     assert run(OWN, fuses, [1, 2], {4: outside}) == {4: four, 5: five}
 
 
 def test_an_input_that_nobody_drives():
     # Term 1 is 1·2, term 3 is 1: pin 2 floats.
-    fuses = " ".join(["111111", "010111", DEAD, "011111", DEAD])
+    fuses = f"111111 010111 {DEAD} 011111 {DEAD}"
     assert run(OWN, fuses, [1]) == {4: "1?", 5: "10"}
 
 
