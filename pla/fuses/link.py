@@ -4,61 +4,108 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
+from pla.errors import Diagnostic, InternalError
+from pla.fuses.fillings import dead_row, live_row, unused_enable_row, unused_row
 from pla.fuses.fusemap import FuseMap
+from pla.fuses.signature import encode_signature
 
 if TYPE_CHECKING:
     from collections.abc import Iterator
 
-    from pla.device.model import Device
+    from pla.device.model import Mode
     from pla.fitting.model import Plan
     from pla.logic.cubes import Cube
 
-__all__ = ["lines_of", "link"]
+__all__ = ["columns_of", "link"]
 
 
 def link(plan: Plan) -> FuseMap:
-    """The links of a plan; whatever the plan does not use is left as the device file says."""
-    device = plan.device
-    states: dict[int, int] = {}
-    for row, cube in zip(plan.rows, plan.minimum.cover, strict=True):
-        states.update(_used_row(plan, row, cube))
-    if device.links.unused_term == "dead":
-        for row in set(range(device.terms)) - set(plan.rows):
-            states.update(_dead_row(device, row))
-    mode_of = {output.pin: output.mode for output in plan.outputs}
-    for cell in device.cells:
-        mode = mode_of.get(cell.pin) or device.idle_mode(cell)
-        states.update(zip(cell.links, map(int, mode.set), strict=True))
-    return FuseMap.filled(device.fuses, device.links.blank).changed(states)
+    """The links of a plan; whatever the plan does not use is left as the device file says.
 
-
-def lines_of(plan: Plan, cube: Cube) -> frozenset[tuple[int, bool]]:
-    """The lines (pin, complement) that a term connects.
-
-    The literal of an active-low input is true while its pin is low: the complement line.
+    Raises:
+        InternalError: If the plan asks for a line or a signature that the device does not have.
     """
-    return frozenset(
-        (placed.pin, placed.active_low != complement)
-        for placed in plan.inputs
-        for complement, literals in ((False, cube.ones), (True, cube.zeros))
-        if placed.pin is not None and literals >> placed.index & 1
-    )
-
-
-def _used_row(plan: Plan, row: int, cube: Cube) -> Iterator[tuple[int, int]]:
     device = plan.device
-    connected = device.links.connected
-    wanted = lines_of(plan, cube)
-    for column, line in enumerate(device.and_array.columns):
-        if line is not None:
-            joined = (line.pin, line.complement) in wanted
-            yield device.and_array.fuse(row, column), connected if joined else 1 - connected
-    fed = {output.pin for output in plan.outputs if cube.outputs >> output.index & 1}
-    for column, pin in enumerate(device.or_array.pins):
-        yield device.or_array.fuse(row, column), connected if pin in fed else 1 - connected
+    links: dict[int, int] = {**dict(device.mode_fuses), **dict(_signature(plan))}
+    done: set[int] = set()
+    for row, cube in zip(plan.rows, plan.minimum.cover, strict=True):
+        links.update(live_row(device, row, columns_of(plan, cube)))
+        links.update(_or_links(plan, row, cube))
+        done.add(row)
+    modes = _modes(plan)
+    for row, filling in _enable_rows(plan, modes):
+        links.update(filling)
+        done.add(row)
+    summed = {row for output in plan.outputs for row in output.mode.terms}
+    for row in range(device.terms):
+        if row not in done:
+            links.update(unused_row(device, row, summed=row in summed))
+    for cell in device.cells:
+        links.update(zip(cell.links, map(int, modes[cell.key].set), strict=True))
+    return FuseMap.filled(device.fuses, device.links.blank).changed(links)
 
 
-def _dead_row(device: Device, row: int) -> Iterator[tuple[int, int]]:
-    for column, line in enumerate(device.and_array.columns):
-        if line is not None:
-            yield device.and_array.fuse(row, column), device.links.connected
+def columns_of(plan: Plan, cube: Cube) -> frozenset[int]:
+    """The columns of the AND array that a term connects.
+
+    Raises:
+        InternalError: If a literal has no column.
+    """
+    found = set()
+    for placed in plan.inputs:
+        for literals, column in zip((cube.ones, cube.zeros), placed.columns, strict=True):
+            if not literals >> placed.index & 1:
+                continue
+            if column is None:
+                message = f"{placed.name} has no line for a literal that a term has"
+                raise InternalError([Diagnostic("NO-LINE", message)])
+            found.add(column)
+    return frozenset(found)
+
+
+def _modes(plan: Plan) -> dict[int | str, Mode]:
+    cells = plan.device.cells
+    return {c.key: plan.modes.get(c.key) or plan.device.idle_mode(c) for c in cells}
+
+
+def _or_links(plan: Plan, row: int, cube: Cube) -> Iterator[tuple[int, int]]:
+    """Links of a shared row to all sums; a row of a cell's own has none."""
+    array, connected = plan.device.or_array, plan.device.links.connected
+    if array is None or row not in array.terms:
+        return
+    fed = {output.cell.key for output in plan.outputs if cube.outputs >> output.index & 1}
+    at = array.terms.index(row)
+    for column, key in enumerate(array.sums):
+        yield array.fuse(at, column), connected if key in fed else 1 - connected
+
+
+def _enable_rows(
+    plan: Plan, modes: dict[int | str, Mode]
+) -> Iterator[tuple[int, Iterator[tuple[int, int]]]]:
+    """The enable row of each cell that has one as it is set, and its links.
+
+    An output without an enable of its own always drives. The pin of a cell that holds an inner
+    signal or serves as an input is off.
+    """
+    device = plan.device
+    output_of = {output.cell.key: output for output in plan.outputs}
+    for cell in device.cells:
+        row = modes[cell.key].enable.row
+        if row is None:
+            continue
+        output = output_of.get(cell.key)
+        if output is not None and output.pin is not None:
+            enable = output.enable
+            wanted = frozenset() if enable is None else columns_of(plan, enable.cube)
+            yield row, live_row(device, row, wanted)
+        elif output is not None or cell.key in plan.input_cells:
+            yield row, dead_row(device, row)
+        else:
+            yield row, unused_enable_row(device, row)
+
+
+def _signature(plan: Plan) -> Iterator[tuple[int, int]]:
+    try:
+        yield from encode_signature(plan.device, plan.design.signature or "")
+    except ValueError as problem:
+        raise InternalError([Diagnostic("SIGNATURE", str(problem))]) from problem

@@ -7,7 +7,7 @@ from pathlib import Path
 from typing import TYPE_CHECKING
 
 from pla import __version__
-from pla.errors import Diagnostic, InternalError
+from pla.errors import Diagnostic, InternalError, RefusalError
 from pla.fuses.jesd3 import read_fuse_file, write_fuse_file
 from pla.fuses.link import link
 from pla.fuses.proof import prove
@@ -18,7 +18,7 @@ if TYPE_CHECKING:
     from pla.behaviour.model import Behaviour
     from pla.fitting.model import Plan
     from pla.fuses.fusemap import FuseMap
-    from pla.fuses.proof import Proof
+    from pla.fuses.proof import Counterexample, Proof
 
 __all__ = ["ProvenFile", "fuse_file", "fuse_file_name"]
 
@@ -40,12 +40,14 @@ def fuse_file(plan: Plan, name: str) -> ProvenFile:
         name: Name of the file, for messages.
 
     Raises:
+        RefusalError: If the design's bidirectional outputs drive each other in a ring, so that
+            they would hold whatever value they have.
         InternalError: If the bytes do not read back as written, or the array that they describe is
             not what the design asks for. Nothing has been written to the disk then.
     """
-    device, behaviour = plan.device, plan.behaviour
+    device, design = plan.device, plan.design
     fuses = link(plan)
-    title = behaviour.name + (f", revision {behaviour.revision}" if behaviour.revision else "")
+    title = design.name + (f", revision {design.revision}" if design.revision else "")
     data = write_fuse_file(title, list(_notes(plan)), device.pins, fuses, list(device.blocks()))
     back = read_fuse_file(data, name)
     if back.fuses != fuses:
@@ -53,10 +55,19 @@ def fuse_file(plan: Plan, name: str) -> ProvenFile:
             [Diagnostic("READ-BACK", "the fuse file does not read back as written")]
         )
     proof = prove(plan, back.fuses)
-    if proof.counterexample is not None:
-        message = f"the fuse file is not equal to the design: {proof.counterexample.text}"
+    found = proof.counterexample
+    if found is not None and found.fault == "held":
+        raise RefusalError([_held(plan, found)])
+    if found is not None:
+        message = f"the fuse file is not equal to the design: {found.text}"
         raise InternalError([Diagnostic("NOT-EQUAL", message)])
     return ProvenFile(data, back.fuses, proof)
+
+
+def _held(plan: Plan, found: Counterexample) -> Diagnostic:
+    places = {output.name: output.location for output in plan.design.outputs}
+    hint = "outputs that read each other need enables of which never more than one is 1"
+    return Diagnostic("HOLDS-ITSELF", found.text, places.get(found.output), hint)
 
 
 def fuse_file_name(behaviour: Behaviour) -> str:
@@ -66,12 +77,14 @@ def fuse_file_name(behaviour: Behaviour) -> str:
 
 
 def _notes(plan: Plan) -> Iterator[str]:
-    behaviour = plan.behaviour
+    """Version, device, design, what is on each pin, what is inside, and pins to be tied."""
+    design = plan.design
     yield f"fuseplan {__version__}"
     yield f"device {plan.device.name}"
-    yield f"design {behaviour.name}"
-    if behaviour.revision:
-        yield f"revision {behaviour.revision}"
+    yield f"design {design.name}"
+    if design.revision:
+        yield f"revision {design.revision}"
+    enables = {o.name: o.enable.text for o in design.outputs if o.enable is not None}
     pins = [
         (signal.pin, kind, signal.name, signal.active_low)
         for kind, signals in (("input", plan.inputs), ("output", plan.outputs))
@@ -79,4 +92,10 @@ def _notes(plan: Plan) -> Iterator[str]:
         if signal.pin is not None
     ]
     for pin, kind, name, active_low in sorted(pins):
-        yield f"pin {pin} {kind} {name}{', active low' if active_low else ''}"
+        enable = f", driven while {enables[name]}" if name in enables and kind == "output" else ""
+        yield f"pin {pin} {kind} {name}{', active low' if active_low else ''}{enable}"
+    for pin, level in sorted(plan.tied):
+        yield f"pin {pin} enables outputs, tie {'high' if level else 'low'}"
+    for output in plan.outputs:
+        if output.pin is None:
+            yield f"cell {output.cell.key} inner {output.name}"

@@ -3,27 +3,30 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
-from typing import TYPE_CHECKING, Literal
+from typing import TYPE_CHECKING, Generic, Literal, TypeVar
 
-import numpy as np
-
+from pla.fuses.evaluate import Outside, evaluate
+from pla.fuses.questions import ByCubes, BySimulation
 from pla.fuses.recover import recover
-from pla.fuses.simulate import all_combinations, simulate
-from pla.logic.cubes import Cover, Cube
+from pla.fuses.undefined import nearest_ring, why_undefined
+from pla.logic.cubes import Cover
 from pla.logic.dense import MAX_DENSE_INPUTS
-from pla.logic.equivalence import find_difference
 
 if TYPE_CHECKING:
-    from collections.abc import Sequence
+    from collections.abc import Iterator, Mapping
 
-    from numpy.typing import NDArray
-
-    from pla.behaviour.model import Behaviour
-    from pla.fitting.model import PlacedInput, PlacedOutput, Plan
+    from pla.behaviour.model import Behaviour, Output
+    from pla.fitting.model import PlacedOutput, Plan
+    from pla.fuses.evaluate import Evaluated
     from pla.fuses.fusemap import FuseMap
+    from pla.fuses.questions import Questions
     from pla.fuses.recover import Realised
 
 __all__ = ["Counterexample", "Proof", "prove"]
+
+V = TypeVar("V")
+
+Fault = Literal["value", "drive", "undefined", "contention", "held", "reads", "mode"]
 
 
 @dataclass(frozen=True, slots=True)
@@ -31,17 +34,24 @@ class Counterexample:
     """An input combination at which the array is not what the design asks for.
 
     Attributes:
-        output: Name of the output.
+        output: Name of the output, or of the input whose pin is at fault; ``""`` if all are.
         point: Asserted values of the inputs, bit ``i`` for input ``i``; ``None`` if the output
             depends on something that is no input of the design.
-        expected: Asserted value that the design demands, if there is one combination.
+        expected: Asserted value that the design demands, if there is one combination and it is the
+            value that is wrong.
         text: In words.
+        fault: ``value``: a wrong value. ``drive``: the pin is driven where it must not be, or not
+            driven where it must be. ``undefined``: there is no value. ``contention``: a pin that
+            serves as an input is driven by the part. ``held``: values that hold themselves by way
+            of bidirectional pins. ``reads``: an input is not on the pin that it reads. ``mode``:
+            the fuses select another device-wide mode.
     """
 
     output: str
     point: int | None
     expected: int | None
     text: str
+    fault: Fault = "value"
 
 
 @dataclass(frozen=True, slots=True)
@@ -66,113 +76,185 @@ class Proof:
 def prove(plan: Plan, fuses: FuseMap) -> Proof:
     """Compare the array that the fuses make with the design of the plan.
 
-    Up to 16 inputs the array is simulated pin by pin on every input combination; beyond that,
-    its terms are compared with the design as cubes. Of the plan only the behaviour, the device and
-    the pins are looked at, never the cover.
+    Up to 16 inputs the array is simulated pin by pin on every input combination; beyond that, its
+    terms are put together as cubes and compared with the design. Of the plan only the design, the
+    device and the pins are looked at, never the cover.
+
+    The level at a bidirectional pin is what the design reads there. It is tried with both values
+    also while the part drives the pin, when it really has only one of them; so a value that the
+    design promises for either is shown for the true one.
     """
     realised = recover(plan.device, fuses)
-    if len(plan.inputs) <= MAX_DENSE_INPUTS:
-        return _by_simulation(plan, realised)
-    return _by_cubes(plan, realised)
+    n = len(plan.design.inputs)
+    if n <= MAX_DENSE_INPUTS:
+        return _prove(plan, realised, BySimulation(n))
+    return _prove(plan, realised, ByCubes(n))
 
 
-def _by_simulation(plan: Plan, realised: Realised) -> Proof:
-    count = len(plan.inputs)
-    combinations = 1 << count
-    levels = {}
-    for placed in plan.inputs:
-        if placed.pin is not None:
-            asserted = all_combinations(count, placed.index)
-            levels[placed.pin] = ~asserted if placed.active_low else asserted
-    size = max(1, combinations >> 3)
-    shown = simulate(realised, levels, size)
-    function = plan.behaviour.function
-    for output in plan.outputs:
-        level = shown[output.pin]
-        if level is None:
-            return Proof("simulation", combinations, _undefined(output))
-        asserted = ~level if output.active_low else level
-        bits = np.unpackbits(asserted, bitorder="little")[:combinations].astype(bool)
-        for cover, expected in ((function.on, 1), (function.off, 0)):
-            demanded = _combinations_of(cover.of_output(output.index))
-            wrong = demanded & (bits != bool(expected))
-            if wrong.any():
-                point = int(wrong.argmax())
-                return Proof(
-                    "simulation",
-                    combinations,
-                    _wrong(plan.behaviour, plan.inputs, output, point, expected),
-                )
-    return Proof("simulation", combinations, None)
+def _prove(plan: Plan, realised: Realised, road: Questions[V]) -> Proof:
+    found = next(_mistaken(plan, realised), None)
+    if found is None:
+        found = next(_Comparison(plan, realised, road).faults(), None)
+    return Proof(road.method, road.cases, found)
 
 
-def _combinations_of(cover: Cover) -> NDArray[np.bool_]:
-    """``bool[2^n]``: which combinations the cover holds; index bit ``i`` is input ``i``."""
-    n = cover.n_inputs
-    held = np.zeros((2,) * n, dtype=bool)
-    for cube in cover:
-        # Index bit i is the i-th axis from the end.
-        place = tuple(
-            1 if cube.ones >> i & 1 else 0 if cube.zeros >> i & 1 else slice(None)
-            for i in reversed(range(n))
+def _mistaken(plan: Plan, realised: Realised) -> Iterator[Counterexample]:
+    """What is wrong before any level is looked at."""
+    for fuse, state in realised.other_mode:
+        text = (
+            f"fuse {fuse} is {1 - state}, which selects another device-wide mode than "
+            f"{plan.device.name}; its own needs {state}"
         )
-        held[place] = True
-    return held.reshape(-1)
+        yield Counterexample("", None, None, text, "mode")
+    pin_of = {output.name: output.pin for output in plan.outputs}
+    for signal, placed in zip(plan.design.inputs, plan.inputs, strict=False):
+        output = signal.read_from
+        if output is not None and placed.pin is not None and placed.pin != pin_of[output]:
+            text = (
+                f"{placed.name} reads pin {placed.pin}, but {output}, whose pin it is to read, "
+                f"is on pin {pin_of[output]}"
+            )
+            yield Counterexample(placed.name, None, None, text, "reads")
 
 
-def _by_cubes(plan: Plan, realised: Realised) -> Proof:
-    signal_at = {p.pin: p for p in plan.inputs if p.pin is not None}
-    function = plan.behaviour.function
-    cubes: list[Cube] = []
-    sums = {sum_.cell.pin: sum_ for sum_ in realised.sums}
-    live = {row.number: row for row in realised.rows if not row.dead}
-    complemented = []
-    for output in plan.outputs:
-        sum_ = sums[output.pin]
-        if sum_.mode is None or sum_.mode.pin == "none":
-            return Proof("cubes", len(cubes), _undefined(output))
-        complemented.append((sum_.mode.pin == "sum'") != output.active_low)
-        for number in sum_.rows:
-            if number not in live:
+@dataclass(frozen=True, slots=True)
+class _Comparison(Generic[V]):
+    plan: Plan
+    realised: Realised
+    road: Questions[V]
+
+    def faults(self) -> Iterator[Counterexample]:
+        """Everything that differs, values of the outputs first."""
+        made = evaluate(self.realised, self.road.logic, self._outside("free"))
+        design = self.plan.design
+        placed = self.plan.outputs[: len(design.outputs)]
+        for output in placed:
+            yield from self._values(made, output)
+        for asked, output in zip(design.outputs, placed, strict=True):
+            yield from self._driving(made, asked, output)
+        yield from self._contention(made)
+        yield from self._held()
+
+    def _outside(self, rule: Literal["free", "yields"]) -> dict[int, Outside[V]]:
+        """The inputs at their pins, and `rule` where the part drives the pin as well."""
+        outside = {
+            pin: Outside(self.road.logic.constant(bool(level))) for pin, level in self.plan.tied
+        }
+        for signal, placed in zip(self.plan.design.inputs, self.plan.inputs, strict=False):
+            if placed.pin is not None:
+                level = self._level(placed.index)
+                both = signal.read_from is not None
+                outside[placed.pin] = Outside(level, rule if both else "holds")
+        return outside
+
+    def _level(self, index: int) -> V:
+        """The level at the pin of an input."""
+        asserted = self.road.variable(index)
+        low = self.plan.design.inputs[index].active_low
+        return self.road.logic.inverse(asserted) if low else asserted
+
+    def _asserted(self, levels: Mapping[int, V], output: PlacedOutput) -> V:
+        level = levels[_pin(output)]
+        return self.road.logic.inverse(level) if output.active_low else level
+
+    def _values(self, made: Evaluated[V], output: PlacedOutput) -> Iterator[Counterexample]:
+        function = self.plan.design.function
+        value = self._asserted(made.shown, output)
+        for cover, expected in ((function.on, 1), (function.off, 0)):
+            point = self.road.failure(cover.of_output(output.index), value, expected)
+            if point is None:
                 continue
-            ones = zeros = 0
-            for pin, complement in live[number].lines:
-                placed = signal_at.get(pin)
-                if placed is None:
-                    return Proof("cubes", len(cubes), _undefined(output))
-                if placed.active_low == complement:
-                    ones |= 1 << placed.index
-                else:
-                    zeros |= 1 << placed.index
-            cubes.append(Cube(ones, zeros, 1 << output.index))
-    cover = Cover.of(function.n_inputs, cubes).merged()
-    difference = find_difference(cover, complemented, function)
-    cases = len(cover) + len(function.on) + len(function.off)
-    if difference is None:
-        return Proof("cubes", cases, None)
-    output = plan.outputs[difference.output]
-    return Proof(
-        "cubes",
-        cases,
-        _wrong(plan.behaviour, plan.inputs, output, difference.point, difference.expected),
-    )
+            if self.road.at(value, point) is None:
+                text = why_undefined(self.realised, made, self._outside("free"), output)
+                at = self._at(point)
+                yield Counterexample(output.name, None, None, text + at, "undefined")
+            else:
+                text = f"{output.name} is {1 - expected} where {self._design} says {expected}"
+                yield Counterexample(output.name, point, expected, text + self._at(point))
+
+    def _driving(
+        self, made: Evaluated[V], asked: Output, output: PlacedOutput
+    ) -> Iterator[Counterexample]:
+        n = len(self.plan.design.inputs)
+        driven = made.driven[_pin(output)]
+        on, off = Cover.universe(n), Cover.of(n)
+        if asked.enable is not None:
+            on, off = asked.enable.on, asked.enable.off
+        for cover, expected in ((on, 1), (off, 0)):
+            point = self.road.failure(cover, driven, expected)
+            if point is None:
+                continue
+            says = f"where {self._design} says that it does{'' if expected else ' not'}"
+            actual = self.road.at(driven, point)
+            if actual is None:
+                does = "may or may not drive, by a level that is no input of the design,"
+            else:
+                does = "drives" if actual else "does not drive"
+            text = f"{output.name} {does} pin {output.pin} {says}{self._at(point)}"
+            yield Counterexample(output.name, point, None, text, "drive")
+
+    def _contention(self, made: Evaluated[V]) -> Iterator[Counterexample]:
+        everywhere = Cover.universe(len(self.plan.design.inputs))
+        for signal, placed in zip(self.plan.design.inputs, self.plan.inputs, strict=False):
+            if placed.pin not in made.driven or signal.read_from is not None:
+                continue
+            point = self.road.failure(everywhere, made.driven[placed.pin], 0)
+            if point is not None:
+                text = (
+                    f"the part drives pin {placed.pin}, which {placed.name} drives from outside"
+                    f"{self._at(point)}"
+                )
+                yield Counterexample(placed.name, point, None, text, "contention")
+
+    def _held(self) -> Iterator[Counterexample]:
+        """Rings that close by way of bidirectional pins while the part drives these.
+
+        Each pin read alone is free of them. So the true levels are looked at as well: where the
+        part drives, the outside lets go.
+        """
+        inputs = list(zip(self.plan.design.inputs, self.plan.inputs, strict=False))
+        both = [p for signal, p in inputs if signal.read_from is not None and p.pin is not None]
+        if not both:
+            return
+        made = evaluate(self.realised, self.road.logic, self._outside("yields"))
+        if not made.rings:
+            return
+        logic, function = self.road.logic, self.plan.design.function
+        # Values of an input that its pin cannot have while the part drives it.
+        untrue = []
+        for placed in both:
+            level, given = made.levels[placed.pin or 0], self._level(placed.index)
+            untrue.append(logic.conjunction([level, logic.inverse(given)]))
+            untrue.append(logic.conjunction([logic.inverse(level), given]))
+        excepted = logic.disjunction(untrue)
+        for output in self.plan.outputs[: len(self.plan.design.outputs)]:
+            demanded = function.on.of_output(output.index) + function.off.of_output(output.index)
+            shown = made.shown[_pin(output)]
+            point = self.road.unsettled(demanded, shown, excepted)
+            if point is not None:
+                ring = nearest_ring(self.realised, made, output) or "bidirectional pins"
+                text = (
+                    f"{output.name} holds itself by way of {ring}: they drive each other at the "
+                    f"same time{self._at(point)}"
+                )
+                yield Counterexample(output.name, point, None, text, "held")
+
+    @property
+    def _design(self) -> str:
+        return self.plan.design.name or "the design"
+
+    def _at(self, point: int) -> str:
+        return _point(self.plan.design, point)
 
 
-def _undefined(output: PlacedOutput) -> Counterexample:
-    text = (
-        f"pin {output.pin} ({output.name}) depends on a pin that carries no input of the design, "
-        "or its cell is in no mode that shows its sum"
-    )
-    return Counterexample(output.name, None, None, text)
+def _pin(output: PlacedOutput) -> int:
+    if output.pin is None:  # pragma: no cover - outputs of a design have pins
+        raise ValueError(f"{output.name} has no pin")
+    return output.pin
 
 
-def _wrong(
-    behaviour: Behaviour,
-    inputs: Sequence[PlacedInput],
-    output: PlacedOutput,
-    point: int,
-    expected: int,
-) -> Counterexample:
-    values = " ".join(f"{p.name}={point >> p.index & 1}" for p in inputs)
-    text = f"{output.name} is {1 - expected} where {behaviour.name or 'the design'} says {expected}"
-    return Counterexample(output.name, point, expected, f"{text}, at {values}")
+def _point(design: Behaviour, point: int) -> str:
+    if not design.inputs:
+        return ""
+    values = " ".join(f"{s.name}={point >> i & 1}" for i, s in enumerate(design.inputs))
+    return f", at {values}"

@@ -1,21 +1,76 @@
-"""Levels at the output pins for levels at the input pins, for many input combinations at once."""
+"""Levels at all pins for levels from outside, for many input combinations at once."""
 
 from __future__ import annotations
 
+from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 import numpy as np
 
+from pla.fuses.evaluate import evaluate
+
 if TYPE_CHECKING:
-    from collections.abc import Mapping
+    from collections.abc import Mapping, Sequence
 
     from numpy.typing import NDArray
 
+    from pla.fuses.evaluate import Evaluated, Outside
     from pla.fuses.recover import Realised
 
     Levels = NDArray[np.uint8]
 
-__all__ = ["all_combinations", "simulate"]
+__all__ = ["Packed", "Signal", "all_combinations", "simulate"]
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class Signal:
+    """A level in many combinations; where it is neither high nor low it is unknown.
+
+    Attributes:
+        high: ``uint8[size]``, packed eight combinations to a byte (little-endian): where it is 1.
+        low: The same for 0.
+    """
+
+    high: Levels
+    low: Levels
+
+    @classmethod
+    def of(cls, levels: Levels) -> Signal:
+        """One that is known everywhere."""
+        return cls(levels, ~levels)
+
+    @property
+    def known(self) -> Levels:
+        return self.high | self.low
+
+
+@dataclass(frozen=True, slots=True)
+class Packed:
+    """The logic of signals of `size` bytes (see `pla.fuses.evaluate.Logic`)."""
+
+    size: int
+
+    def constant(self, value: bool) -> Signal:
+        return Signal.of(np.full(self.size, 255 if value else 0, dtype=np.uint8))
+
+    @property
+    def unknown(self) -> Signal:
+        nowhere = np.zeros(self.size, dtype=np.uint8)
+        return Signal(nowhere, nowhere)
+
+    def inverse(self, value: Signal) -> Signal:
+        return Signal(value.low, value.high)
+
+    def conjunction(self, values: Sequence[Signal]) -> Signal:
+        high = np.full(self.size, 255, dtype=np.uint8)
+        low = np.zeros(self.size, dtype=np.uint8)
+        for value in values:
+            high &= value.high
+            low |= value.low
+        return Signal(high, low)
+
+    def disjunction(self, values: Sequence[Signal]) -> Signal:
+        return self.inverse(self.conjunction([self.inverse(value) for value in values]))
 
 
 def all_combinations(count: int, number: int) -> Levels:
@@ -32,43 +87,14 @@ def all_combinations(count: int, number: int) -> Levels:
 
 
 def simulate(
-    realised: Realised, levels: Mapping[int, Levels], size: int
-) -> dict[int, Levels | None]:
-    """The level of every output pin.
+    realised: Realised, outside: Mapping[int, Outside[Signal]], size: int
+) -> Evaluated[Signal]:
+    """Every sum and pin of the array.
 
     Args:
         realised: The array.
-        levels: For each input pin its levels, packed eight combinations to a byte. A pin that is
-            not listed is at an unknown level: rows that depend on it are taken to be open.
-        size: Bytes of each sequence.
-
-    Returns:
-        For each output pin its levels, packed likewise; ``None`` where they depend on a pin whose
-        level is unknown or the cell is in no mode that shows its sum.
+        outside: What comes to pins from outside. A pin that is not listed, and that the part does
+            not drive, is at an unknown level.
+        size: Bytes of each packed sequence.
     """
-    products: dict[int, Levels | None] = {}
-    for row in realised.rows:
-        if row.dead:
-            products[row.number] = np.zeros(size, dtype=np.uint8)
-            continue
-        product: Levels | None = np.full(size, 255, dtype=np.uint8)
-        for pin, complement in sorted(row.lines):
-            level = levels.get(pin)
-            if level is None or product is None:
-                product = None
-                break
-            product &= ~level if complement else level
-        products[row.number] = product
-    shown: dict[int, Levels | None] = {}
-    for sum_ in realised.sums:
-        parts = [products[row] for row in sum_.rows]
-        known = [part for part in parts if part is not None]
-        mode = sum_.mode
-        if mode is None or mode.pin == "none" or len(known) < len(parts):
-            shown[sum_.cell.pin] = None
-            continue
-        total = np.zeros(size, dtype=np.uint8)
-        for part in known:
-            total |= part
-        shown[sum_.cell.pin] = ~total if mode.pin == "sum'" else total
-    return shown
+    return evaluate(realised, Packed(size), outside)
