@@ -27,17 +27,19 @@ def command(design: str, polarity: str, require_proof: bool, as_json: bool) -> i
     from pla.behaviour.reader import read_behaviour
     from pla.fitting.polarity import wished_polarities
     from pla.logic.minimize import minimize
+    from pla.report.enable_sums import enable_sums, enables_document
 
     behaviour = read_behaviour(design)
     show_diagnostics(behaviour.warnings)
     polarities = wished_polarities(behaviour, cast("Any", polarity))
     minimum = minimize(behaviour.function, polarities)
+    enables = enable_sums(behaviour)
     if as_json:
         from pla.report.cover_json import cover_document
 
-        emit_json(cover_document(behaviour, minimum))
+        emit_json(cover_document(behaviour, minimum) | enables_document(behaviour, enables))
     else:
         from pla.report.terms_text import terms_text
 
-        emit_text(terms_text(behaviour, minimum, polarities))
+        emit_text(terms_text(behaviour, minimum, polarities, enables))
     return 1 if require_proof and not minimum.proven else 0

@@ -2,18 +2,25 @@
 
 from __future__ import annotations
 
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, TypeVar
 
+from pla.behaviour.model import Inner, Input, Output
+from pla.logic import algebra
 from pla.report.behaviour_counts import OutputCounts, count_outputs
-from pla.report.layout import WIDTH, broken
-from pla.report.text import filled, kept_together
+from pla.report.delays import nanoseconds
+from pla.report.layout import WIDTH, broken, drawn
+from pla.report.table import Table
+from pla.report.text import filled, kept_together, one_line
 
 if TYPE_CHECKING:
     from collections.abc import Iterator, Sequence
 
-    from pla.behaviour.model import Behaviour, Input, Output
+    from pla.behaviour.model import Behaviour, Enabling
 
 __all__ = ["behaviour_text"]
+
+Bit = Input | Output | Inner
+AnyBit = TypeVar("AnyBit", bound=Bit)
 
 MAX_PLAIN = 1 << 24
 """Up to so many combinations numbers are shown as they are; above, as shares."""
@@ -32,6 +39,7 @@ _REASONS = {
     "x": "rows with x",
     "dont_care": "dont_care",
     "elsewhere": "elsewhere",
+    "disabled": "disabled",
 }
 
 
@@ -67,6 +75,8 @@ def behaviour_text(behaviour: Behaviour) -> str:
         "",
         *_side("inputs", behaviour.inputs),
         *_side("outputs", behaviour.outputs),
+        *(_side("inner", behaviour.inner) if behaviour.inner else ()),
+        *_demands(behaviour),
         "",
         f"Input combinations that ask for 1, for 0 and for nothing, of {total} in all"
         + ("." if plain else ";"),
@@ -74,15 +84,64 @@ def behaviour_text(behaviour: Behaviour) -> str:
         "",
         *(line.rstrip() for line in table.split("\n")),
         "",
+        *(line for table in _more_tables(behaviour) for line in (*drawn(table).split("\n"), "")),
         "No errors." if not behaviour.warnings else f"No errors, {_warnings(behaviour)}.",
     ]
     return "\n".join(lines)
 
 
-def _described(output: Output, design: str) -> str:
-    at = output.described
+def _described(bit: Output | Inner, design: str) -> str:
+    at = bit.described
     place = f"line {at.line}" if at.file == design else f"{at.file}:{at.line}"
-    return f"{_FORMS[output.form]}, {place}"
+    return f"{_FORMS[bit.form]}, {place}"
+
+
+def _demands(behaviour: Behaviour) -> Iterator[str]:
+    """What is asked of the device as a whole."""
+    if behaviour.signature is not None:
+        yield f"  signature    {behaviour.signature}"
+    if behaviour.max_delay is not None:
+        yield f"  longest delay of any output  {nanoseconds(behaviour.max_delay)}"
+
+
+def _more_tables(behaviour: Behaviour) -> Iterator[Table]:
+    """Inner signals, and what is special about pins; nothing if there is nothing."""
+    if behaviour.inner:
+        named_in: dict[str, list[str]] = {}
+        for name, others in behaviour.named.items():
+            for other in others:
+                named_in.setdefault(other, []).append(name)
+        yield Table(
+            "",
+            ("inner signal", "described by", "named by"),
+            tuple(
+                (
+                    inner.name,
+                    _described(inner, behaviour.file),
+                    ", ".join(named_in.get(inner.name, ["nothing"])),
+                )
+                for inner in behaviour.inner
+            ),
+            aligned="lll",
+            wrapped=(0, 2),
+        )
+    rows = []
+    for group in _groups(behaviour.outputs):
+        first = group[0]
+        if first.enable is None and first.max_delay is None:
+            continue
+        read = [i for i in behaviour.inputs if i.read_from in [o.name for o in group]]
+        rows.append(
+            (
+                _span(group),
+                _enable(first.enable) if first.enable else "always",
+                _span(read) if read else "–",
+                nanoseconds(first.max_delay) if first.max_delay else "–",
+            )
+        )
+    if rows:
+        headings = ("output", "drives its pin while", "its pin is read as", "longest delay")
+        yield Table("", headings, tuple(rows), aligned="lllr", wrapped=(0, 1, 2))
 
 
 def _warnings(behaviour: Behaviour) -> str:
@@ -108,7 +167,12 @@ def _sources(count: OutputCounts, *, plain: bool) -> Iterator[str]:
         yield f"{_REASONS[reason]} {top}/{bottom}"
 
 
-def _side(side: str, bits: Sequence[Input | Output]) -> Iterator[str]:
+def _enable(enable: Enabling) -> str:
+    known = algebra.is_tautology(enable.on + enable.off)
+    return one_line(enable.text) + ("" if known else "; free at impossible inputs")
+
+
+def _side(side: str, bits: Sequence[Bit]) -> Iterator[str]:
     """How many, and their names in order, the bits of a bus as one."""
     start = f"  {side:<7}  {len(bits):>2}  "
     for line in filled(_signals(bits), WIDTH - len(start)).split("\n"):
@@ -116,15 +180,27 @@ def _side(side: str, bits: Sequence[Input | Output]) -> Iterator[str]:
         start = " " * len(start)
 
 
-def _signals(bits: Sequence[Input | Output]) -> str:
+def _signals(bits: Sequence[Bit]) -> str:
     shown: list[str] = []
-    groups: dict[str, list[Input | Output]] = {}
+    for group in _groups(bits):
+        text = _span(group)
+        low = not isinstance(group[0], Inner) and group[0].active_low
+        shown.append(kept_together(f"{text} (active low)") if low else text)
+    return ", ".join(shown)
+
+
+def _groups(bits: Sequence[AnyBit]) -> list[list[AnyBit]]:
+    """The bits of each signal."""
+    groups: dict[str, list[AnyBit]] = {}
     for bit in bits:
         groups.setdefault(bit.name.partition("[")[0], []).append(bit)
-    for name, group in groups.items():
-        first, last = group[0].name, group[-1].name
-        text = first
-        if len(group) > 1:
-            text = f"{name}[{first[len(name) + 1 : -1]}:{last[len(name) + 1 : -1]}]"
-        shown.append(kept_together(f"{text} (active low)") if group[0].active_low else text)
-    return ", ".join(shown)
+    return list(groups.values())
+
+
+def _span(group: Sequence[Bit]) -> str:
+    """A signal, or a bus with its ends: ``step[3:0]``."""
+    first, last = group[0].name, group[-1].name
+    name = first.partition("[")[0]
+    if len(group) == 1:
+        return first
+    return f"{name}[{first[len(name) + 1 : -1]}:{last[len(name) + 1 : -1]}]"

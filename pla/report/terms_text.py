@@ -5,6 +5,7 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from pla.fitting.prices import alone_counts
+from pla.report.enable_sums import enables_table, folded_sentence
 from pla.report.programming_table import programming_table
 from pla.report.sharing import output_table, term_table
 from pla.report.text import filled, table_text
@@ -16,23 +17,35 @@ if TYPE_CHECKING:
     from pla.behaviour.model import Behaviour
     from pla.logic.minimize import Minimum
     from pla.logic.phases import Polarity
+    from pla.report.enable_sums import EnableSum
 
 __all__ = ["terms_text"]
 
 
-def terms_text(behaviour: Behaviour, minimum: Minimum, polarities: Sequence[Polarity]) -> str:
+def terms_text(
+    behaviour: Behaviour,
+    minimum: Minimum,
+    polarities: Sequence[Polarity],
+    enables: tuple[EnableSum, ...] = (),
+) -> str:
     """How good the count is, programming table, term sharing; no newline at the end.
 
     Args:
         behaviour: The design.
         minimum: Its terms.
         polarities: What was allowed to each output.
+        enables: What the enables of its outputs need.
     """
     tables = (
         programming_table(behaviour, minimum),
         term_table(behaviour, minimum),
         output_table(behaviour, minimum, alone_counts(behaviour.function, polarities)),
+        *([enables_table(behaviour, enables)] if enables else []),
     )
-    sentences = [" ".join(count_sentences(minimum)), *design_sentences(behaviour, minimum)]
+    sentences = [
+        " ".join(count_sentences(minimum)),
+        *design_sentences(behaviour, minimum),
+        *folded_sentence(behaviour),
+    ]
     verdict = "\n".join(map(filled, sentences))
     return "\n\n".join([title(behaviour), verdict, *map(table_text, tables)])
