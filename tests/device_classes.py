@@ -438,7 +438,8 @@ def _text(draft, name, setting):
     if idle:
         out.append(f"unconnected = {sorted(idle)}")
     if made.spare:
-        out.append(f"spare = {_toml(_ranges(rng, made.spare))}")
+        spare = _ranges(rng, made.spare)
+        out.append(f"spare = {_toml(spare if isinstance(spare, list) else [spare])}")
     if draft.mode_fuses:
         out += ["", "[set]"]
         out += [f"{f} = {s}" for f, s in zip(made.mode_fuses, setting, strict=True)]

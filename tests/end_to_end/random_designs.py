@@ -100,7 +100,7 @@ def random_design(rng: random.Random, name: str = "random") -> RandomDesign:
             continue
         for output in waiting.pop().names:
             if form == "minterms":
-                text, values_of = _minterms(rng, made, output)
+                text, values_of = _minterms(rng, made, fields, output)
                 lines += ["", *text]
                 described[output] = values_of
             else:
@@ -299,20 +299,23 @@ def _output_cell(rng, signal):
 # --- minterm lists ---
 
 
-def _minterms(rng, made, output):
-    buses = [signal for signal in made.inputs if len(signal.bits) > 1]
+def _minterms(rng, made, fields, output, *, complete=False):
+    """A list of one bus or of single inputs; `complete` leaves nothing open."""
+    buses = [field_ for field_ in fields if not field_.single and "[" not in field_.name]
     if buses and rng.random() < 0.5:
-        signal = rng.choice(buses)
-        of, bits = _toml(signal.name), signal.bits
+        bus = rng.choice(buses)
+        of, bits = _toml(bus.name), bus.bits
     else:
-        named = list(enumerate(made.input_names))
+        named = [field_ for field_ in fields if field_.single]
         named = rng.sample(named, rng.randint((len(named) + 1) // 2, len(named)))
-        of, bits = _toml([name for _, name in named]), [bit for bit, _ in named]
+        of, bits = _toml([n.name for n in named]), [bit for n in named for bit in n.bits]
     number = _Field("", bits, False)
     kinds = rng.choice([["on", "others"], ["on", "dont_care", "others"], ["on", "off", "others"]])
+    if complete:
+        kinds = ["on", "off", "others"]
     given = [rng.choice(kinds) for _ in range(number.size)]
     given[rng.randrange(number.size)] = "on"
-    others = rng.choice([0, 0, 0, 1, FREE])
+    others = rng.choice([0, 0, 0, 1] if complete else [0, 0, 0, 1, FREE])
     worth = {"on": 1, "off": 0, "dont_care": FREE, "others": others}
     lines = [f"[minterms.{_key(output)}]", f"of = {of}"]
     for kind in ("on", "off", "dont_care"):
