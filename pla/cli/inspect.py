@@ -17,7 +17,8 @@ _NO = 1
 @click.option(
     "--device",
     metavar="NAME-OR-FILE",
-    help="Say whether QF and QP are those of this device; if not, exit code 1.",
+    help="Say whether QF, QP and the fuses that select a device-wide mode are those of this "
+    "device; if not, exit code 1. Shows the text in its signature fuses.",
 )
 @click.option(
     "--strict",
@@ -30,8 +31,8 @@ def command(file: str, device: str | None, strict: bool, as_json: bool) -> int:
     """Hold a fuse file against the standard JESD3.
 
     Shows what the file says, both sums as given and as computed, every departure from the standard
-    with its byte and field, and which devices of the catalogue have as many fuses and pins. FILE
-    may be - for standard input.
+    with its byte and field, and which devices of the catalogue have as many fuses and pins and are
+    in the device-wide mode that the fuses select. FILE may be - for standard input.
 
     A file that cannot be relied on is refused with exit code 2: a wrong fuse checksum, fuses the
     device does not have, a damaged list. What it claims to be is shown all the same.
@@ -45,7 +46,7 @@ def command(file: str, device: str | None, strict: bool, as_json: bool) -> int:
     from pla.files import read_bytes
     from pla.fuses.jesd3 import FuseFile, FuseFileError, RefusedFile, departures, read_fuse_file
     from pla.fuses.jesd3_model import MAX_BYTES
-    from pla.fuses.sizes import devices_of_size, match_size
+    from pla.fuses.sizes import match_catalogue, match_size
 
     wanted = find_device(device) if device is not None else None
     data = read_bytes(file, MAX_BYTES)
@@ -55,7 +56,7 @@ def command(file: str, device: str | None, strict: bool, as_json: bool) -> int:
     except FuseFileError as problem:
         read = problem.refused
     found = departures(read)
-    devices = devices_of_size(read, map(find_device, catalogue()))
+    devices = match_catalogue(read, map(find_device, catalogue()))
     match = match_size(read, wanted) if wanted is not None else None
     if wanted is not None:
         show_diagnostics(wanted.warnings)

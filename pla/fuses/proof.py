@@ -124,15 +124,15 @@ class _Comparison(Generic[V]):
     road: Questions[V]
 
     def faults(self) -> Iterator[Counterexample]:
-        """Everything that differs, values of the outputs first."""
+        """Everything that differs; first what may be the reason for the rest."""
         made = evaluate(self.realised, self.road.logic, self._outside("free"))
         design = self.plan.design
         placed = self.plan.outputs[: len(design.outputs)]
+        yield from self._contention(made)
         for output in placed:
             yield from self._values(made, output)
         for asked, output in zip(design.outputs, placed, strict=True):
             yield from self._driving(made, asked, output)
-        yield from self._contention(made)
         yield from self._held()
 
     def _outside(self, rule: Literal["free", "yields"]) -> dict[int, Outside[V]]:

@@ -11,7 +11,8 @@ if TYPE_CHECKING:
     from collections.abc import Sequence
 
     from pla.fuses.jesd3 import FuseDiagnostic, FuseFile
-    from pla.fuses.sizes import SizeMatch
+    from pla.fuses.signature import SignatureText
+    from pla.fuses.sizes import CatalogueMatch, SizeMatch
 
 __all__ = ["inspection"]
 
@@ -19,7 +20,7 @@ __all__ = ["inspection"]
 def inspection(
     file: FuseFile | RefusedFile,
     departures: Sequence[FuseDiagnostic],
-    devices: Sequence[str] | None,
+    devices: CatalogueMatch | None,
     match: SizeMatch | None = None,
 ) -> dict[str, Any]:
     """The document of ``inspect --json``; offsets count from 0, lines and columns from 1.
@@ -47,7 +48,13 @@ def inspection(
         "vectors": [{"number": v.number, "conditions": v.conditions} for v in file.vectors],
         "fields": dict(sorted(counts.items())),
         "device": None if match is None else _match(match),
-        "devices": None if devices is None else list(devices),
+        "devices": None if devices is None else [d.name for d in devices.devices],
+        "other_modes": None
+        if devices is None
+        else [
+            {"name": m.device.name, "family": m.device.family, "differences": list(m.other_mode)}
+            for m in devices.other_modes
+        ],
         "departures": [{**d.as_json(), "offset": d.offset, "field": d.field} for d in departures],
     }
     if isinstance(file, RefusedFile):
@@ -62,8 +69,15 @@ def _match(match: SizeMatch) -> dict[str, Any]:
         "fuses": match.device.fuses,
         "pins": match.device.pins,
         "matches": match.matches,
-        "differences": list(match.differences),
+        "differences": [*match.differences, *match.other_mode],
+        "family": match.device.family,
+        "signature": None if match.signature is None else _signature(match.signature),
     }
+
+
+def _signature(signature: SignatureText) -> dict[str, Any]:
+    """The text (null if it is none), and every byte in hexadecimal, padding included."""
+    return {"text": signature.text, "bytes": signature.data.hex().upper()}
 
 
 def _hexadecimal(value: int | None) -> str | None:

@@ -10,8 +10,10 @@ from pla.fuses.jesd3_model import IDENTIFIERS, RefusedFile
 if TYPE_CHECKING:
     from collections.abc import Iterator, Sequence
 
+    from pla.device.model import Device
     from pla.fuses.jesd3 import FuseDiagnostic, FuseFile
-    from pla.fuses.sizes import SizeMatch
+    from pla.fuses.signature import SignatureText
+    from pla.fuses.sizes import CatalogueMatch, SizeMatch
 
 __all__ = ["inspection_text"]
 
@@ -23,7 +25,7 @@ _SHOWN_ELSEWHERE = frozenset({"", "N", "QF", "QP", "QV", "F", "C", "G", "X", "V"
 def inspection_text(
     file: FuseFile | RefusedFile,
     departures: Sequence[FuseDiagnostic],
-    devices: Sequence[str] | None,
+    devices: CatalogueMatch | None,
     match: SizeMatch | None = None,
 ) -> str:
     """Contents, sums, devices of that size, and every departure from the standard.
@@ -65,7 +67,7 @@ def _verdict(file: FuseFile | RefusedFile, departures: Sequence[FuseDiagnostic])
 
 
 def _rows(
-    file: FuseFile | RefusedFile, devices: Sequence[str] | None, match: SizeMatch | None
+    file: FuseFile | RefusedFile, devices: CatalogueMatch | None, match: SizeMatch | None
 ) -> Iterator[tuple[str, str]]:
     yield "design", file.design
     for note in file.notes:
@@ -89,6 +91,8 @@ def _rows(
             yield f"{identifier} fields", f"{number} ({what})"
     if match is not None:
         yield "device", _match(match)
+        if match.signature is not None:
+            yield "signature", _signature(match.signature)
     yield "devices", _devices(file, devices)
 
 
@@ -103,17 +107,39 @@ def _fuses(file: FuseFile | RefusedFile) -> str:
 def _match(match: SizeMatch) -> str:
     name = match.device.name
     if match.matches:
-        return f"{name}: QF and QP are those of the device"
+        modes = " and its mode fuses" if match.device.mode_fuses else ""
+        return f"{name}: QF and QP{modes} are those of the device"
     if match.differences:
         return f"{name}: NOT THE SAME SIZE: {'; '.join((*match.differences, *match.untold))}"
+    if match.other_mode:
+        return f"{name}: NOT IN THIS DEVICE-WIDE MODE: {'; '.join(match.other_mode)}"
     return f"{name}: nothing differs, but {'; '.join(match.untold)}"
 
 
-def _devices(file: FuseFile | RefusedFile, devices: Sequence[str] | None) -> str:
+def _signature(signature: SignatureText) -> str:
+    if signature.text is None:
+        return f"no text; its bytes are {signature.data.hex(' ').upper()}"
+    return f'"{signature.text}"' if signature.text else "blank"
+
+
+def _devices(file: FuseFile | RefusedFile, devices: CatalogueMatch | None) -> str:
     if devices is None:
         return "not known, as the number of fuses is not"
     size = f"{file.size} fuses" + ("" if file.pins is None else f" and {file.pins} pins")
-    return ", ".join(devices) or f"none in the catalogue has {size}"
+    named = ", ".join(map(_family_name, devices.devices))
+    if not named and devices.other_modes:
+        named = "none in the catalogue is in the device-wide mode that the fuses select"
+    lines = [named] if named else []
+    lines += [
+        f"not {_family_name(m.device)}: {'; '.join(m.other_mode)}" for m in devices.other_modes
+    ]
+    return "\n".join(lines) or f"none in the catalogue has {size}"
+
+
+def _family_name(device: Device) -> str:
+    """The name, with its family where that has other members."""
+    alone = device.family in {"", device.name} and not device.mode_fuses
+    return device.name if alone else f"{device.name} (family {device.family})"
 
 
 def _vectors(file: FuseFile | RefusedFile) -> str:
