@@ -29,6 +29,11 @@ __all__ = ["command"]
 )
 @polarity_option
 @proof_option
+@click.option(
+    "--signature",
+    metavar="TEXT",
+    help="Text for the signature fuses instead of the design's; an empty one leaves them blank.",
+)
 @click.option("--force", is_flag=True, help="Write into FOLDER though it exists.")
 @json_option
 def command(
@@ -37,6 +42,7 @@ def command(
     folder: str,
     polarity: str,
     require_proof: bool,
+    signature: str | None,
     force: bool,
     as_json: bool,
 ) -> int:
@@ -48,6 +54,8 @@ def command(
     \b
       fuseplan plan design.toml --device shared-12x32x6 -o out/
     """
+    from dataclasses import replace
+
     from pla.behaviour.reader import read_behaviour
     from pla.device.catalogue import find_device
     from pla.files import refuse_existing
@@ -56,17 +64,35 @@ def command(
 
     refuse_existing(folder, force=force)
     behaviour = read_behaviour(design)
+    if signature is not None:
+        behaviour = replace(behaviour, signature=_checked(signature) or None)
     array = find_device(device)
     elsewhere = places_elsewhere(behaviour, array)
     show_diagnostics((*behaviour.warnings, *array.warnings, *elsewhere))
     known: KnownMinima = {}
     outcome = fit(behaviour, array, cast("Any", polarity), known=known)
+    show_diagnostics(outcome.warnings)
     if not outcome.fits:
         return _refuse(outcome, polarity, known, as_json=as_json)
     minimum = outcome.minimum
     if require_proof and minimum is not None and not minimum.proven:
         return _unproven(outcome, as_json=as_json)
     return _write(behaviour, outcome, folder, force=force, as_json=as_json)
+
+
+def _checked(signature: str) -> str:
+    """A text that signature fuses can hold, if they are enough.
+
+    Raises:
+        BadParameter: If it is not printable ASCII on one line.
+    """
+    if not (signature.isascii() and signature.isprintable()):
+        wrong = next(c for c in signature if not (c.isascii() and c.isprintable()))
+        raise click.BadParameter(
+            f"{wrong!r} cannot stand in a device, expected one line of printable ASCII characters",
+            param_hint="--signature",
+        )
+    return signature
 
 
 def _write(behaviour: Behaviour, outcome: Fit, folder: str, *, force: bool, as_json: bool) -> int:

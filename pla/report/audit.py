@@ -3,21 +3,33 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, TypeAlias
 
 from pla.logic.cubes import Cover
 from pla.logic.partition import partition
 
 if TYPE_CHECKING:
-    from collections.abc import Iterator
+    from collections.abc import Iterator, Sequence
 
     from pla.behaviour.model import Behaviour
     from pla.logic.cubes import Cube
-    from pla.logic.minimize import Minimum
+    from pla.report.outcome import Outcome
 
-__all__ = ["Settled", "Together", "asserted_on", "audit", "open_together"]
+__all__ = [
+    "AtImpossible",
+    "Level",
+    "Settled",
+    "Together",
+    "asserted_on",
+    "at_impossible",
+    "audit",
+    "open_together",
+]
 
 _MOST_TOGETHER = 64
+
+Level: TypeAlias = "int | None"
+"""An asserted value, 0 or 1; ``None`` while the pin is at high impedance."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -26,20 +38,21 @@ class Settled:
 
     Attributes:
         output: Index of the output.
-        reason: Why it is open (see `pla.behaviour.model.DontCareSource`).
-        value: Asserted value that the output really has.
+        reason: Why it is open (see `pla.behaviour.model.DontCareSource`); never ``disabled``,
+            since a value that is not shown is none.
+        value: Asserted value that the output really has, or high impedance.
         cubes: The combinations, as cubes that have none in common; not empty.
     """
 
     output: int
     reason: str
-    value: int
+    value: Level
     cubes: Cover
 
     @property
     def size(self) -> int:
         """How many combinations."""
-        return sum(1 << (self.cubes.n_inputs - cube.literals) for cube in self.cubes)
+        return _size(self.cubes)
 
 
 @dataclass(frozen=True, slots=True)
@@ -48,41 +61,88 @@ class Together:
 
     Attributes:
         cube: The inputs.
-        values: Asserted value of each output.
+        values: Asserted value of each output, or high impedance.
     """
 
     cube: Cube
-    values: tuple[int, ...]
+    values: tuple[Level, ...]
 
 
-def audit(behaviour: Behaviour, minimum: Minimum) -> tuple[Settled, ...]:
-    """Every open combination of every output exactly once, by output, source and value."""
-    return tuple(_settled(behaviour, minimum))
+@dataclass(frozen=True, slots=True)
+class AtImpossible:
+    """Impossible inputs, and whether an output drives its pin there.
+
+    Attributes:
+        output: Index of the output.
+        drives: Whether it drives.
+        cubes: The combinations, as cubes that have none in common; not empty.
+    """
+
+    output: int
+    drives: bool
+    cubes: Cover
+
+    @property
+    def size(self) -> int:
+        """How many combinations."""
+        return _size(self.cubes)
 
 
-def open_together(behaviour: Behaviour, minimum: Minimum) -> tuple[Together, ...] | None:
+def audit(behaviour: Behaviour, outcomes: Sequence[Outcome]) -> tuple[Settled, ...]:
+    """Every open combination of every output exactly once, by output, source and value.
+
+    Args:
+        behaviour: The design.
+        outcomes: What each of its outputs really does.
+    """
+    return tuple(_settled(behaviour, outcomes))
+
+
+def open_together(behaviour: Behaviour, outcomes: Sequence[Outcome]) -> tuple[Together, ...] | None:
     """What all outputs do where inputs are impossible or any output is open.
+
+    Inputs at which outputs are merely switched off do not count as open.
+
+    Args:
+        behaviour: The design.
+        outcomes: What each of its outputs really does.
 
     Returns:
         Every such combination exactly once, with demanded values as well; ``None`` where that
         takes more than 64 cubes.
     """
-    open_ = Cover.joined(
-        len(behaviour.inputs), [behaviour.never, *(s.cubes for s in behaviour.dont_cares)]
-    )
-    sums = [minimum.cover.of_output(j) for j in range(len(behaviour.outputs))]
-    pieces: list[tuple[Cover, tuple[int, ...]]] = [(open_, ())]
-    for sum_, complemented in zip(sums, minimum.complemented, strict=True):
+    sources = (s.cubes for s in behaviour.dont_cares if s.reason != "disabled")
+    open_ = Cover.joined(len(behaviour.inputs), [behaviour.never, *sources])
+    pieces: list[tuple[Cover, tuple[Level, ...]]] = [(open_, ())]
+    for outcome in outcomes:
         pieces = [
-            (half, (*values, value))
+            (part, (*values, value))
             for cubes, values in pieces
-            for value, half in asserted_on(cubes, sum_, complemented=complemented)
+            for value, part in _levels_on(cubes, outcome)
         ]
         if sum(len(cubes) for cubes, _ in pieces) > _MOST_TOGETHER:
             return None
     found = [Together(cube, values) for cubes, values in pieces for cube in cubes]
     n = len(behaviour.inputs)
     return tuple(sorted(found, key=lambda together: _order(together.cube, n)))
+
+
+def at_impossible(behaviour: Behaviour, outcomes: Sequence[Outcome]) -> tuple[AtImpossible, ...]:
+    """For every output that can be switched off, every impossible combination exactly once.
+
+    Args:
+        behaviour: The design.
+        outcomes: What each of its outputs really does.
+    """
+    return tuple(
+        AtImpossible(j, drives, _ordered(part))
+        for j, outcome in enumerate(outcomes)
+        if outcome.drives is not None
+        for drives, part in zip(
+            (True, False), partition(behaviour.never, outcome.drives), strict=True
+        )
+        if len(part)
+    )
 
 
 def asserted_on(cubes: Cover, sum_: Cover, *, complemented: bool) -> Iterator[tuple[int, Cover]]:
@@ -99,13 +159,28 @@ def asserted_on(cubes: Cover, sum_: Cover, *, complemented: bool) -> Iterator[tu
             yield value, _ordered(held)
 
 
-def _settled(behaviour: Behaviour, minimum: Minimum) -> Iterator[Settled]:
-    for j, complemented in enumerate(minimum.complemented):
-        sum_ = minimum.cover.of_output(j)
+def _levels_on(cubes: Cover, outcome: Outcome) -> Iterator[tuple[Level, Cover]]:
+    """As `asserted_on`, and last the combinations at which the pin is at high impedance."""
+    if outcome.drives is None:
+        yield from asserted_on(cubes, outcome.sum, complemented=outcome.complemented)
+        return
+    driven, floating = partition(cubes, outcome.drives)
+    yield from asserted_on(driven, outcome.sum, complemented=outcome.complemented)
+    if len(floating):
+        yield None, _ordered(floating)
+
+
+def _settled(behaviour: Behaviour, outcomes: Sequence[Outcome]) -> Iterator[Settled]:
+    for j, outcome in enumerate(outcomes):
         for source in behaviour.dont_cares:
-            concerned = source.cubes.of_output(j)
-            for value, cubes in asserted_on(concerned, sum_, complemented=complemented):
+            if source.reason == "disabled":
+                continue
+            for value, cubes in _levels_on(source.cubes.of_output(j), outcome):
                 yield Settled(j, source.reason, value, cubes)
+
+
+def _size(disjoint: Cover) -> int:
+    return sum(1 << (disjoint.n_inputs - cube.literals) for cube in disjoint)
 
 
 def _ordered(cover: Cover) -> Cover:

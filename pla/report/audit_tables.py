@@ -6,20 +6,20 @@ from typing import TYPE_CHECKING
 
 from pla.logic import algebra
 from pla.report.cases import joined_cases
-from pla.report.notation import groups_of, plural
+from pla.report.notation import groups_of, listed, plural
 from pla.report.table import Strip, Table
+from pla.report.text import one_line
 
 if TYPE_CHECKING:
     from collections.abc import Iterator, Sequence
 
     from pla.behaviour.model import Behaviour
-    from pla.fitting.prices import SafetyPrice
     from pla.logic.cubes import Cube
-    from pla.logic.minimize import Minimum
-    from pla.report.audit import Settled, Together
+    from pla.report.audit import AtImpossible, Level, Settled, Together
+    from pla.report.gates import GroupPrice
     from pla.report.notation import Group
 
-__all__ = ["detail_table", "summary_table", "together_table"]
+__all__ = ["detail_table", "enable_table", "summary_table", "together_table"]
 
 _REASONS = {
     "never": "impossible",
@@ -31,7 +31,10 @@ _REASONS = {
 
 
 def summary_table(
-    behaviour: Behaviour, found: Sequence[Settled], prices: Sequence[SafetyPrice], minimum: Minimum
+    behaviour: Behaviour,
+    found: Sequence[Settled],
+    prices: Sequence[GroupPrice],
+    impossible: Sequence[AtImpossible] = (),
 ) -> Table:
     """For each output how many combinations are open, and what became of them.
 
@@ -39,15 +42,20 @@ def summary_table(
         behaviour: The design.
         found: What `pla.report.audit.audit` found.
         prices: What demanded values cost.
-        minimum: The terms of the design as it is.
+        impossible: What `pla.report.audit.at_impossible` found.
     """
     demanded = [o for o in behaviour.outputs if o.impossible is not None]
     settled = len(behaviour.never) and demanded
+    switched = any(output.enable for output in behaviour.outputs)
+    rows = tuple(_summary_rows(behaviour, found, impossible)) if found or settled else ()
+    width = None if switched else 5
     return Table(
         "Don't-care audit",
-        ("output", "left open by", "combinations", "will be 1", "will be 0"),
-        tuple(_summary_rows(behaviour, found)) if found or settled else (),
-        aligned="llrrr",
+        ("output", "left open by", "combinations", "will be 1", "will be 0", "high impedance")[
+            :width
+        ],
+        tuple(row[:width] for row in rows),
+        aligned="llrrrr"[:width],
         lead=(
             (
                 "Don't cares are freedom, not safety. Where the design leaves an output open, the "
@@ -55,51 +63,109 @@ def summary_table(
                 "are asserted values."
             ),
         ),
-        remarks=tuple(_remarks(behaviour, found, prices, minimum)),
+        remarks=tuple(_remarks(behaviour, found, prices)),
         wrapped=(0,),
         repeated=1,
     )
 
 
 def _summary_rows(
-    behaviour: Behaviour, found: Sequence[Settled]
-) -> Iterator[tuple[str, str, str, str, str]]:
-    impossible = algebra.size(behaviour.never)
+    behaviour: Behaviour, found: Sequence[Settled], impossible: Sequence[AtImpossible]
+) -> Iterator[tuple[str, ...]]:
+    everywhere = algebra.size(behaviour.never)
     for j, output in enumerate(behaviour.outputs):
         own = [s for s in found if s.output == j]
-        if output.impossible is not None and impossible:
-            size = str(impossible)
+        if output.impossible is not None and everywhere:
+            off = sum(found.size for found in impossible if found.output == j and not found.drives)
+            size = str(everywhere - off)
             demanded = (size, "0") if output.impossible else ("0", size)
-            yield output.name, f"impossible, demanded {output.impossible}", size, *demanded
+            why = f"impossible, demanded {output.impossible}"
+            yield output.name, why, str(everywhere), *demanded, str(off)
         for reason in dict.fromkeys(s.reason for s in own):
-            sizes = [sum(s.size for s in own if (s.reason, s.value) == (reason, v)) for v in (0, 1)]
-            yield output.name, _REASONS[reason], str(sum(sizes)), str(sizes[1]), str(sizes[0])
-        if not own and (output.impossible is None or not impossible):
-            yield output.name, "nothing", "0", "0", "0"
+            sizes = [
+                sum(s.size for s in own if (s.reason, s.value) == (reason, value))
+                for value in (1, 0, None)
+            ]
+            yield output.name, _REASONS[reason], str(sum(sizes)), *map(str, sizes)
+        if not own and (output.impossible is None or not everywhere):
+            yield output.name, "nothing", "0", "0", "0", "0"
 
 
 def _remarks(
-    behaviour: Behaviour, found: Sequence[Settled], prices: Sequence[SafetyPrice], minimum: Minimum
+    behaviour: Behaviour, found: Sequence[Settled], prices: Sequence[GroupPrice]
 ) -> Iterator[str]:
     if not found:
         yield "No output is left open anywhere: all that the part does is demanded by the design."
+    yield from _while_disabled(behaviour)
     for price in prices:
-        yield _price(behaviour.outputs[price.output].name, price, minimum)
+        yield _price(behaviour.output_names, price)
 
 
-def _price(name: str, price: SafetyPrice, minimum: Minimum) -> str:
+def _while_disabled(behaviour: Behaviour) -> Iterator[str]:
+    """One line for all outputs that have the same enable."""
+    alike: dict[str, list[str]] = {}
+    for output in behaviour.outputs:
+        if output.enable is not None:
+            alike.setdefault(output.enable.text, []).append(output.name)
+    for text, names in alike.items():
+        value = "its value" if len(names) == 1 else "their values"
+        yield (
+            f"{listed(names)} while disabled (enable {one_line(text)} is 0): high impedance, so "
+            f"{value} there did not matter and {'is' if len(names) == 1 else 'are'} not listed."
+        )
+
+
+def _price(names: Sequence[str], found: GroupPrice) -> str:
+    price, name = found.price, names[found.price.output]
     free = price.freed
     if free is None:
         return (
             f"What impossible = {price.demanded} of {name} costs was not computed: the design is "
             "wide, and its own number of terms not proven smallest."
         )
-    cost = minimum.count - free.terms
+    cost = found.terms - free.terms
     costs = f"costs {plural(cost, 'term')}" if cost > 0 else "costs no term"
-    doubt = "" if free.proven and minimum.proven else " (best sets found, not proven smallest)"
+    doubt = "" if free.proven and found.proven else " (best sets found, not proven smallest)"
+    who, care = ("its sum", "it") if found.alone else ("the design", name)
     return (
-        f"impossible = {price.demanded} of {name} {costs}: the design has {minimum.count}, and "
-        f"would have {free.terms} if {name} did not care about impossible inputs{doubt}."
+        f"impossible = {price.demanded} of {name} {costs}: {who} has {found.terms}, and would have "
+        f"{free.terms} if {care} did not care about impossible inputs{doubt}."
+    )
+
+
+def enable_table(behaviour: Behaviour, found: Sequence[AtImpossible]) -> Table | None:
+    """What outputs that can be switched off do at impossible inputs; ``None`` if there are none.
+
+    Args:
+        behaviour: The design.
+        found: What `pla.report.audit.at_impossible` found.
+    """
+    if not any(output.enable for output in behaviour.outputs):
+        return None
+    groups = groups_of(behaviour.input_names)
+    lead = (
+        "A fight on a bus is not a don't care: where two parts drive one line, both can be "
+        "damaged. This is what each output that can be switched off does at inputs that should "
+        "never occur."
+    )
+    none = () if found else ("No input is impossible.",)
+    return Table(
+        "Enables at impossible inputs",
+        ("output", "the pin", "combinations", "at inputs"),
+        tuple(
+            (
+                behaviour.outputs[entry.output].name,
+                "drives" if entry.drives else "high impedance",
+                str(case.size),
+                case.text,
+            )
+            for entry in found
+            for case in joined_cases(entry.cubes, groups)
+        ),
+        aligned="llrl",
+        lead=(lead, *none, *((_READING,) if found else ())),
+        wrapped=(0, 3),
+        repeated=2,
     )
 
 
@@ -113,7 +179,7 @@ def detail_table(behaviour: Behaviour, found: Sequence[Settled]) -> Table:
             (
                 behaviour.outputs[settled.output].name,
                 _REASONS[settled.reason],
-                str(settled.value),
+                _level(settled.value),
                 str(case.size),
                 case.text,
             )
@@ -152,7 +218,7 @@ def together_table(behaviour: Behaviour, together: Sequence[Together] | None) ->
         return Table(title, headings, (), aligned, lead=(remark,))
     if not together:
         return None
-    alike: dict[tuple[int, ...], list[Cube]] = {}
+    alike: dict[tuple[Level, ...], list[Cube]] = {}
     for entry in together:
         alike.setdefault(entry.values, []).append(entry.cube)
     cases = [
@@ -170,6 +236,7 @@ def together_table(behaviour: Behaviour, together: Sequence[Together] | None) ->
                 "Every input combination that is impossible, or at which some output is open, with "
                 "the values that are demanded there as well: what to expect in a test."
             ),
+            *((_IMPEDANCE,) if any(None in values for _, values in cases) else ()),
         ),
         strips=tuple(
             Strip(column, group.name, ("",), 1)
@@ -180,8 +247,15 @@ def together_table(behaviour: Behaviour, together: Sequence[Together] | None) ->
     )
 
 
-def _output_values(values: Sequence[int], outputs: Sequence[Group]) -> Iterator[str]:
-    bits = "".join(map(str, values))
+_IMPEDANCE = "Z: high impedance, the part does not drive the pin."
+
+
+def _output_values(values: Sequence[Level], outputs: Sequence[Group]) -> Iterator[str]:
+    bits = "".join(map(_level, values))
     for group in outputs:
         own = bits[group.first : group.first + group.size]
         yield f"0b{own}" if group.bits else own
+
+
+def _level(value: Level) -> str:
+    return "Z" if value is None else str(value)

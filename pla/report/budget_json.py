@@ -4,13 +4,17 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING, Any
 
+from pla.report.delays import output_delays, plain_number
+from pla.report.gates import headroom
+
 if TYPE_CHECKING:
     from collections.abc import Collection, Sequence
+    from fractions import Fraction
 
     from pla.behaviour.model import Behaviour
     from pla.errors import Diagnostic
     from pla.fitting.budgets import DeviceBudget
-    from pla.fitting.model import PolarityWish, Usage
+    from pla.fitting.model import Plan, PolarityWish, Usage
 
 __all__ = ["budgets_document"]
 
@@ -62,7 +66,29 @@ def _device(budget: DeviceBudget, catalogue: Collection[str]) -> dict[str, Any]:
         "proven_by": minimum.proven_by if minimum else None,
         "pins": device.pins,
         "fuses": device.fuses,
+        "family": device.family or device.name,
+        **_outputs(budget.fit.plan),
     }
+
+
+def _outputs(plan: Plan | None) -> dict[str, Any]:
+    """Headroom of each output against its cell, passes and delays; null where nothing fits."""
+    if plan is None:
+        return dict.fromkeys(("cells", "delay", "max_delay", "passes"))
+    delays = output_delays(plan)
+    return {
+        "cells": {
+            name: {"used": used, "available": has, "spare": has - used}
+            for name, (used, has) in headroom(plan).items()
+        },
+        "delay": {d.output: _number(d.worst) for d in delays},
+        "max_delay": {d.output: _number(d.asked) for d in delays},
+        "passes": {d.output: d.passes for d in delays},
+    }
+
+
+def _number(value: Fraction | None) -> int | float | None:
+    return None if value is None else plain_number(value)
 
 
 def _usage(usage: Usage, *, known: bool = True) -> dict[str, int | None]:

@@ -4,6 +4,8 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
+from pla.report.delays import nanoseconds, output_delays, plain_number
+from pla.report.gates import headroom_text
 from pla.report.notation import listed, plural
 from pla.report.table import Table
 from pla.report.text import filled, table_text
@@ -11,8 +13,10 @@ from pla.report.verdict import title
 
 if TYPE_CHECKING:
     from collections.abc import Collection, Iterator, Sequence
+    from fractions import Fraction
 
     from pla.behaviour.model import Behaviour
+    from pla.device.model import Device
     from pla.fitting.budgets import DeviceBudget, Resource
     from pla.fitting.model import Usage
 
@@ -50,19 +54,39 @@ def budgets_text(
     ]
     if holding:
         parts.append(table_text(_holding(holding)))
+        outputs = _outputs(holding)
+        parts += [table_text(outputs)] if outputs else []
     if others:
         parts.append(table_text(_others(others)))
     parts += map(filled, _remarks(behaviour, found, catalogue))
     return "\n\n".join(parts)
 
 
+def _by_family(found: Sequence[DeviceBudget]) -> Iterator[tuple[DeviceBudget, str]]:
+    """Devices with their names, modes and variants of one family behind the best of them."""
+    families: dict[str, list[DeviceBudget]] = {}
+    for budget in found:
+        families.setdefault(_family(budget.device), []).append(budget)
+    for first, *others in families.values():
+        yield first, first.device.name
+        for budget in others:
+            yield budget, f"{_INDENT}{budget.device.name}"
+
+
+_INDENT = "\u00a0\u00a0"  # blanks that stay at the start of a cell
+
+
+def _family(device: Device) -> str:
+    return device.family or device.name
+
+
 def _holding(found: Sequence[DeviceBudget]) -> Table:
     rows = []
-    for budget in found:
+    for budget, name in _by_family(found):
         usages = (budget.fit.terms, budget.fit.inputs, budget.fit.outputs)
         cells = [text for u in usages for text in (_used(u), str(u.available - u.used))]
         size = (str(budget.device.pins), str(budget.device.fuses))
-        rows.append((budget.device.name, *cells, budget.tightest, *size))
+        rows.append((name, *cells, budget.tightest, *size))
     return Table(
         "Devices that hold it",
         (
@@ -75,14 +99,63 @@ def _holding(found: Sequence[DeviceBudget]) -> Table:
     )
 
 
+def _outputs(found: Sequence[DeviceBudget]) -> Table | None:
+    """Terms of each output against its cell, passes and delays; ``None`` if there are none."""
+    plans = [(budget.fit.plan, name) for budget, name in _by_family(found)]
+    rows = []
+    for plan, name in plans:
+        if plan is None:
+            continue
+        delays = output_delays(plan)
+        known = [d.worst for d in delays if d.worst is not None]
+        asked = [d.asked for d in delays if d.asked is not None]
+        late = [d.output for d in delays if d.late]
+        rows.append(
+            (
+                name,
+                headroom_text(plan) or "shared terms",
+                str(max(d.passes for d in delays)),
+                nanoseconds(max(known)) if known else "not known",
+                _asked(asked) + (f", too slow: {' '.join(late)}" if late else ""),
+            )
+        )
+    told = any(row[1] != "shared terms" or row[2] != "1" or row[3] != "not known" for row in rows)
+    if not told and not any(row[4] for row in rows):
+        return None
+    width = 5 if any(row[4] for row in rows) else 4
+    headings = ("device", "terms of each output, of its cell", "passes", "worst delay", "may be")
+    return Table(
+        "Outputs on these devices",
+        headings[:width],
+        tuple(row[:width] for row in rows),
+        aligned="llrrl"[:width],
+        wrapped=(1,),
+        remarks=(
+            (
+                "Terms of each output: what its sum takes of the terms that its cell has, least to "
+                "spare first. Passes: how often the longest way from an input to an output goes "
+                "through the array. Worst delay: from any input to any output, by the figures of "
+                "the device file."
+            ),
+        ),
+    )
+
+
+def _asked(delays: Sequence[Fraction]) -> str:
+    if not delays:
+        return ""
+    ends = [plain_number(end) for end in (min(delays), max(delays))]
+    return f"{ends[0]} ns" if ends[0] == ends[1] else f"{ends[0]} to {ends[1]} ns"
+
+
 def _others(found: Sequence[DeviceBudget]) -> Table:
     rows = []
-    for budget in found:
+    for budget, name in _by_family(found):
         known = budget.usages
         resources: tuple[Resource, ...] = ("terms", "inputs", "outputs")
         cells = [_used(known[r]) if r in known else "not known" for r in resources]
         why = "; ".join(budget.reasons)
-        rows.append((budget.device.name, *cells, budget.tightest, f"{why[:1].upper()}{why[1:]}."))
+        rows.append((name, *cells, budget.tightest, f"{why[:1].upper()}{why[1:]}."))
     return Table(
         "Devices that do not",
         ("device", "terms", "inputs", "outputs", "tightest", "why"),
@@ -105,10 +178,21 @@ def _remarks(
     needed = [b.fit.inputs.used for b in found if b.fit.minimum]
     if any(used < len(behaviour.inputs) for used in needed):
         yield "Inputs that no term needs are not counted."
+    yield from _families(found)
     own = [b.device for b in found if b.device.name not in catalogue]
     if own:
         files = listed([f"{device.name} in {device.location.file}" for device in own])
         yield f"Not of the catalogue: {files}."
+
+
+def _families(found: Sequence[DeviceBudget]) -> Iterator[str]:
+    """Which devices are modes or variants of one part."""
+    members: dict[str, list[str]] = {}
+    for budget in found:
+        members.setdefault(_family(budget.device), []).append(budget.device.name)
+    for family, names in members.items():
+        if len(names) > 1:
+            yield f"Modes or variants of one part, {family}, best first: {', '.join(names)}."
 
 
 def _proofs(found: Sequence[DeviceBudget]) -> Iterator[str]:

@@ -4,13 +4,17 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
+from pla.report.layout import broken
 from pla.report.text import one_line
 
 if TYPE_CHECKING:
     from pla.fitting.model import Plan
     from pla.fuses.fusemap import FuseMap
 
-__all__ = ["CAUTIONS", "label"]
+__all__ = ["CAUTIONS", "LABEL_WIDTH", "label"]
+
+LABEL_WIDTH = 24
+"""Characters in a line of a label for a small part."""
 
 # Common practice, no source.
 CAUTIONS = (
@@ -37,11 +41,14 @@ CAUTIONS = (
 
 
 def label(plan: Plan, fuses: FuseMap) -> tuple[str, ...]:
-    """Lines for the part: design and revision, device, fuse checksum."""
-    behaviour = plan.behaviour
-    revision = f", rev {one_line(behaviour.revision)}" if behaviour.revision else ""
-    return (
-        f"{one_line(behaviour.name)}{revision}",
+    """Short lines for the part: design, revision, device, fuse checksum, room for the date."""
+    design = plan.design
+    revision = (f"rev {one_line(design.revision)}",) if design.revision else ()
+    said = (
+        one_line(design.name),
+        *revision,
         one_line(plan.device.name),
         f"fuse checksum {fuses.checksum:04X}",
+        "date ".ljust(LABEL_WIDTH, "_"),
     )
+    return tuple(line for text in said for line in broken(text, LABEL_WIDTH))

@@ -5,6 +5,9 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from pla.report.budget import budget_table
+from pla.report.cautions import label
+from pla.report.delays import delay_table, output_delays
+from pla.report.gates import headroom_text, own_gates
 from pla.report.pins import pin_summary
 from pla.report.text import filled, table_text
 from pla.report.verdict import count_sentences, design_sentences, proof_sentence, title
@@ -24,20 +27,29 @@ def plan_text(fit: Fit, proven: ProvenFile, paths: Sequence[str]) -> str:
     Raises:
         ValueError: If the design does not fit.
     """
-    plan, behaviour = fit.plan, fit.behaviour
+    plan, design = fit.plan, fit.behaviour
     if plan is None:
         raise ValueError("a design that does not fit has no plan")
+    own = own_gates(plan)
     sentences = [
-        " ".join(count_sentences(plan.minimum)),
-        *design_sentences(behaviour, plan.minimum),
+        " ".join(count_sentences(plan.minimum, own)),
+        *design_sentences(plan.behaviour, plan.minimum, own),
+        *([f"Terms of each output, and of its cell: {headroom_text(plan)}."] if any(own) else []),
     ]
+    delays = delay_table(output_delays(plan))
+    signature = f" Signature: {design.signature}." if design.signature is not None else ""
     return "\n\n".join(
         [
-            f"{title(behaviour)}: fits {fit.device.name}",
+            f"{title(design)}: fits {fit.device.name}",
             "\n".join(map(filled, sentences)),
             table_text(budget_table(fit, proven.fuses)),
+            *([table_text(delays)] if delays else []),
             "\n".join(filled(line) for line in pin_summary(plan)),
-            filled(f"{proof_sentence(proven.proof)} Fuse checksum {proven.fuses.checksum:04X}."),
+            filled(
+                f"{proof_sentence(proven.proof)} Fuse checksum {proven.fuses.checksum:04X}."
+                f"{signature}"
+            ),
+            "\n".join(["Label", *(f"  {line}" for line in label(plan, proven.fuses))]),
             "\n".join(["Files", *(f"  {path}" for path in paths)]),
         ]
     )

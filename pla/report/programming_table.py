@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
-from pla.report.notation import groups_of, spans
+from pla.report.notation import groups_of, listed, spans
 from pla.report.table import Strip, Table
 
 if TYPE_CHECKING:
@@ -13,42 +13,64 @@ if TYPE_CHECKING:
     from pla.behaviour.model import Behaviour
     from pla.fitting.model import Plan
     from pla.logic.minimize import Minimum
+    from pla.report.rows import Left, ProgrammedRows
 
 __all__ = ["programming_table"]
 
 _CELL = {"1": "1", "0": "0", "-": "–"}
 
 
-def programming_table(behaviour: Behaviour, minimum: Minimum, plan: Plan | None = None) -> Table:
-    """One row a product term, one column a signal.
+def programming_table(
+    behaviour: Behaviour, minimum: Minimum, programmed: ProgrammedRows | None = None
+) -> Table:
+    """One row a product term, one column a signal; below them the rows that enable outputs.
 
     Args:
-        behaviour: Whose signals they are.
+        behaviour: Whose signals they are, fed-back ones behind the inputs.
         minimum: The terms.
-        plan: Adds pins and the rows of the device.
+        programmed: Adds pins, the rows of the device, the enable rows, and how rows that are not
+            used were left.
     """
+    plan = programmed.plan if programmed else None
     n, m = len(behaviour.inputs), len(behaviour.outputs)
     front = ("term", "row") if plan else ("term",)
-    rows = tuple(
+    rows = [
         (
             *((str(number), str(plan.rows[number - 1])) if plan else (str(number),)),
             *(_CELL[character] for character in cube.text(n)),
             *("1" if cube.outputs >> j & 1 else "–" for j in range(m)),
         )
         for number, cube in enumerate(minimum.cover, 1)
-    )
+    ]
+    if plan is not None:
+        rows += _enable_rows(plan, n, m)
     return Table(
         "Programming table",
         (*front, *behaviour.input_names, *behaviour.output_names),
-        rows,
+        tuple(rows),
         aligned="r" * len(front) + "l" * (n + m),
-        remarks=tuple(_conventions(behaviour, minimum, plan)),
+        remarks=tuple(_conventions(behaviour, minimum, programmed)),
         under=tuple(_under(behaviour, minimum, plan, ("",) * (len(front) - 1))),
         strips=(
             *_strips(behaviour.input_names, len(front), 0),
             *_strips(behaviour.output_names, len(front) + n, 1),
         ),
     )
+
+
+def _enable_rows(plan: Plan, n: int, m: int) -> Iterator[tuple[str, ...]]:
+    """The rows that switch the pins of outputs."""
+    for placed in plan.outputs:
+        row = placed.mode.enable.row
+        if placed.pin is None or row is None:
+            continue
+        text = placed.enable.cube.text(n) if placed.enable is not None else "-" * n
+        yield (
+            f"enable of {placed.name}",
+            str(row),
+            *(_CELL[character] for character in text),
+            *("E" if j == placed.index else "–" for j in range(m)),
+        )
 
 
 def _strips(names: Sequence[str], offset: int, part: int) -> Iterator[Strip]:
@@ -62,14 +84,17 @@ def _under(
 ) -> Iterator[tuple[str, ...]]:
     lows = [i.active_low for i in behaviour.inputs] + [o.active_low for o in behaviour.outputs]
     if plan:
-        pins = [i.pin for i in plan.inputs] + [o.pin for o in plan.outputs]
-        yield "pin", *blank, *("" if pin is None else str(pin) for pin in pins)
+        keys = [i.fed_by if i.pin is None else i.pin for i in plan.inputs]
+        keys += [o.cell.key if o.pin is None else o.pin for o in plan.outputs]
+        yield "pin", *blank, *("" if key is None else str(key) for key in keys)
     yield "active", *blank, *("L" if low else "H" for low in lows)
     senses = ("C" if complemented else "T" for complemented in minimum.complemented)
     yield "sum", *blank, *("",) * len(behaviour.inputs), *senses
 
 
-def _conventions(behaviour: Behaviour, minimum: Minimum, plan: Plan | None) -> Iterator[str]:
+def _conventions(
+    behaviour: Behaviour, minimum: Minimum, programmed: ProgrammedRows | None
+) -> Iterator[str]:
     if not minimum.count:
         yield "There is no product term: every sum is 0."
     yield (
@@ -88,19 +113,48 @@ def _conventions(behaviour: Behaviour, minimum: Minimum, plan: Plan | None) -> I
         else ""
     )
     yield f"Sum T: the sum is the asserted function{complement}."
-    if plan:
-        yield _on_rows(plan)
+    if programmed:
+        yield from _on_cells(programmed.plan)
+        yield from _on_rows(programmed)
 
 
-def _on_rows(plan: Plan) -> str:
-    unused = sorted(set(range(plan.device.terms)) - set(plan.rows))
-    first = "Rows of the device count from 0."
-    if not unused:
-        return f"{first} All are used."
-    left = (
-        "left blank"
-        if plan.device.links.unused_term == "blank"
-        else "made dead, with every line and its complement connected"
+def _on_cells(plan: Plan) -> Iterator[str]:
+    """Signals without a pin of their own, and enable rows."""
+    fed = [signal.name for signal in plan.inputs if signal.fed_by is not None]
+    if fed:
+        verb = "is" if len(fed) == 1 else "are"
+        yield (
+            f"Fed back inside the device, and therefore among the inputs, {verb} {listed(fed)}; "
+            "instead of a pin the cell is named."
+        )
+    if any(o.pin is not None and o.mode.enable.row is not None for o in plan.outputs):
+        yield (
+            "E: the row feeds no sum, it enables the output: the pin is driven while the row is 1. "
+            "One that is – everywhere is always 1."
+        )
+
+
+def _on_rows(programmed: ProgrammedRows) -> Iterator[str]:
+    """How the rows of a shared OR array are left that no term needs."""
+    plan = programmed.plan
+    shared = plan.device.shared_rows
+    unused = sorted(set(shared) - set(plan.rows))
+    all_used = " All are used." if not unused and len(shared) == plan.device.terms else ""
+    alike: dict[str, list[int]] = {}
+    for row in unused:
+        alike.setdefault(_LEFT[programmed.left(row)], []).append(row)
+    left = "".join(
+        f" Row{'' if len(rows) == 1 else 's'} {spans(rows)} {'is' if len(rows) == 1 else 'are'} "
+        f"not used and {how}."
+        for how, rows in alike.items()
     )
-    which = f"Row {spans(unused)} is" if len(unused) == 1 else f"Rows {spans(unused)} are"
-    return f"{first} {which} not used and {left}."
+    yield f"Rows of the device count from 0.{all_used}{left}"
+
+
+_LEFT: dict[Left, str] = {
+    "left blank": "left blank",
+    "dropped": "cut off by a drop link",
+    "dead": "made dead, with every line and its complement connected",
+    "always 1": "left with no line connected",
+    "connected": "left with lines connected",
+}

@@ -4,8 +4,9 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
-from pla.fitting.prices import counts_without
+from pla.fitting.prices import alone_counts, counts_without
 from pla.report.budget import budget_table
+from pla.report.notation import listed, plural
 from pla.report.sharing import shares
 from pla.report.table import Table
 from pla.report.text import filled, table_text
@@ -29,7 +30,10 @@ def refusal_text(fit: Fit, holders: Sequence[Fit]) -> str:
         holders: Devices that hold the design.
     """
     tables = [budget_table(fit)]
-    if fit.minimum is not None and len(fit.behaviour.outputs) > 1:
+    own = fit.device.or_array is None
+    if fit.minimum is not None and own:
+        tables.append(_gates(fit))
+    elif fit.minimum is not None and len(fit.behaviour.outputs) > 1:
         if fit.terms.over:
             tables.append(_term_costs(fit, fit.minimum))
         if fit.inputs.over:
@@ -38,9 +42,50 @@ def refusal_text(fit: Fit, holders: Sequence[Fit]) -> str:
         [
             f"{title(fit.behaviour)}: does not fit {fit.device.name}",
             "\n".join(filled(f"{reason[:1].upper()}{reason[1:]}.") for reason in fit.reasons),
+            *([filled(_released(fit))] if fit.released else []),
             *map(table_text, tables),
             _on_holders(holders),
         ]
+    )
+
+
+def _released(fit: Fit) -> str:
+    """The fewest decided pins that stand in the way."""
+    places = [f"{place.signal} were not placed on pin {place.pin}" for place in fit.released]
+    fewest = " These are the fewest places whose release helps." if len(places) > 1 else ""
+    return f"It would fit if {listed(places)}.{fewest}"
+
+
+def _gates(fit: Fit) -> Table:
+    """Terms that each output needs alone, and those that the cells' OR gates have."""
+    polarities = [p for p in fit.polarities if p is not None]
+    needs = alone_counts(fit.behaviour.function, polarities)
+    placed = {place.signal: place.pin for place in fit.behaviour.places.get(fit.device.name, ())}
+    cells = [cell for cell in fit.device.cells if cell.pin is not None]
+    rows = []
+    for name, need in zip(fit.behaviour.output_names, needs, strict=True):
+        holding = [
+            str(cell.pin)
+            for cell in cells
+            if cell.capacity >= need.terms and placed.get(name, cell.pin) == cell.pin
+        ]
+        fewest = f"{'' if need.proven else 'at most '}{need.terms}"
+        pin = f"pin {placed[name]}" if name in placed else "any"
+        rows.append((name, fewest, pin, " ".join(holding) or "none"))
+    capacities: dict[int, list[str]] = {}
+    for cell in cells:
+        capacities.setdefault(cell.capacity, []).append(str(cell.pin))
+    have = "; ".join(
+        f"{plural(count, 'term')} on {'pin' if len(pins) == 1 else 'pins'} {', '.join(pins)}"
+        for count, pins in sorted(capacities.items(), reverse=True)
+    )
+    return Table(
+        "Terms that each output needs, and the cells that have as many",
+        ("output", "fewest terms", "placed on", "cells with enough, on pins"),
+        tuple(rows),
+        aligned="lrll",
+        wrapped=(0, 3),
+        remarks=(f"The OR gates of the cells have: {have}.",),
     )
 
 

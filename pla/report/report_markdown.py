@@ -8,6 +8,7 @@ from typing import TYPE_CHECKING
 from pla.fuses.program import fuse_file_name
 from pla.report.budget import links_sentence
 from pla.report.cautions import CAUTIONS, label
+from pla.report.gates import own_gates
 from pla.report.markdown import bullets, escaped, table_markdown
 from pla.report.text import one_line
 from pla.report.verdict import count_sentences, design_sentences, proof_sentence, title
@@ -23,28 +24,33 @@ if TYPE_CHECKING:
 __all__ = ["report_markdown"]
 
 
-def report_markdown(plan: Plan, proven: ProvenFile, tables: Sequence[Table]) -> str:
+def report_markdown(
+    plan: Plan, proven: ProvenFile, tables: Sequence[Table], warnings: Sequence[Diagnostic] = ()
+) -> str:
     """The whole report; ends with a newline.
 
     Args:
         plan: The design on its device.
         proven: Its fuse file.
         tables: Pins, programming table and all the others, in order.
+        warnings: What is doubtful about the fit.
     """
-    return "\n\n".join([*_front(plan, proven), *map(table_markdown, tables)]) + "\n"
+    return "\n\n".join([*_front(plan, proven, warnings), *map(table_markdown, tables)]) + "\n"
 
 
-def _front(plan: Plan, proven: ProvenFile) -> Iterator[str]:
-    behaviour, device, minimum, fuses = plan.behaviour, plan.device, plan.minimum, proven.fuses
-    yield f"# {escaped(title(behaviour))}"
+def _front(plan: Plan, proven: ProvenFile, doubts: Sequence[Diagnostic]) -> Iterator[str]:
+    design, device, minimum, fuses = plan.design, plan.device, plan.minimum, proven.fuses
+    own = own_gates(plan)
+    yield f"# {escaped(title(design))}"
     summary = f": {one_line(device.summary)}" if device.summary else ""
     yield bullets(
         [
-            f"Design: {one_line(behaviour.name)}",
-            f"Revision: {one_line(behaviour.revision) or 'not given'}",
+            f"Design: {one_line(design.name)}",
+            f"Revision: {one_line(design.revision) or 'not given'}",
             f"Device: {device.name}{summary}",
-            f"Fuse file: {one_line(fuse_file_name(behaviour))}",
+            f"Fuse file: {one_line(fuse_file_name(design))}",
             f"Fuse checksum: {fuses.checksum:04X}",
+            *([f"Signature: {design.signature}"] if design.signature is not None else []),
         ]
     )
     yield "Label for the part:"
@@ -52,13 +58,13 @@ def _front(plan: Plan, proven: ProvenFile) -> Iterator[str]:
     yield "## Verdict"
     yield bullets(
         [
-            *count_sentences(minimum),
-            *design_sentences(behaviour, minimum),
+            *count_sentences(minimum, own),
+            *design_sentences(plan.behaviour, minimum, own),
             proof_sentence(proven.proof),
             links_sentence(device, fuses),
         ]
     )
-    warnings = [*map(_warning, behaviour.warnings), *map(_warning, device.warnings)]
+    warnings = [*map(_warning, (*design.warnings, *device.warnings, *doubts))]
     if warnings:
         yield "## Warnings"
         yield bullets(warnings)

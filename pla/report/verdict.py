@@ -14,7 +14,7 @@ if TYPE_CHECKING:
     from pla.fuses.proof import Proof
     from pla.logic.minimize import Minimum
 
-__all__ = ["count_sentences", "design_sentences", "proof_sentence", "title"]
+__all__ = ["connections", "count_sentences", "design_sentences", "proof_sentence", "title"]
 
 
 def title(behaviour: Behaviour) -> str:
@@ -23,19 +23,36 @@ def title(behaviour: Behaviour) -> str:
     return one_line(behaviour.name) + revision
 
 
-def count_sentences(minimum: Minimum) -> Iterator[str]:
-    """Number of terms, lower bound, and by what the two are known to meet."""
+def count_sentences(minimum: Minimum, own: Sequence[bool] = ()) -> Iterator[str]:
+    """Number of terms, lower bound, and by what the two are known to meet.
+
+    Args:
+        minimum: The terms.
+        own: For each output whether its OR gate has terms of its own; by default none has.
+    """
     count, bound = plural(minimum.count, "product term"), minimum.lower_bound
+    alone, shared = any(own), not all(own) or not own
     if minimum.proven:
-        yield (
-            f"{count}, and proven to be the fewest: the lower bound is {bound}, no smaller set of "
-            "shared terms will do in any of the polarities that are allowed."
+        smaller = (
+            "no smaller set of shared terms will do in any of the polarities that are allowed"
+            if not alone
+            else "no smaller set of terms will do in any of the polarities that are allowed"
+            if shared
+            else "no smaller sums will do in any polarities that the cells can give together"
         )
+        yield f"{count}, and proven to be the fewest: the lower bound is {bound}, {smaller}."
     else:
         gap = minimum.count - bound
+        smaller = "A smaller set was" if shared else "Smaller sums were"
         yield (
             f"{count}, NOT proven to be the fewest: the lower bound is {bound}, which leaves a gap "
-            f"of {gap}. A smaller set was neither found nor ruled out."
+            f"of {gap}. {smaller} neither found nor ruled out."
+        )
+    if alone:
+        yield (
+            "Terms are counted sum by sum, since "
+            + ("some sums have" if shared else "each sum has")
+            + " an OR gate with terms of its own."
         )
     if minimum.proven_by == "certificate":
         yield "The bound was checked in exact arithmetic (proven by certificate)."
@@ -45,23 +62,40 @@ def count_sentences(minimum: Minimum) -> Iterator[str]:
         yield "The search was cut short by the clock: another run may give another answer."
 
 
-def design_sentences(behaviour: Behaviour, minimum: Minimum) -> Iterator[str]:
-    """Connections, and the polarity of each output."""
-    yield _connections(minimum)
+def design_sentences(
+    behaviour: Behaviour, minimum: Minimum, own: Sequence[bool] = ()
+) -> Iterator[str]:
+    """Connections, and the polarity of each output.
+
+    Args:
+        behaviour: Whose terms they are.
+        minimum: The terms.
+        own: For each output whether its OR gate has terms of its own; by default none has.
+    """
+    yield _connections(minimum, own)
     yield _polarity(behaviour.output_names, minimum.complemented)
 
 
-def _connections(minimum: Minimum) -> str:
-    cover = minimum.cover
-    first = (
-        f"{plural(cover.links, 'connection')}: {plural(cover.literals, 'literal')} and "
-        f"{plural(cover.links - cover.literals, 'OR link')}"
-    )
+def _connections(minimum: Minimum, own: Sequence[bool]) -> str:
     terms = plural(minimum.count, "term")
+    first = connections(minimum, own)
     if minimum.connections is None:
         return f"{first}; whether {terms} can do with fewer is not known."
     where = " in these polarities" if minimum.connections == "these polarities" else ""
     return f"{first}; by the solver's word no set of {terms}{where} has fewer."
+
+
+def connections(minimum: Minimum, own: Sequence[bool] = ()) -> str:
+    """How many links join lines to terms, and terms to sums where these are links."""
+    cover = minimum.cover
+    literals = plural(cover.literals, "literal")
+    shared = [j for j in range(len(minimum.complemented)) if not (own and own[j])]
+    links = sum(len(cover.of_output(j)) for j in shared)
+    if own and not shared:
+        return f"{plural(cover.literals, 'connection')}: {literals}"
+    return (
+        f"{plural(cover.literals + links, 'connection')}: {literals} and {plural(links, 'OR link')}"
+    )
 
 
 def _polarity(names: Sequence[str], complemented: Sequence[bool]) -> str:

@@ -18,7 +18,9 @@ from pla.logic.minimize import minimize
 from pla.report.audit import audit, open_together
 from pla.report.audit_tables import detail_table, summary_table, together_table
 from pla.report.cases import joined_cases
+from pla.report.gates import GroupPrice
 from pla.report.notation import groups_of
+from pla.report.outcome import outcomes_of_minimum
 
 
 def read(design):
@@ -30,7 +32,7 @@ def read(design):
 @given(designs())
 def test_every_open_combination_is_listed_once_with_the_value_that_the_cover_gives(design):
     behaviour, minimum = read(design)
-    found = audit(behaviour, minimum)
+    found = audit(behaviour, outcomes_of_minimum(minimum))
     points = range(len(design.never))
     for j, values in enumerate(design.values):
         for p in points:
@@ -51,7 +53,7 @@ def test_every_open_combination_is_listed_once_with_the_value_that_the_cover_giv
 @given(designs())
 def test_open_inputs_side_by_side(design):
     behaviour, minimum = read(design)
-    together = open_together(behaviour, minimum)
+    together = open_together(behaviour, outcomes_of_minimum(minimum))
     assert together is not None
     for p, impossible in enumerate(design.never):
         is_open = impossible or any(values[p] not in "01" for values in design.values)
@@ -66,7 +68,7 @@ def test_open_inputs_side_by_side(design):
 @given(designs())
 def test_what_the_tables_say_is_what_was_found(design):
     behaviour, minimum = read(design)
-    found = audit(behaviour, minimum)
+    found = audit(behaviour, outcomes_of_minimum(minimum))
     groups = groups_of(behaviour.input_names)
     reasons = {"impossible": "never", "others": "others", "x in a row": "x"}
     seen = set()
@@ -85,7 +87,7 @@ def test_what_the_tables_say_is_what_was_found(design):
         for p, value in enumerate(values)
         if value not in "01"
     }
-    for name, reason, total, ones, zeros in summary_table(behaviour, found, (), minimum).rows:
+    for name, reason, total, ones, zeros in summary_table(behaviour, found, ()).rows:
         assert int(total) == int(ones) + int(zeros)
         own = design.values[behaviour.output_names.index(name)]
         if reason in reasons:
@@ -226,8 +228,9 @@ def behaviour_of(tmp_path, text):
 def test_the_price_of_safety_is_told(tmp_path, freed, proven, words):
     behaviour = behaviour_of(tmp_path, DRYER.format(impossible=0))
     minimum = minimize(behaviour.function)
-    prices = (SafetyPrice(0, 0, None if freed is None else Count(freed, proven)),)
-    table = summary_table(behaviour, audit(behaviour, minimum), prices, minimum)
+    price = SafetyPrice(0, 0, None if freed is None else Count(freed, proven))
+    found = audit(behaviour, outcomes_of_minimum(minimum))
+    table = summary_table(behaviour, found, [GroupPrice(price, minimum.count, minimum.proven)])
     assert any(words in remark for remark in table.remarks)
     assert table.rows == (("fan", "impossible, demanded 0", "1", "0", "1"),)
 
@@ -236,11 +239,11 @@ def test_a_design_without_freedom_says_so(tmp_path):
     text = 'name = "Plain"\n[inputs]\na = 1\n[outputs]\nf = 1\n[logic]\nf = "a"\n'
     behaviour = behaviour_of(tmp_path, text)
     minimum = minimize(behaviour.function)
-    table = summary_table(behaviour, audit(behaviour, minimum), (), minimum)
+    table = summary_table(behaviour, audit(behaviour, outcomes_of_minimum(minimum)), ())
     assert table.rows == ()
     assert "No output is left open anywhere" in table.remarks[0]
     assert "Don't cares are freedom, not safety" in table.lead[0]
-    assert together_table(behaviour, open_together(behaviour, minimum)) is None
+    assert together_table(behaviour, open_together(behaviour, outcomes_of_minimum(minimum))) is None
 
 
 def test_a_long_list_side_by_side_is_left_out_and_says_so(tmp_path):
@@ -254,9 +257,9 @@ def test_a_long_list_side_by_side_is_left_out_and_says_so(tmp_path):
     )
     behaviour = behaviour_of(tmp_path, text)
     minimum = minimize(behaviour.function)
-    assert open_together(behaviour, minimum) is None
+    assert open_together(behaviour, outcomes_of_minimum(minimum)) is None
     table = together_table(behaviour, None)
     assert table is not None
     assert table.rows == ()
     assert "Left out" in table.lead[0]
-    assert sum(s.size for s in audit(behaviour, minimum)) == 256
+    assert sum(s.size for s in audit(behaviour, outcomes_of_minimum(minimum))) == 256
