@@ -2,24 +2,30 @@
 
 from __future__ import annotations
 
-import re
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 from pla.device.consistency import FuseClaim, PinClaim
 from pla.device.limits import known_keys
 from pla.device.model import AndArray, Column, OrArray
+from pla.device.words import (
+    MAX_TERMS,
+    mend_line,
+    named,
+    read_row_numbers,
+    read_step,
+    split_words,
+    word_of,
+)
 
 if TYPE_CHECKING:
-    from collections.abc import Iterator
+    from collections.abc import Iterator, Mapping
 
+    from pla.device.model import Source
     from pla.errors import Location
     from pla.tomlfile import Section
 
-__all__ = ["MAX_TERMS", "ReadAndArray", "ReadOrArray", "read_and_array", "read_or_array"]
-
-MAX_TERMS = 65_536
-_LINE = re.compile(r"([1-9][0-9]{0,5})('?)")
+__all__ = ["ReadAndArray", "ReadOrArray", "read_and_array", "read_or_array", "read_places"]
 
 
 @dataclass(frozen=True, slots=True)
@@ -42,20 +48,28 @@ class ReadAndArray:
                 lambda term=term: _at_row(self.section, term),  # type: ignore[misc]
             )
 
+    def first_columns(self) -> dict[Source, int]:
+        """For each source with a line the index of its first column."""
+        first: dict[Source, int] = {}
+        for index, column in enumerate(self.array.columns):
+            if column is not None:
+                first.setdefault(column.source, index)
+        return first
+
     def pin_claims(self) -> list[PinClaim]:
         """One for each pin with a line, at its first column."""
-        first: dict[int, PinClaim] = {}
-        for index, column in enumerate(self.array.columns):
-            if column is not None and isinstance(column.source, int) and column.source not in first:
-                first[column.source] = PinClaim(
-                    column.source,
-                    f"an input with column {index} of [and]",
-                    lambda index=index: self.at_column(index),  # type: ignore[misc]
-                )
-        return list(first.values())
+        return [
+            PinClaim(
+                source,
+                f"an input with column {index} of [and]",
+                lambda index=index: self.at_column(index),  # type: ignore[misc]
+            )
+            for source, index in self.first_columns().items()
+            if isinstance(source, int)
+        ]
 
     def single_lines(self) -> Iterator[tuple[int, Column]]:
-        """Lines whose pin has no line in the other sense, with their columns."""
+        """Lines whose source has no line in the other sense, with their columns."""
         lines = {line for line in self.array.columns if line is not None}
         for index, line in enumerate(self.array.columns):
             if line is not None and Column(line.source, not line.complement) not in lines:
@@ -74,98 +88,99 @@ class ReadOrArray:
     section: Section
     offsets: tuple[int, ...]
 
-    def claims(self) -> Iterator[FuseClaim]:
-        for term in range(len(self.array.rows)):
-            yield FuseClaim(
-                self.array.fuses_of(term),
-                "OR",
-                lambda column, term=term: (  # type: ignore[misc]
-                    f"OR row {term} column {column} for pin {self.array.sums[column]}"
-                ),
-                lambda term=term: _at_row(self.section, term),  # type: ignore[misc]
-            )
+    def at_column(self, column: int) -> Location:
+        return self.section.inside("columns", self.offsets[column])
 
-    def pin_claims(self) -> list[PinClaim]:
-        """One for each column."""
-        return [
-            PinClaim(
-                pin,
-                f"OR column {column}",
-                lambda column=column: self.section.inside("columns", self.offsets[column]),  # type: ignore[misc]
+    def at_rows(self) -> Location:
+        """The place that says which rows of the AND array it has."""
+        return self.section.at("terms") if "terms" in self.section else self.section.where
+
+    def claims(self) -> Iterator[FuseClaim]:
+        for row in range(len(self.array.rows)):
+            yield FuseClaim(
+                self.array.fuses_of(row),
+                "OR",
+                lambda column, row=row: (  # type: ignore[misc]
+                    f"OR row {row} column {column} for {named(self.array.sums[column])}"
+                ),
+                lambda row=row: _at_row(self.section, row),  # type: ignore[misc]
             )
-            for column, pin in enumerate(self.array.sums)
-        ]
 
 
 def read_and_array(section: Section) -> ReadAndArray | None:
     """The AND array, or ``None`` if something in it is wrong; its errors are reported."""
-    known_keys(
-        section,
-        ["columns", "terms", "first_fuse", "term_step", "rows", "column_step"],
-        {},
-    )
+    known_keys(section, ["columns", "terms", "first_fuse", "term_step", "rows", "column_step"], {})
     columns = _read_lines(section)
     terms = section.integer("terms", low=1, high=MAX_TERMS, required=True)
-    rows = _read_rows(section, terms)
-    step = _read_step(section, "column_step", default=1)
+    rows = read_places(section, terms, "term")
+    step = read_step(section, "column_step", default=1)
     if columns is None or rows is None or step is None:
         return None
     lines, offsets = columns
     return ReadAndArray(AndArray(lines, rows, step), section, offsets)
 
 
-def read_or_array(section: Section, terms: int | None) -> ReadOrArray | None:
-    """The OR array of so many rows, or ``None`` if something in it is wrong.
+def read_or_array(
+    section: Section,
+    count: int | None,
+    free: tuple[int, ...] | None,
+    keys: Mapping[Source, Source],
+    at_count: Location | None = None,
+) -> ReadOrArray | None:
+    """The OR array, or ``None`` if something in it is wrong; its errors are reported.
 
-    `terms` is ``None`` if their number is not known; what is wrong with that is reported elsewhere.
+    Args:
+        section: Where it stands.
+        count: Rows of the AND array; ``None`` if not known, which is reported elsewhere.
+        free: The rows that no cell owns: what it has if it does not say; ``None`` if not known.
+        keys: The key of each cell by every word that names it.
+        at_count: The place that says how many rows there are.
     """
-    known_keys(section, ["columns", "first_fuse", "term_step", "rows", "column_step"], {})
+    known_keys(section, ["columns", "terms", "first_fuse", "term_step", "rows", "column_step"], {})
     columns = _read_sums(section)
-    rows = _read_rows(section, terms)
-    step = _read_step(section, "column_step", default=1)
-    if columns is None or rows is None or step is None:
-        return None
-    pins, offsets = columns
-    return ReadOrArray(OrArray(pins, tuple(range(len(rows))), rows, step), section, offsets)
-
-
-def _split(section: Section) -> list[tuple[str, int]] | None:
-    text = section.text("columns", required=True)
-    if text is None:
-        return None
-    found = [(match[0], match.start()) for match in re.finditer(r"\S+", text)]
-    if not found:
+    terms = free
+    if "terms" in section:
+        terms = read_row_numbers(section, "terms", count, at_count)
+    elif free == ():
         section.error(
-            "COLUMNS-EMPTY", f"'columns' of {section.title} is empty", section.at("columns")
+            "ROWS-NONE",
+            f"no row is left for {section.title}: cells own each row of the AND array",
+            None,
+            "a cell with a column in [or] has no terms of its own",
         )
+        terms = None
+    rows = read_places(section, None if terms is None else len(terms), "row")
+    step = read_step(section, "column_step", default=1)
+    if columns is None or terms is None or rows is None or step is None:
         return None
-    return found
+    sources, offsets = columns
+    sums = tuple(keys.get(source, source) for source in sources)
+    return ReadOrArray(OrArray(sums, terms, rows, step), section, offsets)
 
 
 def _read_lines(
     section: Section,
 ) -> tuple[tuple[Column | None, ...], tuple[int, ...]] | None:
-    words = _split(section)
+    words = split_words(section)
     if words is None:
         return None
     lines: list[Column | None] = []
     good = True
     first: dict[Column, int] = {}
     for index, (word, offset) in enumerate(words):
-        match = _LINE.fullmatch(word)
+        line = word_of(word)
         if word == ".":
             lines.append(None)
-        elif match is None:
+        elif line is None:
             good = False
             section.error(
                 "COLUMN",
-                f"column {index} of [and] is {word!r}, expected a pin such as 5, "
-                "the complement of a pin such as 5', or . for a column with no line",
+                f"column {index} of [and] is {word!r}, expected a pin such as 5 or the name of a "
+                "cell such as b1, the complement of one such as 5', or . for a column with no line",
                 section.inside("columns", offset),
-                _mend_line(word),
+                mend_line(word),
             )
         else:
-            line = Column(int(match[1]), match[2] == "'")
             if first.setdefault(line, index) != index:
                 good = False
                 section.error(
@@ -181,45 +196,35 @@ def _read_lines(
     return (tuple(lines), tuple(offset for _, offset in words)) if good else None
 
 
-def _read_sums(section: Section) -> tuple[tuple[int, ...], tuple[int, ...]] | None:
-    words = _split(section)
+def _read_sums(section: Section) -> tuple[tuple[Source, ...], tuple[int, ...]] | None:
+    words = split_words(section)
     if words is None:
         return None
-    pins: list[int] = []
+    sources: list[Source] = []
     good = True
     for index, (word, offset) in enumerate(words):
-        match = _LINE.fullmatch(word)
-        if match is None or match[2]:
+        line = word_of(word)
+        if line is None or line.complement:
             good = False
             hint = None
-            if match is not None:
+            if line is not None:
                 hint = "whether a pin shows the sum or its complement is said by the cell's modes"
             elif word == ".":
                 hint = "leave the column out, and declare its fuses spare"
             section.error(
                 "COLUMN",
-                f"column {index} of [or] is {word!r}, expected an output pin such as 14",
+                f"column {index} of [or] is {word!r}, expected a cell: its pin such as 14, or its "
+                "name such as b1",
                 section.inside("columns", offset),
                 hint,
             )
         else:
-            pins.append(int(match[1]))
-    return (tuple(pins), tuple(offset for _, offset in words)) if good else None
+            sources.append(line.source)
+    return (tuple(sources), tuple(offset for _, offset in words)) if good else None
 
 
-def _mend_line(word: str) -> str | None:
-    plain = re.sub('[’′`´"]', "'", word)
-    if _LINE.fullmatch(plain):
-        return f"write {plain} with the plain quote"
-    if re.fullmatch("[/!~-][0-9]+", word):
-        return f"write {word[1:]}' for the complement"
-    if "," in word:
-        return "separate columns by blanks"
-    return None
-
-
-def _read_rows(section: Section, terms: int | None) -> tuple[int, ...] | None:
-    """First fuse of each row; `terms` is ``None`` if it is not known."""
+def read_places(section: Section, count: int | None, noun: str) -> tuple[int, ...] | None:
+    """First fuse of each row; `count` is ``None`` if it is not known."""
     regular = [key for key in ("first_fuse", "term_step") if key in section]
     if "rows" in section:
         rows = section.integers("rows", low=0)
@@ -231,13 +236,13 @@ def _read_rows(section: Section, terms: int | None) -> tuple[int, ...] | None:
                 section.key_at(regular[0]),
             )
             return None
-        if rows is None or terms is None:
+        if rows is None or count is None:
             return None
-        if len(rows) != terms:
+        if len(rows) != count:
             section.error(
                 "ROWS-COUNT",
                 f"'rows' of {section.title} lists {len(rows)} first fuses "
-                f"for {terms} term{'s' if terms > 1 else ''}",
+                f"for {count} {noun}{'s' if count > 1 else ''}",
                 section.at("rows"),
             )
             return None
@@ -251,21 +256,11 @@ def _read_rows(section: Section, terms: int | None) -> tuple[int, ...] | None:
         )
         return None
     first = section.integer("first_fuse", low=0, required=True)
-    step = _read_step(section, "term_step")
-    if first is None or step is None or terms is None:
+    step = read_step(section, "term_step")
+    if first is None or step is None or count is None:
         return None
-    return tuple(range(first, first + terms * step, step))
+    return tuple(range(first, first + count * step, step))
 
 
-def _read_step(section: Section, key: str, default: int | None = None) -> int | None:
-    if default is not None and key not in section:
-        return default
-    step = section.integer(key, required=True)
-    if step == 0:
-        section.wrong("a whole number other than 0", key)
-        return None
-    return step
-
-
-def _at_row(section: Section, term: int) -> Location:
-    return section.at("rows", term) if "rows" in section else section.at("first_fuse")
+def _at_row(section: Section, row: int) -> Location:
+    return section.at("rows", row) if "rows" in section else section.at("first_fuse")

@@ -1,62 +1,121 @@
-"""The output cells of a device file: kinds, modes, configuration links."""
+"""The cells of a device file: kinds, configuration links, the rows that each cell owns."""
 
 from __future__ import annotations
 
 from dataclasses import dataclass
-from typing import TYPE_CHECKING, cast
+from typing import TYPE_CHECKING
 
-from pla.device.consistency import FuseClaim, PinClaim
-from pla.device.limits import (
-    BURIED,
-    CELL_LATER,
-    FEEDBACK,
-    KIND_LATER,
-    MODE_LATER,
-    REGISTERS,
-    known_keys,
-    not_yet,
-)
-from pla.device.model import Cell, Mode
+from pla.device.consistency import FuseClaim
+from pla.device.limits import CELL_LATER, KIND_LATER, known_keys
+from pla.device.modes import read_enable, read_modes, read_states
+from pla.device.words import beside, read_row_numbers, spans, usable_name
 
 if TYPE_CHECKING:
     from collections.abc import Iterator
 
-    from pla.device.model import Shows
+    from pla.device.model import Enable, Source
+    from pla.device.modes import RawMode
     from pla.errors import Location
     from pla.tomlfile import Section
 
-__all__ = ["ReadCell", "read_kinds"]
+__all__ = ["RawCell", "ReadKind", "read_kinds"]
 
-_SHOWS = ("sum", "sum'", "none")
-_SHOWS_LATER = ("q", "q'", "pin")
+_CELL_KEYS = ("pin", "name", "links", "rows", "terms", "enable")
 
 
 @dataclass(frozen=True, slots=True)
-class ReadCell:
-    """A cell with the place that says what it is."""
+class RawCell:
+    """A cell as the file gives it.
 
-    cell: Cell
+    Attributes:
+        section: Where it stands.
+        pin: Its pin.
+        name: Its name; a cell has a pin or a name or both.
+        links: Its configuration links.
+        rows: The rows of the AND array that it owns, ascending or as listed.
+        terms: Rows of its OR gate; ``None`` if not given.
+        enable: When its pin is driven, if the cell or its kind says so.
+        enable_section: Where that is said.
+    """
+
     section: Section
+    pin: int | None
+    name: str | None
+    links: tuple[int, ...]
+    rows: tuple[int, ...]
+    terms: tuple[int, ...] | None
+    enable: Enable | None
+    enable_section: Section
 
-    def at_pin(self) -> Location:
-        return self.section.at("pin")
+    @property
+    def key(self) -> Source:
+        return self.pin if self.pin is not None else self.name or ""
+
+    @property
+    def where(self) -> Location:
+        return self.section.at("pin" if self.pin is not None else "name")
+
+    @property
+    def at_rows(self) -> Location:
+        """The place that says which rows it owns."""
+        for key in ("rows", "terms"):
+            if key in self.section:
+                return self.section.at(key)
+        return self.at_enable
+
+    @property
+    def at_enable(self) -> Location:
+        return self.enable_section.at("enable")
+
+    def __str__(self) -> str:
+        return f"the cell on pin {self.pin}" if self.pin is not None else f"cell {self.name}"
+
+
+@dataclass(frozen=True, slots=True)
+class ReadKind:
+    """A kind of cell.
+
+    Attributes:
+        name: Its name.
+        section: Where it stands.
+        bits: Names of the configuration links.
+        modes: What they select.
+        cells: Its cells.
+        unused: States of the links of a cell that nothing uses, if the file says so.
+    """
+
+    name: str
+    section: Section
+    bits: tuple[str, ...]
+    modes: tuple[RawMode, ...]
+    cells: tuple[RawCell, ...]
+    unused: str | None
 
     def claims(self) -> Iterator[FuseClaim]:
-        pin = self.cell.key
-        for index, fuse in enumerate(self.cell.links):
-            yield FuseClaim(
-                (fuse,),
-                f"cell {pin} {index}",
-                lambda _, bit=self.cell.bits[index]: f"link {bit!r} of the cell on pin {pin}",  # type: ignore[misc]
-                lambda index=index: self.section.at("links", index),  # type: ignore[misc]
-            )
-
-    def pin_claim(self) -> PinClaim:
-        return PinClaim(cast("int", self.cell.pin), "an output", self.at_pin)
+        """The configuration links of all cells."""
+        for number, cell in enumerate(self.cells):
+            for index, fuse in enumerate(cell.links):
+                yield FuseClaim(
+                    (fuse,),
+                    f"cell {self.name} {number} {index}",
+                    lambda _, bit=self.bits[index], cell=cell: f"link {bit!r} of {cell}",  # type: ignore[misc]
+                    lambda cell=cell, index=index: cell.section.at("links", index),  # type: ignore[misc]
+                )
 
 
-def read_kinds(top: Section) -> list[ReadCell] | None:
-    """The cells of all kinds, or ``None`` if something in them is wrong."""
+def read_kinds(
+    top: Section, count: int | None, at_count: Location | None
+) -> tuple[list[ReadKind], bool] | None:
+    """The cells of all kinds.
+
+    Args:
+        top: The file.
+        count: Rows of the AND array, if known.
+        at_count: The place that says how many.
+
+    Returns:
+        The kinds that could be read, and whether that is all of them; ``None`` if there is none.
+    """
     if "kind" not in top:
         hint = "add [kind.NAME]: bits, modes and cells of the outputs"
         top.error("KEY-MISSING", "the file has no [kind.NAME]", None, hint)
@@ -67,45 +126,139 @@ def read_kinds(top: Section) -> list[ReadCell] | None:
     if not list(kinds):
         top.error("KEY-MISSING", "[kind] describes no kind of output cell", kinds.where)
         return None
-    found: list[ReadCell] = []
+    found: list[ReadKind] = []
     good = True
     for name in kinds:
-        kind = kinds.section(name)
-        cells = None if kind is None else _read_kind(name, kind)
-        if cells is None:
+        section = kinds.section(name)
+        kind = None if section is None else _read_kind(name, section, count, at_count)
+        if kind is None:
             good = False
         else:
-            found.extend(cells)
-    return found if good else None
+            found.append(kind)
+    return found, good
 
 
-def _read_kind(name: str, kind: Section) -> list[ReadCell] | None:
-    known_keys(kind, ["bits", "modes", "cells"], KIND_LATER)
+def _read_kind(
+    name: str, kind: Section, count: int | None, at_count: Location | None
+) -> ReadKind | None:
+    known_keys(kind, ["bits", "modes", "cells", "enable", "unused"], KIND_LATER)
     bits = _read_bits(kind)
-    modes = _read_modes(kind, bits)
-    cells: list[ReadCell] = []
+    enable = read_enable(kind, count) if "enable" in kind else None
     sections = kind.sections("cells", required=True)
-    good = bits is not None and modes is not None and len(sections) == _listed(kind, "cells")
-    if "cells" in kind and not sections and kind.data["cells"] == []:
+    listed = kind.data.get("cells")
+    good = isinstance(listed, list) and len(sections) == len(listed)
+    if listed == []:
         kind.error("KIND-EMPTY", f"{kind.title} has no cells", kind.at("cells"))
+    pins_needed = any("pin" in section for section in sections) or not sections
+    modes = read_modes(kind, bits, pins_needed)
+    cells: list[RawCell] = []
     for section in sections:
-        known_keys(section, ["pin", "links"], CELL_LATER)
-        if "pin" not in section:
-            not_yet(section, BURIED, section.where, f"{section.title} has no 'pin'")
-            good = False
-            continue
-        pin = section.integer("pin", low=1)
-        links = _read_links(section, bits)
-        if pin is None or links is None or bits is None or modes is None:
+        cell = _read_cell(section, kind, enable, bits, count, at_count)
+        if cell is None:
             good = False
         else:
-            cells.append(ReadCell(Cell(pin, pin, name, links, modes, bits), section))
-    return cells if good and cells else None
+            cells.append(cell)
+    unused = _read_unused(kind, bits, modes) if "unused" in kind else None
+    if bits is None or modes is None or not good or not cells:
+        return None
+    return ReadKind(name, kind, bits, tuple(modes), tuple(cells), unused)
 
 
-def _listed(kind: Section, key: str) -> int:
-    value = kind.data.get(key)
-    return len(value) if isinstance(value, list) else 0
+def _read_cell(
+    section: Section,
+    kind: Section,
+    kind_enable: Enable | None,
+    bits: tuple[str, ...] | None,
+    count: int | None,
+    at_count: Location | None,
+) -> RawCell | None:
+    known_keys(section, _CELL_KEYS, CELL_LATER)
+    before = len(section.diagnostics.errors)
+    if "pin" not in section and "name" not in section:
+        section.error(
+            "KEY-MISSING",
+            f"{section.title} has no 'pin' and no 'name'",
+            None,
+            'add pin = …; a cell without a pin has a name, as in name = "b1"',
+        )
+    pin = section.integer("pin", low=1)
+    name = section.text("name")
+    if name is not None and not usable_name(name):
+        section.error(
+            "CELL-NAME",
+            f"the name {name!r} is not usable, expected letters, digits and _, a letter first",
+            section.at("name"),
+        )
+    links = _read_links(section, bits)
+    terms = read_row_numbers(section, "terms", count, at_count) if "terms" in section else None
+    enable, said = kind_enable, kind
+    if "enable" in section:
+        enable, said = read_enable(section, count), section
+        if pin is None and "pin" not in section:
+            section.error(
+                "ENABLE-NO-PIN",
+                f"{section.title} has 'enable', but no pin that could be driven",
+                section.key_at("enable"),
+            )
+    rows = _read_owned(section, pin, terms, enable, count, at_count)
+    if links is None or rows is None or len(section.diagnostics.errors) > before:
+        return None
+    return RawCell(
+        section,
+        pin,
+        name,
+        links,
+        rows,
+        tuple(sorted(terms)) if terms is not None else None,
+        enable if pin is not None else None,
+        said,
+    )
+
+
+def _read_owned(
+    section: Section,
+    pin: int | None,
+    terms: tuple[int, ...] | None,
+    enable: Enable | None,
+    count: int | None,
+    at_count: Location | None,
+) -> tuple[int, ...] | None:
+    """The rows that a cell owns: as ``rows`` lists them, else its terms and its enable."""
+    row = enable.row if enable is not None and pin is not None else None
+    used = {*(terms or ()), *(() if row is None else (row,))}
+    if "rows" not in section:
+        return tuple(sorted(used))
+    rows = read_row_numbers(section, "rows", count, at_count)
+    if rows is None:
+        return None
+    outside = sorted(used.difference(rows))
+    if outside:
+        key = "terms" if set(outside) <= set(terms or ()) and "terms" in section else "enable"
+        at = section.at(key) if key in section else section.where
+        section.error(
+            "ROW-OUTSIDE",
+            f"row {spans(outside)} in {key!r} of {section.title} is not among its "
+            f"'rows'{beside(section.at('rows'), at)}: {spans(sorted(rows))}",
+            at,
+            "'rows' lists all rows that the cell owns",
+        )
+        return None
+    return tuple(rows)
+
+
+def _read_unused(
+    kind: Section, bits: tuple[str, ...] | None, modes: list[RawMode] | None
+) -> str | None:
+    states = read_states(kind, "unused", bits)
+    if states is None or modes is None or any(mode.set == states for mode in modes):
+        return states
+    known = ", ".join(mode.set for mode in modes)
+    kind.error(
+        "UNUSED-MODE",
+        f'unused = "{states}" of {kind.title} is none of its modes: {known}',
+        kind.at("unused"),
+    )
+    return None
 
 
 def _read_bits(kind: Section) -> tuple[str, ...] | None:
@@ -133,96 +286,12 @@ def _read_links(section: Section, bits: tuple[str, ...] | None) -> tuple[int, ..
         return None
     if len(links) != len(bits):
         expected = f"{len(bits)} ({', '.join(bits)})" if bits else "none"
+        on = "the cell on pin" if "pin" in section else "cell"
         section.error(
             "LINKS-COUNT",
-            f"the cell on pin {section.data['pin']} has {len(links)} "
+            f"{on} {section.data.get('pin', section.data.get('name'))} has {len(links)} "
             f"link{'' if len(links) == 1 else 's'}, expected {expected} as 'bits' of its kind says",
             section.at("links"),
         )
         return None
     return tuple(links)
-
-
-def _read_modes(kind: Section, bits: tuple[str, ...] | None) -> tuple[Mode, ...] | None:
-    sections = kind.sections("modes", required=True)
-    if "modes" in kind and kind.data["modes"] == []:
-        kind.error("KIND-EMPTY", f"{kind.title} has no modes", kind.at("modes"))
-    modes: list[Mode] = []
-    good = bool(sections) and len(sections) == _listed(kind, "modes")
-    first: dict[str, Section] = {}
-    for section in sections:
-        mode = _read_mode(section, bits)
-        if mode is None:
-            good = False
-            continue
-        known = first.setdefault(mode.set, section)
-        if known is not section:
-            good = False
-            section.error(
-                "MODE-TWICE",
-                f'two modes of {kind.title} have set = "{mode.set}": this one and the one '
-                f"on line {known.at('pin').line} of the file",
-                section.at("set") if "set" in section else section.where,
-                "each mode has states of its own",
-            )
-        modes.append(mode)
-    if not good:
-        return None
-    return tuple(modes) if _judge_modes(kind, modes, sections) else None
-
-
-def _judge_modes(kind: Section, modes: list[Mode], sections: list[Section]) -> bool:
-    if all(mode.pin == "none" for mode in modes):
-        kind.error(
-            "MODE-NONE",
-            f"no mode of {kind.title} shows the sum at the pin",
-            kind.at("modes"),
-            'expected at least one with pin = "sum" or pin = "sum\'"',
-        )
-        return False
-    for index, mode in enumerate(modes):
-        earlier = next((m for m in modes[:index] if m.pin == mode.pin), None)
-        if earlier is not None:
-            kind.diagnostics.warning(
-                "MODE-SAME",
-                f'modes "{earlier.set}" and "{mode.set}" of {kind.title} do the same: '
-                f"the pin shows {mode.pin}",
-                sections[index].at("pin"),
-                "is the sense of one of them wrong?",
-            )
-    return True
-
-
-def _read_mode(section: Section, bits: tuple[str, ...] | None) -> Mode | None:
-    known_keys(section, ["set", "pin"], MODE_LATER)
-    states: str | None = ""
-    if "set" in section or bits:
-        states = section.text("set", required=True)
-    good = states is not None
-    if states is not None:
-        wrong = next((i for i, c in enumerate(states) if c not in "01"), None)
-        if wrong is not None:
-            good = False
-            section.error(
-                "MODE-SET",
-                f"'set' has {states[wrong]!r} where a link is 0 (closed) or 1 (open)",
-                section.inside("set", wrong),
-            )
-        elif bits is not None and len(states) != len(bits):
-            good = False
-            expected = f"{len(bits)} ({', '.join(bits)})" if bits else "none"
-            section.error(
-                "MODE-SET",
-                f"'set' has {len(states)} state{'' if len(states) == 1 else 's'}, "
-                f"expected {expected} as 'bits' of its kind says",
-                section.at("set"),
-            )
-    if section.data.get("pin") in _SHOWS_LATER:
-        found = f'pin = "{section.data["pin"]}"'
-        what = FEEDBACK if section.data["pin"] == "pin" else REGISTERS
-        not_yet(section, what, section.at("pin"), found)
-        return None
-    shows = section.choice("pin", _SHOWS, required=True)
-    if shows is None or not good:
-        return None
-    return Mode(cast("str", states), cast("Shows", shows))

@@ -11,10 +11,11 @@ from dataclasses import dataclass
 from itertools import chain
 from typing import TYPE_CHECKING
 
-if TYPE_CHECKING:
-    from collections.abc import Callable, Collection, Iterable, Sequence
+from pla.device.words import beside, order, spans
 
-    from pla.device.model import Device
+if TYPE_CHECKING:
+    from collections.abc import Callable, Collection, Sequence
+
     from pla.errors import Diagnostics, Location
 
 __all__ = [
@@ -22,8 +23,6 @@ __all__ = [
     "PinClaim",
     "check_fuses",
     "check_pins",
-    "check_rows",
-    "check_sums",
     "spans",
 ]
 
@@ -54,20 +53,6 @@ class PinClaim:
     pin: int
     role: str
     where: Callable[[], Location]
-
-
-def spans(numbers: Iterable[int], shown: int = _SHOWN) -> str:
-    """Ascending numbers as ``3, 5..7``; no more than `shown` of them."""
-    parts: list[list[int]] = []
-    for number in numbers:
-        if parts and parts[-1][1] == number - 1:
-            parts[-1][1] = number
-        else:
-            parts.append([number, number])
-    texts = [str(a) if a == b else f"{a}..{b}" for a, b in parts[:shown]]
-    if len(parts) > shown:
-        texts.append(f"and {len(parts) - shown} more ranges")
-    return ", ".join(texts)
 
 
 def check_fuses(
@@ -115,7 +100,8 @@ def _report_out_of_range(
         diagnostics.error(
             "FUSE-RANGE",
             f"fuse {claim.fuses[index]}, {claim.words(index)}, does not exist: fuses go from 0 to "
-            f"{count - 1}, as 'fuses' says{_line(at_count)}{_likewise(number[group] - 1)}",
+            f"{count - 1}, as 'fuses' says{beside(at_count, claim.where())}"
+            f"{_likewise(number[group] - 1)}",
             claim.where(),
         )
 
@@ -133,12 +119,12 @@ def _report_overlaps(claims: Sequence[FuseClaim], diagnostics: Diagnostics) -> N
             found.setdefault(key, (known, (claim, index)))
             number[key] += 1
     for key, pair in found.items():
-        (one, i), (other, k) = sorted(pair, key=lambda use: _order(use[0].where()))
+        (one, i), (other, k) = sorted(pair, key=lambda use: order(use[0].where()))
         fuse = one.fuses[i]
         diagnostics.error(
             "FUSE-OVERLAP",
-            f"fuse {fuse} is {one.words(i)}{_line(one.where())} and {other.words(k)}"
-            f"{_likewise(number[key] - 1)}",
+            f"fuse {fuse} is {one.words(i)}{beside(one.where(), other.where())} and "
+            f"{other.words(k)}{_likewise(number[key] - 1)}",
             other.where(),
         )
 
@@ -153,17 +139,17 @@ def check_pins(
             diagnostics.error(
                 "PIN-RANGE",
                 f"pin {claim.pin}, {claim.role}, does not exist: pins go from 1 to {count}, "
-                f"as 'pins' says{_line(at_count)}",
+                f"as 'pins' says{beside(at_count, claim.where())}",
                 claim.where(),
             )
             continue
         known = first.setdefault(claim.pin, claim)
         if known is not claim:
-            one, other = sorted((known, claim), key=lambda c: _order(c.where()))
+            one, other = sorted((known, claim), key=lambda c: order(c.where()))
             again = f"and {other.role}" if one.role != other.role else "and here again"
             diagnostics.error(
                 "PIN-TWICE",
-                f"pin {claim.pin} is {one.role}{_line(one.where())} {again}",
+                f"pin {claim.pin} is {one.role}{beside(one.where(), other.where())} {again}",
                 other.where(),
                 "a pin has one role",
             )
@@ -178,81 +164,6 @@ def check_pins(
             at_count,
             f"if nothing is connected there, say unconnected = [{shown}]",
         )
-
-
-def check_sums(
-    columns: Sequence[PinClaim], cells: Sequence[PinClaim], diagnostics: Diagnostics
-) -> None:
-    """Report OR columns without a cell, cells without an OR column, and columns given twice."""
-    first: dict[int, PinClaim] = {}
-    with_cell = {cell.pin for cell in cells}
-    for column in columns:
-        known = first.setdefault(column.pin, column)
-        if known is not column:
-            diagnostics.error(
-                "COLUMN-TWICE",
-                f"{column.role} is for pin {column.pin}, and so is {known.role}"
-                f"{_line(known.where())}",
-                column.where(),
-                "a sum has one column",
-            )
-        elif column.pin not in with_cell:
-            outputs = spans(sorted(with_cell)) or "none"
-            diagnostics.error(
-                "SUM-NO-CELL",
-                f"{column.role} is for pin {column.pin}, which has no cell; "
-                f"cells are on: {outputs}",
-                column.where(),
-                f"add {{ pin = {column.pin}, … }} to the cells of a [kind.NAME]",
-            )
-    for cell in cells:
-        if cell.pin not in first:
-            diagnostics.error(
-                "CELL-NO-SUM",
-                f"{cell.role} has no column in [or]; columns are for pins: "
-                f"{spans(sorted(first)) or 'none'}",
-                cell.where(),
-                f"add {cell.pin} to the columns of [or]",
-            )
-
-
-def check_rows(device: Device, at_unused: Location, diagnostics: Diagnostics) -> None:
-    """Report an unused row that would not stay out of the sums.
-
-    A row with a line and its complement connected is always 0, one with no line connected always
-    1 (the empty product). AND and OR links share their senses, so a blank row that is always 1
-    has no connected OR link and reaches no sum; one that is always 0 may reach every sum. What is
-    left, and fatal, are blank rows of an array in which no pin has both lines: they follow the
-    inputs, and all their OR links are connected.
-    """
-    unused = device.links.unused_term
-    if device.paired_sources:
-        return
-    if unused == "dead":
-        diagnostics.error(
-            "ROW-NOT-DEAD",
-            "unused_term is 'dead', but no pin has both a true and a complement line, "
-            "so no row can be made dead",
-            at_unused,
-            "a dead row has a line and its complement connected",
-        )
-    elif device.blank_row == "live":
-        diagnostics.error(
-            "ROW-LIVE",
-            "unused_term is 'blank', but a blank row is not dead: all its lines are connected, no "
-            "pin has both a true and a complement line, and its OR links are connected; every "
-            "unused row would add the AND of all lines to every sum",
-            at_unused,
-            "look again at the columns of [and], and at blank and connected",
-        )
-
-
-def _order(at: Location) -> tuple[int, int]:
-    return at.line or 0, at.column or 0
-
-
-def _line(at: Location) -> str:
-    return f" (line {at.line} of the file)" if at.line is not None else ""
 
 
 def _likewise(more: int) -> str:

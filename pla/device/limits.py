@@ -11,15 +11,13 @@ if TYPE_CHECKING:
     from pla.tomlfile import Section
 
 __all__ = [
-    "BURIED",
     "CELL_LATER",
-    "DROP",
-    "FEEDBACK",
     "KIND_LATER",
     "LATER",
     "MODE_LATER",
-    "OWN_TERMS",
     "REGISTERS",
+    "SHOWS_LATER",
+    "TIMING_LATER",
     "TOP_LATER",
     "known_keys",
     "not_yet",
@@ -28,43 +26,13 @@ __all__ = [
 LATER = "NOT-YET"
 
 REGISTERS = "registers are"
-OWN_TERMS = "cells with OR gates of their own are"
-FEEDBACK = "feedback is"
-DROP = "links that drop a whole term are"
-BURIED = "cells without a pin are"
-_ENABLES = "output enables are"
-_BY_MODE = "columns that differ by mode are"
 
-TOP_LATER = {
-    "register": REGISTERS,
-    "extends": "device files that extend another are",
-    "set": "device-wide modes are",
-    "signature": "signature fuses are",
-    "timing": "timings are",
-    "enable": _ENABLES,
-    "drop": DROP,
-}
-KIND_LATER = {
-    "register": REGISTERS,
-    "enable": _ENABLES,
-    "terms": OWN_TERMS,
-    "columns": _BY_MODE,
-    "drop": DROP,
-}
-MODE_LATER = {
-    **dict.fromkeys("dtjksr", REGISTERS),
-    "feedback": FEEDBACK,
-    "terms": OWN_TERMS,
-    "enable": _ENABLES,
-    "columns": _BY_MODE,
-}
-CELL_LATER = {
-    "enable": _ENABLES,
-    "terms": OWN_TERMS,
-    "clock": REGISTERS,
-    "reset": REGISTERS,
-    "preset": REGISTERS,
-}
+TOP_LATER = {"register": REGISTERS}
+KIND_LATER = dict.fromkeys(("register", "clock", "reset", "preset"), REGISTERS)
+MODE_LATER = dict.fromkeys(("d", "t", "j", "k", "s", "r", "clock", "reset", "preset"), REGISTERS)
+CELL_LATER = dict.fromkeys(("register", "clock", "reset", "preset"), REGISTERS)
+TIMING_LATER = dict.fromkeys(("tco", "tsu", "th", "fmax"), REGISTERS)
+SHOWS_LATER = ("q", "q'")
 
 
 def not_yet(
@@ -78,7 +46,7 @@ def not_yet(
         LATER,
         f"{found}: {what} not supported yet",
         location,
-        hint or "this version plans for arrays with shared OR gates and combinational outputs",
+        hint or "this version plans for arrays with combinational outputs",
     )
 
 

@@ -468,22 +468,41 @@ class Device:
 
     @cached_property
     def paired_sources(self) -> tuple[Source, ...]:
-        """Sources that have both a true and a complement column, in order of the columns."""
+        """Sources with a true and a complement column that are opposite in every mode.
+
+        In order of the columns. A row that is connected to both is always 0.
+        """
         return tuple(
             source
             for source, prime in self.column_of
-            if not prime and (source, True) in self.column_of
+            if not prime and (source, True) in self.column_of and self._opposite(source)
         )
+
+    def _opposite(self, source: Source) -> bool:
+        pair = self.column_of[source, False], self.column_of[source, True]
+        for cell in self.cells:
+            given = [dict(mode.lines) for mode in cell.modes]
+            if any(column in lines for lines in given for column in pair):
+                carried = [[lines.get(column) for column in pair] for lines in given]
+                return all(a is not None and b == a.inverse for a, b in carried)
+        return True
 
     @property
     def blank_row(self) -> BlankRow:
-        """What a row of a blank part is worth.
+        """What a row of a blank part without a drop link is worth, or any if all rows have one.
 
         A row that its drop link cuts off is 0, and so is one with a line and its complement
         connected. A row without a connected line is the empty product, 1. A row that connects no
         such pair depends on its inputs.
         """
-        if self.drop is not None and self.drop.dropped == self.links.blank:
+        drops = () if self.drop is None else self.drop.terms
+        bare = next((row for row in range(self.terms) if row not in drops), 0)
+        return self.blank_row_at(bare)
+
+    def blank_row_at(self, row: int) -> BlankRow:
+        """What this row of a blank part is worth; see `blank_row`."""
+        drop = self.drop
+        if drop is not None and drop.dropped == self.links.blank and drop.fuse(row) is not None:
             return "dead"
         if not self.links.blank_connected or not self.column_of:
             return "true"

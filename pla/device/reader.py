@@ -2,35 +2,44 @@
 
 from __future__ import annotations
 
-import re
-from typing import TYPE_CHECKING, Literal, cast
+from typing import TYPE_CHECKING, cast
 
-from pla.device.arrays import MAX_TERMS, read_and_array, read_or_array
+from pla.device.arrays import read_and_array, read_or_array
 from pla.device.cells import read_kinds
-from pla.device.consistency import (
-    FuseClaim,
-    PinClaim,
-    check_fuses,
-    check_pins,
-    check_rows,
-    check_sums,
+from pla.device.consistency import check_fuses
+from pla.device.extras import read_drop, read_mode_fuses, read_signature, read_timing
+from pla.device.header import (
+    read_header,
+    read_links,
+    read_spare,
+    refuse_design,
+    spare_claims,
+    table,
 )
-from pla.device.limits import DROP, FEEDBACK, LATER, OWN_TERMS, TOP_LATER, known_keys, not_yet
-from pla.device.model import Device, Links
+from pla.device.layers import layered
+from pla.device.limits import LATER, TOP_LATER, known_keys
+from pla.device.model import Device
+from pla.device.pins import check_names, check_roles, keys_of, warn_of_single_lines
+from pla.device.resolve import resolve
+from pla.device.rows import check_columns, check_owners, check_unused, free_rows
 from pla.device.spacing import report_missing_columns, report_wrong_steps
-from pla.errors import Diagnostic, Diagnostics, InternalError
+from pla.device.words import MAX_TERMS, beside
+from pla.errors import Diagnostic, Diagnostics, InternalError, by_place
 from pla.tomlfile import Section, read_toml
 
 if TYPE_CHECKING:
     from pla.device.arrays import ReadAndArray, ReadOrArray
-    from pla.device.cells import ReadCell
+    from pla.device.cells import RawCell, ReadKind
+    from pla.device.consistency import FuseClaim
+    from pla.device.header import Header, Technology
+    from pla.device.layers import LayeredFile
+    from pla.device.model import Links
+    from pla.device.resolve import ReadCell
     from pla.errors import Location
     from pla.tomlfile import TomlFile
 
 __all__ = ["device_from", "read_device"]
 
-MAX_FUSES = 1_000_000
-MAX_PINS = 1_000
 _KEYS = (
     "name",
     "summary",
@@ -41,19 +50,25 @@ _KEYS = (
     "power",
     "unconnected",
     "spare",
+    "extends",
+    "family",
+    "set",
     "links",
     "and",
     "or",
+    "drop",
     "kind",
+    "signature",
+    "timing",
 )
-_NAME = re.compile(r"[A-Za-z0-9](?:[A-Za-z0-9._-]*[A-Za-z0-9])?")
 
 
 def read_device(path: str) -> Device:
     """The device that a file describes, checked as a whole.
 
     Raises:
-        InputError: If the file cannot be read or is wrong, with every error in one go.
+        InputError: If the file or one that it extends cannot be read or is wrong, with every
+            error in one go.
     """
     return device_from(read_toml(path))
 
@@ -64,257 +79,207 @@ def device_from(file: TomlFile) -> Device:
     Raises:
         InputError: If it is wrong, with every error in one go.
     """
-    diagnostics = Diagnostics()
-    top = Section.top(file, diagnostics)
-    _refuse_design(top)
-    known_keys(top, _KEYS, TOP_LATER)
-    name = _read_name(top)
-    summary = top.text("summary", default="")
-    technology = top.choice("technology", ("one-time", "erasable"), required=True)
-    pins = top.integer("pins", low=1, high=MAX_PINS, required=True)
-    fuses = top.integer("fuses", low=1, high=MAX_FUSES, required=True)
-    ground = top.integer("ground", low=1, required=True)
-    power = top.integer("power", low=1, required=True)
-    unconnected = top.integers("unconnected", low=1) if "unconnected" in top else []
-    spare = _read_spare(top, fuses)
-    links = _read_links(top)
-    and_array = _read_and(top)
-    or_array = _read_or(top)
-    cells = read_kinds(top)
+    return _Reader(layered(file)).device()
 
-    if any(d.code == LATER for d in diagnostics.found):
-        # What is left out would show up as gaps and idle pins, which would only mislead.
+
+class _Reader:
+    """Reads each part of a file, then holds the parts against each other."""
+
+    def __init__(self, file: LayeredFile) -> None:
+        self.file = file
+        self.diagnostics = Diagnostics()
+        self.top = Section.top(file, self.diagnostics)
+
+    def device(self) -> Device:
+        top, diagnostics = self.top, self.diagnostics
+        refuse_design(top)
+        known_keys(top, _KEYS, TOP_LATER)
+        header = read_header(top, self.file)
+        spare = read_spare(top, header.fuses)
+        links = read_links(top)
+        section = table(top, "and", "the columns, number and fuses of the product terms")
+        and_array = None if section is None else read_and_array(section)
+        kinds, all_kinds = read_kinds(top, self.count, self.at_count) or ([], False)
+        cells = [cell for kind in kinds for cell in kind.cells]
+        or_array = self._or_array(cells, all_kinds)
+        drop = read_drop(top, self.count, self.at_count)
+        mode_fuses = read_mode_fuses(top)
+        signature = read_signature(top)
+        timing = read_timing(top)
+        if any(d.code == LATER for d in diagnostics.found):
+            # What is left out would show up as gaps and idle pins, which would only mislead.
+            diagnostics.stop_on_error()
+
+        resolved: list[ReadCell] | None = None
+        if all_kinds:
+            self._check_pins(header, and_array, kinds)
+            if or_array:
+                check_columns(or_array, keys_of(cells), diagnostics)
+        arrays = and_array is not None and ("or" not in top or or_array is not None)
+        if all_kinds and and_array and arrays and self._sums_known(kinds, or_array):
+            resolved = self._resolve(kinds, and_array, or_array)
+            if header.fuses and spare is not None and mode_fuses is not None:
+                claims = [
+                    *(claim for kind in kinds for claim in kind.claims()),
+                    *(drop.claims() if drop else ()),
+                    *mode_fuses.claims(),
+                    *(signature.claims() if signature else ()),
+                    *spare_claims(spare),
+                ]
+                self._check_fuses(header.fuses, and_array, or_array, claims)
+        if and_array:
+            warn_of_single_lines(and_array, cells, diagnostics)
+        self._check_enable_filling(links, resolved or [])
+        if (
+            not header.complete
+            or spare is None
+            or links is None
+            or and_array is None
+            or resolved is None
+            or mode_fuses is None
+        ):
+            diagnostics.stop_on_error()
+            fault = "a part of the device file is missing, and no error says so"
+            raise InternalError([Diagnostic("INTERNAL", fault, top.where)])
+        supplies = cast("dict[str, tuple[int, ...]]", header.supplies)
+        device = Device(
+            name=cast("str", header.name),
+            summary=header.summary,
+            technology=cast("Technology", header.technology),
+            pins=cast("int", header.pins),
+            fuses=cast("int", header.fuses),
+            ground=supplies["ground"],
+            power=supplies["power"],
+            unconnected=supplies["unconnected"],
+            links=links,
+            and_array=and_array.array,
+            or_array=None if or_array is None else or_array.array,
+            cells=tuple(c.cell for c in resolved),
+            spare=tuple(r for r, _ in spare),
+            location=top.where,
+            warnings=tuple(sorted(diagnostics.warnings, key=by_place)),
+            drop=None if drop is None else drop.drop,
+            mode_fuses=mode_fuses.fuses,
+            family=cast("str", header.family),
+            signature=None if signature is None else signature.signature,
+            timing=timing,
+        )
+        if not diagnostics.errors:
+            check_unused(device, lambda key: self.file.at(("links", key)), diagnostics)
         diagnostics.stop_on_error()
-    if pins and ground and power and unconnected is not None and and_array and cells:
-        supplies = {"ground": ground, "power": power}
-        _check_pins(top, pins, supplies, unconnected, and_array, cells)
-    if or_array and cells:
-        check_sums(or_array.pin_claims(), [_cell_claim(c) for c in cells], diagnostics)
-    if fuses and and_array and or_array and cells and spare is not None:
-        _check_fuses(top, fuses, and_array, or_array, cells, spare)
-    if and_array:
-        _warn_of_single_lines(and_array, diagnostics)
-    if not (name and technology and pins and fuses and ground and power) or not (
-        unconnected is not None and spare is not None and links and and_array and or_array and cells
-    ):
-        diagnostics.stop_on_error()
-        fault = "a part of the device file is missing, and no error says so"
-        raise InternalError([Diagnostic("INTERNAL", fault, top.where)])
-    device = Device(
-        name=name,
-        summary=summary,
-        technology=cast("Literal['one-time', 'erasable']", technology),
-        pins=pins,
-        fuses=fuses,
-        ground=(ground,),
-        power=(power,),
-        unconnected=tuple(unconnected),
-        links=links,
-        and_array=and_array.array,
-        or_array=or_array.array,
-        cells=tuple(c.cell for c in cells),
-        spare=tuple(r for r, _ in spare),
-        location=top.where,
-        warnings=tuple(sorted(diagnostics.warnings, key=_place)),
-    )
-    check_rows(device, top.file.at(("links", "unused_term")), diagnostics)
-    diagnostics.stop_on_error()
-    return device
+        return device
 
+    @property
+    def count(self) -> int | None:
+        """The number of rows, even where the AND array is wrong in another way."""
+        section = self.top.data.get("and")
+        terms = section.get("terms") if isinstance(section, dict) else None
+        if not isinstance(terms, int) or isinstance(terms, bool):
+            return None
+        return terms if 1 <= terms <= MAX_TERMS else None
 
-def _refuse_design(top: Section) -> None:
-    """Stop at a design file: each of its tables would be an error of its own."""
-    signals = [key for key in ("inputs", "outputs") if key in top]
-    if signals and not any(key in top for key in ("fuses", "links", "and", "or", "kind")):
-        top.error(
-            "DESIGN-FILE",
-            f"this is a design file, with [{signals[0]}]; a device file was expected",
-            top.key_at(signals[0]),
-            "a device is a name that 'fuseplan device list' shows, or a file with [links], [and], "
-            "[or] and [kind.NAME]; a design is checked with 'fuseplan check'",
+    @property
+    def at_count(self) -> Location | None:
+        return self.file.at(("and", "terms")) if self.count is not None else None
+
+    def _or_array(self, cells: list[RawCell], all_kinds: bool) -> ReadOrArray | None:
+        section = self.top.section("or") if "or" in self.top else None
+        if section is None:
+            return None
+        count = self.count
+        free = free_rows(count, cells) if count is not None and all_kinds else None
+        return read_or_array(section, count, free, keys_of(cells), self.at_count)
+
+    def _check_pins(
+        self, header: Header, and_array: ReadAndArray | None, kinds: list[ReadKind]
+    ) -> None:
+        cells = [cell for kind in kinds for cell in kind.cells]
+        check_names(and_array, cells, self.diagnostics)
+        supplies = {key: pins for key, pins in header.supplies.items() if pins is not None}
+        if header.pins and and_array and len(supplies) == len(header.supplies):
+            check_roles(self.top, header.pins, supplies, and_array, kinds)
+
+    def _sums_known(self, kinds: list[ReadKind], or_array: ReadOrArray | None) -> bool:
+        """Report a file in which nothing at all says which rows a sum has."""
+        cells = [cell for kind in kinds for cell in kind.cells]
+        given = [cell.terms for cell in cells] + [m.terms for kind in kinds for m in kind.modes]
+        if or_array or any(terms is not None for terms in given):
+            return True
+        more = f"; likewise {len(cells) - 1} more cell{'s' if len(cells) > 2 else ''}"
+        self.top.error(
+            "KEY-MISSING",
+            f"the file has no [or], and {cells[0]}{beside(cells[0].where, self.top.where)} has "
+            f"no terms of its own{more if len(cells) > 1 else ''}",
+            None,
+            "add [or] with its columns and rows if the OR gates are shared, or "
+            'terms = "a..b" to each cell',
         )
-        top.diagnostics.stop_on_error()
+        return False
 
+    def _resolve(
+        self, kinds: list[ReadKind], and_array: ReadAndArray, or_array: ReadOrArray | None
+    ) -> list[ReadCell] | None:
+        summed = () if or_array is None else or_array.array.sums
+        found = [resolve(kind, and_array, summed) for kind in kinds]
+        cells = [cell for kind in kinds for cell in kind.cells]
+        if self.count is not None and self.at_count is not None:
+            check_owners(self.count, self.at_count, cells, or_array, self.diagnostics)
+        return [cell for kind in found for cell in kind or ()] if all(found) else None
 
-def _place(diagnostic: Diagnostic) -> tuple[int, int]:
-    at = diagnostic.location
-    return (at.line or 0, at.column or 0) if at else (0, 0)
+    def _check_fuses(
+        self,
+        fuses: int,
+        and_array: ReadAndArray,
+        or_array: ReadOrArray | None,
+        others: list[FuseClaim],
+    ) -> None:
+        if self._too_many(fuses, and_array, or_array):
+            return
+        claims = [*and_array.claims(), *(or_array.claims() if or_array else ()), *others]
+        if report_wrong_steps(fuses, and_array, or_array, claims):
+            return
+        explained = report_missing_columns(fuses, and_array, or_array, claims)
+        check_fuses(fuses, claims, self.top.at("fuses"), self.diagnostics, explained)
 
+    def _too_many(self, fuses: int, and_array: ReadAndArray, or_array: ReadOrArray | None) -> bool:
+        """Report arrays that alone have more links than the device has fuses."""
+        terms, columns = len(and_array.array.rows), len(and_array.array.columns)
+        links = terms * columns
+        each = f"{terms} terms with {columns} AND links each are {links} fuses"
+        if or_array is not None:
+            rows, sums = len(or_array.array.rows), len(or_array.array.sums)
+            links += rows * sums
+            each = f"{terms} terms with {columns} AND links and {sums} OR links each are {links}"
+            if rows != terms:
+                each = (
+                    f"{terms} rows with {columns} AND links each and {rows} with {sums} OR links "
+                    f"are {links}"
+                )
+            each += " fuses"
+        if links > fuses:
+            message = f"{each}, but the device has {fuses}"
+            self.top.error("FUSE-COUNT", message, self.top.at("fuses"))
+        return links > fuses
 
-def _read_name(top: Section) -> str | None:
-    name = top.text("name", required=True)
-    if name is not None and not _NAME.fullmatch(name):
-        top.error(
-            "DEVICE-NAME",
-            f"the name {name!r} is not usable, expected letters, digits, and . _ - between them",
-            top.at("name"),
-        )
-        return None
-    return name
-
-
-def _read_spare(top: Section, fuses: int | None) -> list[tuple[range, Location]] | None:
-    """The spare fuses, without those that the device does not have; these are reported."""
-    if "spare" not in top:
-        return []
-    ranges = top.ranges("spare", low=0)
-    if ranges is None or fuses is None:
-        return None
-    for numbers, at in ranges:
-        if numbers[-1] >= fuses:
-            shown = f"{numbers[0]}..{numbers[-1]}" if len(numbers) > 1 else str(numbers[0])
-            top.error(
-                "FUSE-RANGE",
-                f"spare {shown} does not exist as a whole: fuses go from 0 to {fuses - 1}, "
-                f"as 'fuses' says (line {top.at('fuses').line} of the file)",
-                at,
+    def _check_enable_filling(self, links: Links | None, cells: list[ReadCell]) -> None:
+        """Report a missing ``unused_enable``, and doubt one where no cell has an enable row."""
+        if links is None or not cells:
+            return
+        first = next((c for c in cells if c.cell.enable_rows), None)
+        if first is not None and links.unused_enable is None:
+            self.top.error(
+                "KEY-MISSING",
+                "[links] has no 'unused_enable', but "
+                f"{first.cell}{beside(first.raw.where, self.file.at(('links',)))} has an enable "
+                f"row, {first.cell.enable_rows[0]}",
+                self.file.at(("links",)),
+                "say how the enable row of a cell that no output uses is left: unused_enable = "
+                '"blank", "off" or "on"',
             )
-    return [(range(r.start, min(r.stop, fuses)), at) for r, at in ranges if r.start < fuses]
-
-
-def _table(top: Section, key: str, holds: str) -> Section | None:
-    if key not in top:
-        top.error("KEY-MISSING", f"the file has no [{key}]", None, f"add [{key}]: {holds}")
-        return None
-    return top.section(key)
-
-
-def _declared_terms(top: Section) -> int | None:
-    """The number of terms, even where the AND array is wrong in another way."""
-    section = top.data.get("and")
-    terms = section.get("terms") if isinstance(section, dict) else None
-    return terms if isinstance(terms, int) and 1 <= terms <= MAX_TERMS else None
-
-
-def _read_links(top: Section) -> Links | None:
-    section = _table(top, "links", "blank, connected, unused_term")
-    if section is None:
-        return None
-    known_keys(section, ["blank", "connected", "unused_term"], {})
-    blank = section.choice("blank", (0, 1), required=True)
-    connected = section.choice("connected", (0, 1), required=True)
-    unused: str | None
-    if section.data.get("unused_term") == "drop":
-        not_yet(
-            section,
-            DROP,
-            section.at("unused_term"),
-            'unused_term = "drop"',
-        )
-        return None
-    unused = section.choice("unused_term", ("blank", "dead"), required=True)
-    if blank is None or connected is None or unused is None:
-        return None
-    return Links(
-        cast("Literal[0, 1]", blank),
-        cast("Literal[0, 1]", connected),
-        cast("Literal['blank', 'dead']", unused),
-    )
-
-
-def _read_and(top: Section) -> ReadAndArray | None:
-    section = _table(top, "and", "the columns, number and fuses of the product terms")
-    return None if section is None else read_and_array(section)
-
-
-def _read_or(top: Section) -> ReadOrArray | None:
-    if "or" not in top:
-        found = "the file has no [or]"
-        hint = "if the device has a shared OR array, add [or] with its columns and rows"
-        not_yet(top, OWN_TERMS, top.where, found, hint)
-        return None
-    section = top.section("or")
-    return None if section is None else read_or_array(section, _declared_terms(top))
-
-
-def _check_pins(
-    top: Section,
-    pins: int,
-    supplies: dict[str, int],
-    unconnected: list[int],
-    and_array: ReadAndArray,
-    cells: list[ReadCell],
-) -> None:
-    claims = [
-        *(PinClaim(pin, key, lambda key=key: top.at(key)) for key, pin in supplies.items()),  # type: ignore[misc]
-        *_unconnected_claims(top, unconnected),
-        *_input_claims(and_array, cells),
-        *(cell.pin_claim() for cell in cells),
-    ]
-    _report_feedback(and_array, cells)
-    check_pins(pins, claims, top.at("pins"), top.diagnostics)
-
-
-def _unconnected_claims(top: Section, pins: list[int]) -> list[PinClaim]:
-    return [
-        PinClaim(pin, "unconnected", lambda index=index: top.at("unconnected", index))  # type: ignore[misc]
-        for index, pin in enumerate(pins)
-    ]
-
-
-def _input_claims(and_array: ReadAndArray, cells: list[ReadCell]) -> list[PinClaim]:
-    """Pins with a line; the lines of an output's pin are feedback and no role of their own."""
-    outputs = {cell.cell.pin for cell in cells}
-    return [claim for claim in and_array.pin_claims() if claim.pin not in outputs]
-
-
-def _cell_claim(cell: ReadCell) -> PinClaim:
-    return PinClaim(cast("int", cell.cell.pin), f"the cell on pin {cell.cell.pin}", cell.at_pin)
-
-
-def _report_feedback(and_array: ReadAndArray, cells: list[ReadCell]) -> None:
-    outputs = {cell.cell.pin for cell in cells}
-    for index, line in enumerate(and_array.array.columns):
-        if line is not None and line.source in outputs:
-            not_yet(
-                and_array.section,
-                FEEDBACK,
-                and_array.at_column(index),
-                f"column {index} of [and] is line {line}, and pin {line.source} has an output cell",
+        path = ("links", "unused_enable")
+        if first is None and links.unused_enable is not None and self.file.given_here(path):
+            self.diagnostics.warning(
+                "ENABLE-NONE",
+                "'unused_enable' says how an enable row is left, but no cell has one",
+                self.file.key_at(path),
             )
-
-
-def _check_fuses(
-    top: Section,
-    fuses: int,
-    and_array: ReadAndArray,
-    or_array: ReadOrArray,
-    cells: list[ReadCell],
-    spare: list[tuple[range, Location]],
-) -> None:
-    links = len(and_array.array.rows) * (len(and_array.array.columns) + len(or_array.array.sums))
-    if links > fuses:
-        top.error(
-            "FUSE-COUNT",
-            f"{len(and_array.array.rows)} terms with {len(and_array.array.columns)} AND links and "
-            f"{len(or_array.array.sums)} OR links each are {links} fuses, but the device has "
-            f"{fuses}",
-            top.at("fuses"),
-        )
-        return
-    claims = [
-        *and_array.claims(),
-        *or_array.claims(),
-        *(claim for cell in cells for claim in cell.claims()),
-        *(
-            FuseClaim(r, f"spare {i}", lambda _: "spare", lambda at=at: at)  # type: ignore[misc]
-            for i, (r, at) in enumerate(spare)
-        ),
-    ]
-    if report_wrong_steps(fuses, and_array, or_array, claims):
-        return
-    explained = report_missing_columns(fuses, and_array, or_array, claims)
-    check_fuses(fuses, claims, top.at("fuses"), top.diagnostics, explained)
-
-
-def _warn_of_single_lines(and_array: ReadAndArray, diagnostics: Diagnostics) -> None:
-    for index, line in and_array.single_lines():
-        has, lacks, level = (
-            ("complement", "true", "low") if line.complement else ("true", "complement", "high")
-        )
-        diagnostics.warning(
-            "LINE-SINGLE",
-            f"pin {line.source} has a {has} line but no {lacks} line: "
-            f"a term can ask only for the pin {level}",
-            and_array.at_column(index),
-        )

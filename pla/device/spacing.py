@@ -8,7 +8,7 @@ from __future__ import annotations
 
 from dataclasses import replace
 from itertools import chain, count
-from typing import TYPE_CHECKING, TypeAlias, TypeVar
+from typing import TYPE_CHECKING, TypeAlias, TypeVar, cast
 
 from pla.device.consistency import spans
 from pla.device.model import Column
@@ -21,7 +21,7 @@ if TYPE_CHECKING:
     from pla.device.model import AndArray, OrArray
 
     _Read: TypeAlias = ReadAndArray | ReadOrArray
-    _Pair: TypeAlias = tuple[ReadAndArray, ReadOrArray]
+    _Reads: TypeAlias = tuple[_Read, ...]
     _Array: TypeAlias = AndArray | OrArray
 
 __all__ = ["report_missing_columns", "report_wrong_steps"]
@@ -31,7 +31,7 @@ _SHOWN = 4
 
 
 def report_wrong_steps(
-    fuses: int, and_array: ReadAndArray, or_array: ReadOrArray, claims: Sequence[FuseClaim]
+    fuses: int, and_array: ReadAndArray, or_array: ReadOrArray | None, claims: Sequence[FuseClaim]
 ) -> bool:
     """Report a ``term_step`` that makes rows run into each other or past the last fuse.
 
@@ -45,12 +45,12 @@ def report_wrong_steps(
     clash = _clash(fuses, claims)
     if clash is None:
         return False
-    pair = (and_array, or_array)
-    return _report_mendable(fuses, pair, claims, clash) or _report_too_small(pair)
+    reads: _Reads = (and_array,) if or_array is None else (and_array, or_array)
+    return _report_mendable(fuses, reads, claims, clash) or _report_too_small(reads)
 
 
 def report_missing_columns(
-    fuses: int, and_array: ReadAndArray, or_array: ReadOrArray, claims: Sequence[FuseClaim]
+    fuses: int, and_array: ReadAndArray, or_array: ReadOrArray | None, claims: Sequence[FuseClaim]
 ) -> set[int]:
     """Report fuses without a use that stand behind the columns of an array in each of its rows.
 
@@ -63,8 +63,11 @@ def report_missing_columns(
         return set()
     idle = set(range(fuses)).difference(chain.from_iterable(claim.fuses for claim in claims))
     explained: set[int] = set()
-    alternate = _alternate(and_array.array, or_array.array)
-    for read, other in ((and_array, or_array), (or_array, and_array)):
+    alternate = or_array is not None and _alternate(and_array.array, or_array.array)
+    pairs: list[tuple[_Read, _Read | None]] = [(and_array, or_array)]
+    if or_array is not None:
+        pairs.append((or_array, and_array))
+    for read, other in pairs:
         behind = _behind(read.array, idle - explained)
         if not behind:
             continue
@@ -72,7 +75,7 @@ def report_missing_columns(
         number, title = _width(read.array), read.section.title
         columns = f"{number} column{'s' if number > 1 else ''} of {title}"
         verb = "does" if number == 1 else "do"
-        if alternate:
+        if alternate and other is not None:
             columns += f" and {_width(other.array)} of {other.section.title}"
             verb = "do"
         step = _step(read)
@@ -126,18 +129,20 @@ def _behind(array: _Array, idle: set[int]) -> set[int]:
 
 def _report_mendable(
     fuses: int,
-    pair: _Pair,
+    reads: _Reads,
     claims: Sequence[FuseClaim],
     clash: str,
 ) -> bool:
     if sum(len(claim.fuses) for claim in claims) != fuses:
         return False
     elsewhere = [c.fuses for c in claims if c.group not in {"AND", "OR"}]
-    for wrong, step in _mends(pair):
-        lines, sums = pair[0].array, pair[1].array
-        lines = _with_step(lines, step) if pair[0] in wrong else lines
-        sums = _with_step(sums, step) if pair[1] in wrong else sums
-        if not _each_once(fuses, chain(_links(lines), _links(sums), *elsewhere)):
+    for wrong, step in _mends(reads):
+        lines, sums = _arrays(reads)
+        lines = _with_step(lines, step) if reads[0] in wrong else lines
+        if sums is not None and reads[-1] in wrong:
+            sums = _with_step(sums, step)
+        both = chain(_links(lines), () if sums is None else _links(sums))
+        if not _each_once(fuses, chain(both, *elsewhere)):
             continue
         first, *others = wrong
         also = "".join(f" and of {o.section.title}{_line(o)}" for o in others)
@@ -152,16 +157,21 @@ def _report_mendable(
     return False
 
 
-def _report_too_small(pair: _Pair) -> bool:
+def _arrays(reads: _Reads) -> tuple[AndArray, OrArray | None]:
+    """The AND array, and the OR array if there is one."""
+    lines, *sums = (read.array for read in reads)
+    return cast("AndArray", lines), cast("OrArray", sums[0]) if sums else None
+
+
+def _report_too_small(reads: _Reads) -> bool:
     """Steps that cannot be right, whatever the rest of the file says."""
-    lines, sums = pair[0].array, pair[1].array
-    steps = [_step(read) for read in pair]
+    lines, sums = _arrays(reads)
+    steps = [_step(read) for read in reads]
     # Listed rows may go anywhere.
-    alternate = None not in steps and _adjoin(lines, sums)
+    alternate = None not in steps and sums is not None and _adjoin(lines, sums)
     reported = False
-    reads: tuple[_Read, ...] = pair
     for read, step in zip(reads, steps, strict=True):
-        least = _width(lines) + _width(sums) if alternate else _width(read.array)
+        least = _width(lines) + _width(sums) if alternate and sums else _width(read.array)
         if step is None or not _along_rows(read.array) or abs(step) >= least:
             continue
         reported = True
@@ -174,27 +184,26 @@ def _report_too_small(pair: _Pair) -> bool:
         )
     if not reported and alternate and steps[0] != steps[1]:
         reported = True
-        pair[1].section.error(
+        reads[-1].section.error(
             "TERM-STEP",
-            f"term_step is {steps[1]} in [or] and {steps[0]} in [and]{_line(pair[0])}, but the "
+            f"term_step is {steps[1]} in [or] and {steps[0]} in [and]{_line(reads[0])}, but the "
             "rows of both alternate, so that they run into each other",
-            pair[1].section.at("term_step"),
+            reads[-1].section.at("term_step"),
             "rows that alternate have one and the same step",
         )
     return reported
 
 
-def _mends(pair: _Pair) -> Iterator[tuple[list[_Read], int]]:
+def _mends(reads: _Reads) -> Iterator[tuple[list[_Read], int]]:
     """Steps worth a try: as wide as the rows, as in the other array, or off by one."""
-    both = _width(pair[0].array) + _width(pair[1].array)
-    steps = [_step(read) for read in pair]
-    reads: tuple[_Read, ...] = pair
+    both = sum(_width(read.array) for read in reads)
+    steps = [_step(read) for read in reads]
     for read, step, other in zip(reads, steps, reversed(steps), strict=True):
         if step is not None:
             sign = 1 if step > 0 else -1
             near = [step - 1, step + 1, sign * _width(read.array), sign * both, other or step]
             yield from (([read], s) for s in dict.fromkeys(near) if s not in {0, step})
-    if steps[0] is not None and steps[0] == steps[1]:
+    if len(steps) == 2 and steps[0] is not None and steps[0] == steps[1]:
         sign = 1 if steps[0] > 0 else -1
         near = [steps[0] - 1, steps[0] + 1, sign * both]
         yield from ((list(reads), s) for s in dict.fromkeys(near) if s not in {0, steps[0]})
@@ -213,10 +222,10 @@ def _clash(fuses: int, claims: Sequence[FuseClaim]) -> str | None:
     return None
 
 
-def _needs(read: _Read, lines: AndArray, sums: OrArray) -> str | None:
+def _needs(read: _Read, lines: AndArray, sums: OrArray | None) -> str | None:
     if not _along_rows(read.array):
         return None
-    if _adjoin(lines, sums):
+    if sums is not None and _adjoin(lines, sums):
         return (
             f"a row has {_width(lines)} AND links and {_width(sums)} OR links, so the step is at "
             f"least {_width(lines) + _width(sums)} in both arrays"
@@ -263,18 +272,22 @@ def _in_rows(array: _Array) -> bool:
 
 
 def _adjoin(lines: AndArray, sums: OrArray) -> bool:
-    """Whether rows of both must alternate: the first ones adjoin and the next go the same way."""
-    if len(lines.rows) < 2 or not (_along_rows(lines) and _along_rows(sums)):
+    """Whether rows of both must alternate: the first ones adjoin and the next go the same way.
+
+    Looked at are the rows of the AND array that the OR array has.
+    """
+    rows = [lines.rows[term] for term in sums.terms if term < len(lines.rows)]
+    if len(rows) < 2 or not (_along_rows(lines) and _along_rows(sums)):
         return False
-    if (lines.rows[1] > lines.rows[0]) != (sums.rows[1] > sums.rows[0]):
+    if (rows[1] > rows[0]) != (sums.rows[1] > sums.rows[0]):
         return False
-    low, high = sorted((lines.fuses_of(0), sums.fuses_of(0)), key=min)
+    low, high = sorted((lines.fuses_of(sums.terms[0]), sums.fuses_of(0)), key=min)
     return max(low) + 1 == min(high)
 
 
 def _alternate(lines: AndArray, sums: OrArray) -> bool:
     """Whether rows of both alternate, where no fuse has two uses: each stands before the next."""
-    apart = abs(sums.rows[0] - lines.rows[0])
+    apart = abs(sums.rows[0] - lines.rows[sums.terms[0]])
     return all(_in_rows(a) and apart < abs(a.rows[1] - a.rows[0]) for a in (lines, sums))
 
 
