@@ -118,6 +118,8 @@ class _Writer:
         self.equated: dict[str, list[bool]] = {}
         self.support: dict[str, set[int]] = {}
         self.inner: list[str] = []
+        # Inner signals that have a value for impossible inputs too, as an enable needs them.
+        self.closed: set[str] = set()
 
     def write(self) -> BusDesign:
         rng, made = self.rng, self.made
@@ -167,7 +169,9 @@ class _Writer:
         never, conditions = [False] * made.points, []
         for _ in range(rng.choice([0, 0, 1])):
             text, where = _equation(rng, made, self.plain, {}, depth=2)
-            if sum(where) <= 0.5 * made.points:
+            # The first input may be what enables outputs: it keeps both levels.
+            kept = {p & 1 for p, out in enumerate(where) if not out}
+            if sum(where) <= 0.5 * made.points and len(kept) == 2:
                 never = where
                 conditions.append(text)
         return never, conditions
@@ -190,6 +194,8 @@ class _Writer:
                     text, where = _equation(rng, self.made, fields, known, depth=2)
                     self.equations.append(f"{_key(bit)} = {_toml(text)}")
                     support = support.union(*(self.support[name] for name in known))
+                    if self.closed.issuperset(known):
+                        self.closed.add(bit)
                 self.equated[bit], self.support[bit] = where, support
                 self.inner.append(bit)
         return lines
@@ -208,7 +214,7 @@ class _Writer:
         if signal not in self.enabled:
             return
         rng, made = self.rng, self.made
-        text, where = self._enabling()
+        text, where = self._enabling(never)
         self.keys[signal.name]["enable"] = text
         made.enables |= dict.fromkeys(signal.names, text)
         drives: list[bool | None] = list(where)
@@ -222,7 +228,7 @@ class _Writer:
             drives = [FREE if out else on for on, out in zip(drives, never, strict=True)]
         made.drives |= dict.fromkeys(signal.names, drives)
 
-    def _enabling(self):
+    def _enabling(self, never):
         rng, made = self.rng, self.made
         singles = [f for f in self.plain if f.single]
         if self.shape.enabled_by == "input":
@@ -231,7 +237,8 @@ class _Writer:
             prime = made.active_low[name] != (self.shape.enable_active == "low")
             where = [bool(p >> singles[0].bits[0] & 1) != prime for p in range(made.points)]
             return name + "'" * prime, where
-        names = [bit for bit in self.inner if self.support[bit] <= set(range(len(singles)))]
+        plain = set(range(len(singles)))
+        names = [n for n in self.inner if n in self.closed and self.support[n] <= plain]
         while True:
             terms, where = [], [True] * made.points
             for chosen in rng.sample(singles, min(len(singles), rng.choice([1, 1, 2, 2, 3]))):
@@ -241,7 +248,7 @@ class _Writer:
             if names and rng.random() < 0.2:
                 terms.append(rng.choice(names))
                 where = [on and x for on, x in zip(where, self.equated[terms[-1]], strict=True)]
-            if any(where):
+            if any(on and not out for on, out in zip(where, never, strict=True)):
                 return " ".join(terms), where
 
     def _describe(self, signal, never):
