@@ -221,7 +221,7 @@ def _cells(rng):
     draft.columns = _lines(rng, [*draft.inputs, *(cell.source for cell in cells), *pins])
     sizes = [rng.choice([6, 7, 8, 8, 10, 12, 14, 16]) for _ in cells]
     _hand_out_rows(draft, cells, [size + 1 for size in sizes])
-    feeds = rng.sample(["pin", "sum", "sum'", "pin", "none"], 2)
+    feeds = rng.sample(["pin", "sum", "sum'", "none"], 2)
     bits, flips = ["polarity", "feedback", "row"], [rng.randint(0, 1) for _ in range(3)]
     off = rng.random() < 0.3
     for size in sorted(set(sizes)):

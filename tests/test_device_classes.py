@@ -1,10 +1,12 @@
-"""The generator of device files and the oracle, held against each other."""
+"""The generator of device files, the oracle and the reader, held against each other."""
 
 import random
 
 import pytest
 from device_classes import CLASSES, random_class_device
 from oracles.device_description import read_device_file
+
+from pla.device.catalogue import find_device
 
 
 @pytest.mark.parametrize("which", CLASSES)
@@ -78,3 +80,57 @@ MARKS = [
 @pytest.mark.parametrize(("which", "mark", "least"), MARKS)
 def test_the_marks_of_the_classes(which, mark, least, tmp_path):
     assert sum(bool(mark(device)) for device in devices(which, tmp_path)) >= least
+
+
+def line_of(line):
+    return None if line is None else (line.kind, line.of, line.complement)
+
+
+def enable_of(enable):
+    return {
+        "always": ("always",),
+        "row": ("row", enable.row),
+        "pin": ("pin", enable.pin, 0 if enable.active_low else 1),
+    }[enable.kind]
+
+
+@pytest.mark.parametrize("which", CLASSES)
+@pytest.mark.parametrize("seed", range(20))
+def test_the_reader_sees_what_the_oracle_sees(which, seed, tmp_path):
+    made = random_class_device(random.Random(f"{which} {seed}"), which)
+    path = made.write(tmp_path)
+    device, true = find_device(str(path)), read_device_file(path)
+    assert not device.warnings
+    assert [list(device.and_array.fuses_of(row)) for row in range(device.terms)] == true.links
+    assert (device.links.blank, device.links.connected) == (true.blank, true.connected)
+    sums = {}
+    for key, column in device.or_column.items():
+        by_row = enumerate(device.or_array.terms)
+        sums[key] = {term: device.or_array.fuse(row, column) for row, term in by_row}
+    assert sums == true.sums
+    assert dict(device.mode_fuses) == true.mode_fuses
+    drop = device.drop
+    assert (dict(zip(drop.terms, drop.fuses, strict=True)) if drop else {}) == true.drop
+    assert (drop.dropped if drop else None) == true.dropped
+    assert list(device.input_pins) == true.input_pins
+    assert list(device.enable_pins) == true.enable_pins
+    assert [line_of(line) for line in device.fixed_lines] == [
+        None if line is None or not hasattr(line, "kind") else line_of(line)
+        for line in true.columns
+    ]
+    for cell in device.cells:
+        its = true.cells[cell.key]
+        assert (cell.pin, cell.name, list(cell.links)) == (its.pin, its.name, its.links)
+        assert {mode.set for mode in cell.modes} == set(its.modes)
+        for mode in cell.modes:
+            other = its.modes[mode.set]
+            assert mode.pin == other.shows
+            assert mode.terms == (other.terms or ())
+            assert enable_of(mode.enable) == other.enable
+            assert {c: line_of(line) for c, line in mode.lines} == {
+                c: line_of(line) for c, line in other.columns.items()
+            }
+    if true.signature is not None:
+        assert device.signature.fuses == true.signature.fuses
+        assert device.signature.ones == true.signature.ones
+        assert device.signature.order.startswith("most") == true.signature.first_is_highest
