@@ -31,10 +31,7 @@ _REASONS = {
 
 
 def summary_table(
-    behaviour: Behaviour,
-    found: Sequence[Settled],
-    prices: Sequence[GroupPrice],
-    impossible: Sequence[AtImpossible] = (),
+    behaviour: Behaviour, found: Sequence[Settled], prices: Sequence[GroupPrice]
 ) -> Table:
     """For each output how many combinations are open, and what became of them.
 
@@ -42,12 +39,11 @@ def summary_table(
         behaviour: The design.
         found: What `pla.report.audit.audit` found.
         prices: What demanded values cost.
-        impossible: What `pla.report.audit.at_impossible` found.
     """
     demanded = [o for o in behaviour.outputs if o.impossible is not None]
     settled = len(behaviour.never) and demanded
     switched = any(output.enable for output in behaviour.outputs)
-    rows = tuple(_summary_rows(behaviour, found, impossible)) if found or settled else ()
+    rows = tuple(_summary_rows(behaviour, found)) if found or settled else ()
     width = None if switched else 5
     return Table(
         "Don't-care audit",
@@ -69,25 +65,23 @@ def summary_table(
     )
 
 
-def _summary_rows(
-    behaviour: Behaviour, found: Sequence[Settled], impossible: Sequence[AtImpossible]
-) -> Iterator[tuple[str, ...]]:
+def _summary_rows(behaviour: Behaviour, found: Sequence[Settled]) -> Iterator[tuple[str, ...]]:
     everywhere = algebra.size(behaviour.never)
     for j, output in enumerate(behaviour.outputs):
         own = [s for s in found if s.output == j]
-        if output.impossible is not None and everywhere:
-            off = sum(found.size for found in impossible if found.output == j and not found.drives)
-            size = str(everywhere - off)
-            demanded = (size, "0") if output.impossible else ("0", size)
-            why = f"impossible, demanded {output.impossible}"
-            yield output.name, why, str(everywhere), *demanded, str(off)
+        # Where the output is switched off no value is demanded.
+        demanded = everywhere - sum(s.size for s in own if s.reason == "never")
+        if output.impossible is not None and demanded:
+            size = str(demanded)
+            values = (size, "0") if output.impossible else ("0", size)
+            yield output.name, f"impossible, demanded {output.impossible}", size, *values, "0"
         for reason in dict.fromkeys(s.reason for s in own):
             sizes = [
                 sum(s.size for s in own if (s.reason, s.value) == (reason, value))
                 for value in (1, 0, None)
             ]
             yield output.name, _REASONS[reason], str(sum(sizes)), *map(str, sizes)
-        if not own and (output.impossible is None or not everywhere):
+        if not own and (output.impossible is None or not demanded):
             yield output.name, "nothing", "0", "0", "0", "0"
 
 

@@ -78,7 +78,7 @@ def _audit(plan: Plan, polarities: Sequence[Polarity]) -> list[Table | None]:
     design, outcomes = plan.design, outcomes_of_plan(plan)
     open_, impossible = audit(design, outcomes), at_impossible(design, outcomes)
     return [
-        summary_table(design, open_, group_prices(plan, polarities), impossible),
+        summary_table(design, open_, group_prices(plan, polarities)),
         enable_table(design, impossible),
         detail_table(design, open_) if open_ else None,
         together_table(design, open_together(design, outcomes)),

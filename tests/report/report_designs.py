@@ -26,12 +26,13 @@ class Design:
     """The text of a design file, and what it says.
 
     `values[j][p]` is "0", "1" or the reason why output j is open at point p; `never[p]` tells
-    whether p is impossible.
+    whether p is impossible; `driven[j][p]` whether output j drives its pin.
     """
 
     text: str
     values: list[list[str]]
     never: list[bool]
+    driven: list[list[bool]]
 
     def read(self, folder: Path) -> tuple[Behaviour, Minimum]:
         path = folder / "random.toml"
@@ -45,7 +46,7 @@ OUTPUTS = ["fan", "horn", "lamp"]
 
 
 @st.composite
-def designs(draw: st.DrawFn) -> Design:
+def designs(draw: st.DrawFn, *, enables: bool = False) -> Design:
     signals = SIGNALS[: draw(st.integers(1, 3))]
     bits = [(name, k) for name, size in signals for k in reversed(range(size))]
     points = range(1 << len(bits))
@@ -57,12 +58,15 @@ def designs(draw: st.DrawFn) -> Design:
         level = draw(st.sampled_from(["high", "low"]))
         lines.append(f'{name} = {{ bits = {size}, active = "{level}" }}')
     lines.append("[outputs]")
-    values, tables = [], []
+    values, tables, driven = [], [], []
     for output in OUTPUTS[: draw(st.integers(1, 3))]:
         impossible = draw(st.sampled_from([None, None, 0, 1]))
-        lines.append(
-            f"{output} = {{ {'' if impossible is None else f'impossible = {impossible}'} }}"
-        )
+        enable = draw(st.sampled_from([None, *_ENABLES])) if enables else None
+        keys = [] if impossible is None else [f"impossible = {impossible}"]
+        keys += [] if enable is None else [f'enable = "{enable}"']
+        lines.append(f"{output} = {{ {', '.join(keys)} }}")
+        drives = [enable is None or _ENABLES[enable](p) for p in points]
+        driven.append(drives)
         others = draw(st.sampled_from("01x"))
         listed = {p: draw(st.sampled_from("01x")) for p in points if draw(st.booleans())}
         rows = [f"{_cells(p, signals)} | {value}" for p, value in listed.items()]
@@ -73,13 +77,23 @@ def designs(draw: st.DrawFn) -> Design:
         for p in points:
             said = listed.get(p, "others" if others == "x" else others)
             if never[p]:
-                said = "never" if impossible is None else str(impossible)
+                said = "never" if impossible is None or not drives[p] else str(impossible)
+            elif not drives[p]:
+                said = "disabled"
             own.append(said)
         values.append(own)
     if any(never):
         when = [f'"{_product(p, bits)}"' for p in points if never[p]]
         lines += ["[never]", f"when = [{', '.join(when)}]"]
-    return Design("\n".join([*lines, *tables]) + "\n", values, never)
+    return Design("\n".join([*lines, *tables]) + "\n", values, never, driven)
+
+
+# Expressions over the bus, whose high bit is bit 0 of a point.
+_ENABLES = {
+    "code[1]": lambda p: bool(p & 1),
+    "code != 0": lambda p: p & 3 != 0,
+    "code[0]'": lambda p: not p & 2,
+}
 
 
 def _cells(point: int, signals: list[tuple[str, int]]) -> str:
