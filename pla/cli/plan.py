@@ -11,7 +11,8 @@ from pla.cli.output import emit_json, emit_text, note, show_diagnostics
 
 if TYPE_CHECKING:
     from pla.behaviour.model import Behaviour
-    from pla.fitting.model import Fit, KnownMinima
+    from pla.fitting.minima import Minima
+    from pla.fitting.model import Fit
 
 __all__ = ["command"]
 
@@ -60,6 +61,7 @@ def command(
     from pla.device.catalogue import find_device
     from pla.files import refuse_existing
     from pla.fitting.fit import fit
+    from pla.fitting.minima import Minima
     from pla.fitting.places import places_elsewhere
 
     refuse_existing(folder, force=force)
@@ -69,8 +71,8 @@ def command(
     array = find_device(device)
     elsewhere = places_elsewhere(behaviour, array)
     show_diagnostics((*behaviour.warnings, *array.warnings, *elsewhere))
-    known: KnownMinima = {}
-    outcome = fit(behaviour, array, cast("Any", polarity), known=known)
+    known = Minima()
+    outcome = fit(behaviour, array, cast("Any", polarity), known)
     show_diagnostics(outcome.warnings)
     if not outcome.fits:
         return _refuse(outcome, polarity, known, as_json=as_json)
@@ -116,7 +118,7 @@ def _write(behaviour: Behaviour, outcome: Fit, folder: str, *, force: bool, as_j
     return 0
 
 
-def _refuse(outcome: Fit, polarity: str, known: KnownMinima, *, as_json: bool) -> int:
+def _refuse(outcome: Fit, polarity: str, known: Minima, *, as_json: bool) -> int:
     from pla.device.catalogue import catalogue, find_device
     from pla.fitting.holders import holders
     from pla.report.cover_json import fit_document

@@ -8,6 +8,8 @@ from types import MappingProxyType
 from typing import TYPE_CHECKING, Literal
 
 from pla.fitting.fit import fit
+from pla.fitting.minima import Minima
+from pla.fitting.model import Usage
 from pla.fitting.places import wrong_places
 from pla.logic.effort import Effort
 
@@ -16,7 +18,7 @@ if TYPE_CHECKING:
 
     from pla.behaviour.model import Behaviour
     from pla.device.model import Device
-    from pla.fitting.model import Fit, KnownMinima, PolarityWish, Usage
+    from pla.fitting.model import Fit, PolarityWish
 
 __all__ = ["DeviceBudget", "Resource", "budgets", "fits_on"]
 
@@ -29,7 +31,8 @@ class DeviceBudget:
 
     Attributes:
         fit: The design on the device.
-        reserve: Product terms that have to stay spare.
+        reserve: Product terms that have to stay spare: of a shared OR array in all, where OR gates
+            have terms of their own in that of every output.
     """
 
     fit: Fit
@@ -64,7 +67,21 @@ class DeviceBudget:
         """
         if self.fit.minimum is None:
             return None
-        return sum(max(0, self._wanted(r) - u.available) for r, u in self.usages.items())
+        terms = self.fit.lacking
+        if self._shared is not None:
+            terms = max(terms, self._shared.used + self.reserve - self._shared.available)
+        return terms + self.fit.inputs.over + self.fit.outputs.over
+
+    @property
+    def _shared(self) -> Usage | None:
+        """Rows of the shared OR array, where it is known how many are taken."""
+        rows = self.device.shared_rows
+        if not rows or self.fit.minimum is None:
+            return None
+        plan = self.fit.plan
+        if plan is not None:
+            return Usage(sum(row in rows for row in plan.rows), len(rows))
+        return Usage(self.fit.terms.used, len(rows)) if len(rows) == self.device.terms else None
 
     @property
     def tightest(self) -> Resource:
@@ -79,8 +96,9 @@ class DeviceBudget:
         return self.usages[resource].used + (self.reserve if resource == "terms" else 0)
 
     def _short_of_reserve(self) -> str | None:
-        minimum, terms = self.fit.minimum, self.fit.terms
-        if minimum is None or terms.over:
+        """With OR gates of their own the fit itself keeps the reserve."""
+        minimum, terms = self.fit.minimum, self._shared
+        if minimum is None or terms is None or terms.over:
             return None
         spare = terms.available - terms.used
         if spare >= self.reserve:
@@ -115,7 +133,7 @@ def budgets(
         reserve: Product terms that have to stay spare.
         effort: Makes the budget of each minimization.
     """
-    found = fits_on(behaviour, devices, wish, effort)
+    found = fits_on(behaviour, devices, wish, Minima(effort), reserve)
     return tuple(sorted((DeviceBudget(f, reserve) for f in found), key=_rank))
 
 
@@ -123,8 +141,8 @@ def fits_on(
     behaviour: Behaviour,
     devices: Iterable[Device],
     wish: PolarityWish,
-    effort: Callable[[], Effort] = Effort,
-    known: KnownMinima | None = None,
+    minima: Minima | None = None,
+    reserve: int = 0,
 ) -> tuple[Fit, ...]:
     """The fits of all devices in the order given; devices that allow the same share a minimum.
 
@@ -135,22 +153,22 @@ def fits_on(
         behaviour: What is wanted.
         devices: What to try.
         wish: Polarities that the user allows.
-        effort: Makes the budget of each minimization.
-        known: Minima of this behaviour, to be used again and added to.
+        minima: Minima of this behaviour, to be used again and added to.
+        reserve: Terms that have to stay spare in every OR gate that has terms of its own.
     """
-    minima = {} if known is None else known
-    return tuple(_fit_on(behaviour, device, wish, effort(), minima) for device in devices)
+    known = minima or Minima()
+    return tuple(_fit_on(behaviour, device, wish, known, reserve) for device in devices)
 
 
 def _fit_on(
-    behaviour: Behaviour, device: Device, wish: PolarityWish, effort: Effort, known: KnownMinima
+    behaviour: Behaviour, device: Device, wish: PolarityWish, minima: Minima, reserve: int
 ) -> Fit:
     wrong = wrong_places(behaviour, device)
     if not wrong:
-        return fit(behaviour, device, wish, effort, known)
+        return fit(behaviour, device, wish, minima, reserve=reserve)
     kept = tuple(place for place in behaviour.places[device.name] if place not in wrong)
     places = MappingProxyType({**behaviour.places, device.name: kept})
-    tried = fit(replace(behaviour, places=places), device, wish, effort, known)
+    tried = fit(replace(behaviour, places=places), device, wish, minima, reserve=reserve)
     reasons = tuple(f"{d.message} ({d.location})" for d in wrong.values())
     return replace(tried, behaviour=behaviour, plan=None, reasons=(*reasons, *tried.reasons))
 

@@ -1,49 +1,53 @@
-"""Laying a design onto a device: polarities, terms, pins."""
+"""Laying a design onto a device: the plan, or everything that stands in the way."""
 
 from __future__ import annotations
 
+from dataclasses import replace
+from itertools import combinations, islice
 from typing import TYPE_CHECKING
 
-import numpy as np
-
-from pla.errors import Diagnostic, InternalError
-from pla.fitting.matching import first_matching
-from pla.fitting.model import Fit, PlacedInput, PlacedOutput, Plan, Usage
+from pla.errors import Diagnostic
+from pla.fitting.minima import Minima
+from pla.fitting.model import Fit, Usage
+from pla.fitting.netlist import netlist
 from pla.fitting.places import settled_places
-from pla.fitting.polarity import allowed_polarities, mode_for, tied_polarities, ties_of
-from pla.logic.minimize import minimize
+from pla.fitting.placing import delays, plan_of
+from pla.fitting.problem import Problem
+from pla.fitting.search import best_layout, ways
+from pla.fitting.shortage import Shortage
 
 if TYPE_CHECKING:
-    from collections.abc import Iterable, Mapping, Sequence
-
-    from pla.behaviour.model import Behaviour
-    from pla.device.model import Cell, Device
-    from pla.fitting.model import KnownMinima, PolarityWish
-    from pla.fitting.polarity import Ties
-    from pla.logic.effort import Effort
-    from pla.logic.minimize import Minimum
-    from pla.logic.phases import Polarity
-    from pla.logic.relaxation import Decisions
-    from pla.logic.search import Feasible
+    from pla.behaviour.model import Behaviour, Place
+    from pla.device.model import Device
+    from pla.fitting.model import PolarityWish
+    from pla.fitting.search import Found
 
 __all__ = ["fit"]
+
+_MOST_RELEASES = 2_000
 
 
 def fit(
     behaviour: Behaviour,
     device: Device,
     wish: PolarityWish = "free",
-    effort: Effort | None = None,
-    known: KnownMinima | None = None,
+    minima: Minima | None = None,
+    *,
+    reserve: int = 0,
 ) -> Fit:
     """Find the smallest cover that the device can hold and put everything in its place.
 
+    On a shared OR array the terms of all outputs together are minimized; where OR gates have terms
+    of their own, each sum alone, and outputs are matched with cells. Inner signals and outputs that
+    others name are folded in or fed back, whichever takes fewer terms; of equal numbers the way
+    with fewer passes through the array, then with fewer signals fed back.
+
     Args:
         behaviour: What is wanted; its ``[place]`` for this device is kept.
-        device: A shared OR array.
+        device: Where it goes.
         wish: Polarities that the user allows.
-        effort: The budget for minimizing.
-        known: Minima of this behaviour, to be used again and added to.
+        minima: Minima of this behaviour, to be used again and added to.
+        reserve: Terms that have to stay spare in every OR gate that has terms of its own.
 
     Returns:
         The plan, or every reason why there is none.
@@ -52,220 +56,89 @@ def fit(
         InputError: If a place names a pin that cannot carry its signal.
     """
     places = settled_places(behaviour, device)
-    placed = {places[o.name] for o in behaviour.outputs if o.name in places}
-    free_cells = [cell for cell in device.cells if cell.pin not in placed]
-    cells = [
-        [device.cell_of_pin[places[o.name]]] if o.name in places else free_cells
-        for o in behaviour.outputs
-    ]
-    outputs = Usage(len(behaviour.outputs), len(device.output_pins))
-    allowed = allowed_polarities(
-        behaviour.outputs, cells if not outputs.over else [device.cells] * len(cells), wish
-    )
-    barred = [o.name for o, p in zip(behaviour.outputs, allowed, strict=True) if p is None]
-    feasible = None if outputs.over else tied_polarities(device, behaviour.outputs, cells)
-    reasons = _barred(barred, wish)
-    if not reasons and feasible is not None and not _holds(feasible, allowed):
-        reasons.append("the cells cannot give all outputs a polarity that they may have together")
-    if reasons:
-        reasons += _too_many_outputs(outputs)
-        needed = Usage(0, device.terms)
-        pins = Usage(len(behaviour.inputs), len(device.input_pins))
-        nothing = tuple(allowed)
-        return Fit(behaviour, device, nothing, None, None, tuple(reasons), needed, pins, outputs)
-    polarities = [p for p in allowed if p is not None]
-    ties = ties_of(device, cells) if feasible else None
-    within = _within(feasible, polarities)
-    minima = {} if known is None else known
-    minimum = _known(minima, tuple(polarities), ties, within)
-    if minimum is None:
-        minimum = minimize(behaviour.function, polarities, feasible=within, effort=effort)
-        minima[tuple(polarities), ties] = minimum
-    return _place(behaviour, device, polarities, minimum, places, cells, outputs)
+    folded = netlist(behaviour)
+    if folded is None:  # pragma: no cover - nothing is fed back
+        raise AssertionError
+    problem = Problem(folded, device, wish, places, minima or Minima(), reserve)
+    shortage = Shortage(problem, list(ways(problem)))
+    reasons = list(_too_long(behaviour, device))
+    found = best_layout(problem)
+    if found is None:
+        reasons = [*shortage.reasons, *reasons]
+    else:
+        reasons += _late(found)
+    if found is None or reasons:
+        released = _released(problem, behaviour.places.get(device.name, ())) if places else ()
+        return _fit(shortage, None, tuple(reasons), released)
+    return _fit(shortage, found, (), ())
 
 
-def _known(
-    minima: KnownMinima,
-    polarities: tuple[Polarity, ...],
-    ties: Ties | None,
-    within: Feasible | None,
-) -> Minimum | None:
-    """The minimum of a device that ties polarities alike, or of one that does not tie them at all.
-
-    The latter serves where its polarities happen to be ones that may be had together.
-    """
-    untied = minima.get((polarities, None))
-    if untied is not None and (within is None or within(untied.complemented)):
-        return untied
-    return minima.get((polarities, ties))
-
-
-def _barred(names: Sequence[str], wish: PolarityWish) -> list[str]:
-    if not names:
-        return []
-    which = f"output{'s' if len(names) > 1 else ''} {', '.join(names)}"
-    if wish == "true":
-        reason = (
-            f"{which} can only be realised by a complemented sum, which --polarity true rules out"
-        )
-        return [reason]
-    return [f"no cell can show {which} with the active level that the design asks for"]
-
-
-def _holds(feasible: Feasible, allowed: Sequence[Polarity | None]) -> bool:
-    return feasible(_only(p for p in allowed if p is not None))
-
-
-def _only(polarities: Iterable[Polarity]) -> Decisions:
-    """Polarities as far as they are decided by there being only one."""
-    return tuple(None if p.true and p.complement else p.complement for p in polarities)
-
-
-def _within(feasible: Feasible | None, polarities: Sequence[Polarity]) -> Feasible | None:
-    """The device's ties together with the polarities that are allowed at all."""
-    if feasible is None:
-        return None
-    only = _only(polarities)
-
-    def both(decisions: Decisions, /) -> bool:
-        merged = tuple(o if d is None else d for d, o in zip(decisions, only, strict=True))
-        return feasible(merged)
-
-    return both
-
-
-def _place(
-    behaviour: Behaviour,
-    device: Device,
-    polarities: Sequence[Polarity],
-    minimum: Minimum,
-    places: Mapping[str, int],
-    cells: Sequence[Sequence[Cell]],
-    outputs: Usage,
+def _fit(
+    shortage: Shortage, found: Found | None, reasons: tuple[str, ...], released: tuple[Place, ...]
 ) -> Fit:
-    terms = Usage(minimum.count, device.terms)
-    lines = _lines_needed(behaviour, minimum)
-    needed = [i for i, signal in enumerate(behaviour.inputs) if lines[i] or signal.name in places]
-    inputs = Usage(len(needed), len(device.input_pins))
-    reasons = _shortages(minimum, terms, inputs, outputs)
-    input_pins: dict[int, int] = {}
-    output_pins: list[int] | None = None
-    if not inputs.over:
-        placed = _place_inputs(behaviour, device, lines, needed, places)
-        if placed is None:
-            reasons.append("the input pins lack a true or complement line that the terms need")
-        else:
-            input_pins = placed
-    if not outputs.over:
-        output_pins = first_matching(
-            [
-                [c.pin for c in own if mode_for(c, o.active_low, complemented)]
-                for o, own, complemented in zip(
-                    behaviour.outputs, cells, minimum.complemented, strict=True
-                )
-            ]
-        )
-        if output_pins is None:  # pragma: no cover - `feasible` rules it out
-            reasons.append("the cells cannot give all outputs their polarity")
-    plan = None
-    if not reasons and output_pins is not None:
-        plan = _plan(behaviour, device, minimum, lines, input_pins, output_pins)
-    allowed = tuple(polarities)
-    return Fit(behaviour, device, allowed, minimum, plan, tuple(reasons), terms, inputs, outputs)
-
-
-def _shortages(minimum: Minimum, terms: Usage, inputs: Usage, outputs: Usage) -> list[str]:
-    reasons = []
-    if terms.over:
-        if minimum.proven:
-            claim = "the smallest set has"
-        elif minimum.lower_bound > terms.available:
-            claim = f"every set has at least {minimum.lower_bound}, the best found has"
-        else:
-            claim = f"the best set found (at least {minimum.lower_bound} are needed) has"
-        reasons.append(
-            f"{claim} {terms.used} product terms, the device {terms.available}: "
-            f"{terms.over} too many"
-        )
-    if inputs.over:
-        reasons.append(
-            f"{inputs.used} inputs are needed, the device has {inputs.available} input pins: "
-            f"{inputs.over} too many"
-        )
-    return reasons + _too_many_outputs(outputs)
-
-
-def _too_many_outputs(outputs: Usage) -> list[str]:
-    if not outputs.over:
-        return []
-    reason = (
-        f"{outputs.used} outputs are needed, the device has {outputs.available} output cells: "
-        f"{outputs.over} too many"
+    problem = shortage.problem
+    behaviour, device = problem.netlist.design, problem.device
+    plan = None if found is None else plan_of(found.layout)
+    minimum = shortage.minimum if plan is None else plan.minimum
+    count = 0 if minimum is None else minimum.count
+    inputs = len(shortage.needed_inputs)
+    if plan is not None:
+        inputs = sum((p.used and p.fed_by is None) or p.name in problem.places for p in plan.inputs)
+    capacity = sum(cell.capacity for cell in device.cells)
+    return Fit(
+        behaviour,
+        device,
+        shortage.polarities,
+        minimum,
+        plan,
+        reasons,
+        Usage(count, len(device.shared_rows) + capacity),
+        Usage(inputs, len(device.readable_pins)),
+        Usage(len(behaviour.outputs), len(device.output_pins)),
+        0 if plan is not None else shortage.lacking,
+        released,
+        tuple(_doubts(behaviour, device)),
     )
-    return [reason]
 
 
-def _lines_needed(behaviour: Behaviour, minimum: Minimum) -> list[frozenset[bool]]:
-    """For each input the lines that terms connect: ``True`` is the complement of the pin."""
-    ones = int(np.bitwise_or.reduce(minimum.cover.ones, initial=np.uint64(0)))
-    zeros = int(np.bitwise_or.reduce(minimum.cover.zeros, initial=np.uint64(0)))
+def _released(problem: Problem, places: tuple[Place, ...]) -> tuple[Place, ...]:
+    """The fewest places without which the design fits; empty if it never does.
+
+    Of equal numbers those that stand first in the file.
+    """
+    if not _fits_with(problem, ()):
+        return ()
+    sets = (chosen for size in range(1, len(places) + 1) for chosen in combinations(places, size))
+    for chosen in islice(sets, _MOST_RELEASES):
+        if _fits_with(problem, tuple(p for p in places if p not in chosen)):
+            return chosen
+    return places
+
+
+def _fits_with(problem: Problem, places: tuple[Place, ...]) -> bool:
+    found = best_layout(replace(problem, places={p.signal: p.pin for p in places}))
+    return found is not None and found.rank[0] == 0
+
+
+def _late(found: Found) -> list[str]:
+    design = found.layout.problem.netlist.design
     return [
-        frozenset(
-            signal.active_low != complement
-            for complement, literals in ((False, ones), (True, zeros))
-            if literals >> i & 1
-        )
-        for i, signal in enumerate(behaviour.inputs)
+        f"{design.output_names[delay.output]} may take {float(delay.worst):g} ns, and "
+        f"{float(delay.allowed):g} ns are allowed"
+        for delay in delays(found.layout)
+        if delay.late and delay.worst is not None and delay.allowed is not None
     ]
 
 
-def _place_inputs(
-    behaviour: Behaviour,
-    device: Device,
-    lines: Sequence[frozenset[bool]],
-    needed: Sequence[int],
-    places: Mapping[str, int],
-) -> dict[int, int] | None:
-    """Pin of each input: the lowest free one in order of declaration; unneeded inputs last."""
-
-    def choices(i: int) -> list[int]:
-        name = behaviour.inputs[i].name
-        pins = [places[name]] if name in places else free
-        return [p for p in pins if all((p, line) in device.column_of for line in lines[i])]
-
-    taken = {places[s.name] for s in behaviour.inputs if s.name in places}
-    free = [pin for pin in device.input_pins if pin not in taken]
-    everyone = list(range(len(behaviour.inputs)))
-    matched = first_matching([choices(i) for i in everyone])
-    if matched is not None:
-        return dict(zip(everyone, matched, strict=True))
-    matched = first_matching([choices(i) for i in needed])
-    if matched is None:
-        return None
-    pins = dict(zip(needed, matched, strict=True))
-    # The rest needs no line, so any pin will do.
-    rest = [i for i in everyone if i not in pins]
-    left = [pin for pin in free if pin not in pins.values()]
-    return pins | dict(zip(rest, left, strict=False))
+def _too_long(behaviour: Behaviour, device: Device) -> list[str]:
+    text, region = behaviour.signature, device.signature
+    if text is None or region is None or len(text) <= region.length:
+        return []
+    return [f"the signature {text!r} has {len(text)} characters, the device holds {region.length}"]
 
 
-def _plan(
-    behaviour: Behaviour,
-    device: Device,
-    minimum: Minimum,
-    lines: Sequence[frozenset[bool]],
-    input_pins: Mapping[int, int],
-    output_pins: Sequence[int],
-) -> Plan:
-    outputs = []
-    for j, (output, pin) in enumerate(zip(behaviour.outputs, output_pins, strict=True)):
-        complemented = minimum.complemented[j]
-        mode = mode_for(device.cell_of_pin[pin], output.active_low, complemented)
-        if mode is None:  # pragma: no cover - the pin was matched for its mode
-            raise InternalError([Diagnostic("FIT", f"pin {pin} has no mode for {output.name}")])
-        outputs.append(PlacedOutput(j, output.name, pin, output.active_low, complemented, mode))
-    inputs = tuple(
-        PlacedInput(i, s.name, input_pins.get(i), s.active_low, bool(lines[i]))
-        for i, s in enumerate(behaviour.inputs)
-    )
-    return Plan(behaviour, device, minimum, inputs, tuple(outputs), tuple(range(minimum.count)))
+def _doubts(behaviour: Behaviour, device: Device) -> list[Diagnostic]:
+    if behaviour.signature is None or device.signature is not None:
+        return []
+    message = f"{device.name} has no signature fuses: the signature is left out"
+    return [Diagnostic("SIGNATURE-NONE", message, device.location, None, "warning")]

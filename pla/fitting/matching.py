@@ -6,15 +6,17 @@ a matching is largest exactly when no augmenting path is left.
 
 from __future__ import annotations
 
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, TypeVar
 
 if TYPE_CHECKING:
-    from collections.abc import Sequence
+    from collections.abc import Hashable, Sequence
 
-__all__ = ["can_match", "first_matching", "largest_matching"]
+__all__ = ["can_match", "deficient", "largest_matching"]
+
+P = TypeVar("P", bound="Hashable")
 
 
-def largest_matching(choices: Sequence[Sequence[int]]) -> dict[int, int]:
+def largest_matching(choices: Sequence[Sequence[P]]) -> dict[int, P]:
     """As many members as possible, each with a partner of its own.
 
     Args:
@@ -23,9 +25,9 @@ def largest_matching(choices: Sequence[Sequence[int]]) -> dict[int, int]:
     Returns:
         Partner of each matched member.
     """
-    member_of: dict[int, int] = {}
+    member_of: dict[P, int] = {}
 
-    def place(member: int, seen: set[int]) -> bool:
+    def place(member: int, seen: set[P]) -> bool:
         for partner in choices[member]:
             if partner in seen:
                 continue
@@ -40,22 +42,34 @@ def largest_matching(choices: Sequence[Sequence[int]]) -> dict[int, int]:
     return {member: partner for partner, member in member_of.items()}
 
 
-def can_match(choices: Sequence[Sequence[int]]) -> bool:
+def can_match(choices: Sequence[Sequence[P]]) -> bool:
     """Whether every member can have a partner of its own."""
     return len(largest_matching(choices)) == len(choices)
 
 
-def first_matching(choices: Sequence[Sequence[int]]) -> list[int] | None:
-    """The matching in which the first member has its most preferred partner possible, and so on.
+def deficient(choices: Sequence[Sequence[P]]) -> tuple[frozenset[int], frozenset[P]] | None:
+    """Members that have fewer partners between them than they are; ``None`` if all can be matched.
 
-    ``None`` if some member has to go without.
+    By the theorem of P. Hall, "On representatives of subsets", Journal of the London Mathematical
+    Society 10, 1935, there are such members whenever some member has to go without.
+
+    Returns:
+        These members, and all partners that any of them could have.
     """
-    if not can_match(choices):
+    matching = largest_matching(choices)
+    left = next((m for m in range(len(choices)) if m not in matching), None)
+    if left is None:
         return None
-    settled: list[Sequence[int]] = list(choices)
-    for member, wishes in enumerate(choices):
-        for partner in wishes:
-            settled[member] = [partner]
-            if can_match(settled):
-                break
-    return [wish[0] for wish in settled]
+    member_of = {partner: member for member, partner in matching.items()}
+    members, partners = {left}, set[P]()
+    waiting = [left]
+    while waiting:
+        for partner in choices[waiting.pop()]:
+            if partner in partners:
+                continue
+            partners.add(partner)
+            member = member_of[partner]  # a free partner would have been an augmenting path
+            if member not in members:
+                members.add(member)
+                waiting.append(member)
+    return frozenset(members), frozenset(partners)

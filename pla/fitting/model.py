@@ -3,21 +3,20 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
-from typing import TYPE_CHECKING, Literal, TypeAlias
+from typing import TYPE_CHECKING, Literal
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
 
-    from pla.behaviour.model import Behaviour
+    from pla.behaviour.model import Behaviour, Place
     from pla.device.model import Cell, Device, Line, Mode, Source
-    from pla.fitting.polarity import Ties
+    from pla.errors import Diagnostic
     from pla.logic.cubes import Cube
     from pla.logic.minimize import Minimum
     from pla.logic.phases import Polarity
 
 __all__ = [
     "Fit",
-    "KnownMinima",
     "PlacedEnable",
     "PlacedInput",
     "PlacedOutput",
@@ -28,9 +27,6 @@ __all__ = [
 
 PolarityWish = Literal["true", "free"]
 """``true``: every sum is the asserted function; ``free``: true or complemented as serves best."""
-
-KnownMinima: TypeAlias = "dict[tuple[tuple[Polarity, ...], Ties | None], Minimum]"
-"""Minima of one behaviour by the polarities allowed and by how a device ties them together."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -147,8 +143,8 @@ class Plan:
     @property
     def pins(self) -> dict[str, int]:
         """The pin of every signal that has one."""
-        signals = (*self.inputs, *self.outputs)
-        return {signal.name: signal.pin for signal in signals if signal.pin is not None}
+        pins = {signal.name: signal.pin for signal in self.inputs if signal.pin is not None}
+        return pins | {out.name: out.pin for out in self.outputs if out.pin is not None}
 
     @property
     def lines(self) -> tuple[Line | None, ...]:
@@ -176,12 +172,16 @@ class Fit:
         behaviour: What is wanted.
         device: What it was tried on.
         polarities: What the device and the user leave to each output; ``None`` for nothing.
-        minimum: The smallest cover within these; ``None`` if there are outputs without any.
+        minimum: The smallest cover within these; ``None`` if there are outputs without any. It is
+            a cover of `laid_out`.
         plan: The design on the device; ``None`` if it does not fit.
         reasons: Why it does not fit, one sentence each; empty if it does.
         terms: Product terms.
         inputs: Input pins; of the inputs only those that a term or a place needs.
         outputs: Output cells.
+        lacking: Terms that are missing; with OR gates of their own counted cell by cell.
+        released: The fewest places whose release would make it fit; empty if there are none.
+        warnings: What is doubtful though it fits.
     """
 
     behaviour: Behaviour
@@ -193,7 +193,15 @@ class Fit:
     terms: Usage
     inputs: Usage
     outputs: Usage
+    lacking: int = 0
+    released: tuple[Place, ...] = ()
+    warnings: tuple[Diagnostic, ...] = ()
 
     @property
     def fits(self) -> bool:
         return self.plan is not None
+
+    @property
+    def laid_out(self) -> Behaviour:
+        """What the minimum is a cover of: the design, with signals fed back where the plan does."""
+        return self.behaviour if self.plan is None else self.plan.behaviour

@@ -29,10 +29,11 @@ def settled_places(behaviour: Behaviour, device: Device) -> dict[str, int]:
 
 def wrong_places(behaviour: Behaviour, device: Device) -> dict[Place, Diagnostic]:
     """The places for this device whose pin cannot carry the signal, each with its error."""
-    is_input = set(behaviour.input_names)
+    is_input = {signal.name for signal in behaviour.inputs if signal.read_from is None}
+    readable = tuple(sorted({*device.readable_pins, *device.enable_pins}))
     wrong = {}
     for place in behaviour.places.get(device.name, ()):
-        wanted = device.input_pins if place.signal in is_input else device.output_pins
+        wanted = readable if place.signal in is_input else device.output_pins
         if place.pin not in wanted:
             kind = "an input" if place.signal in is_input else "an output"
             wrong[place] = Diagnostic(
@@ -92,8 +93,9 @@ def _role(device: Device, pin: int) -> str:
     roles = [
         (device.input_pins, "is an input"),
         (device.output_pins, "is an output"),
-        ((device.ground,), "is ground"),
-        ((device.power,), "is the supply"),
+        (device.enable_pins, "is an enable pin"),
+        (device.ground, "is ground"),
+        (device.power, "is the supply"),
         (device.unconnected, "has no connection"),
     ]
     return next(

@@ -1,0 +1,126 @@
+"""The best of all ways to lay out a design on a device."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, replace
+from itertools import product
+from typing import TYPE_CHECKING
+
+from pla.fitting.layout import layout
+from pla.fitting.netlist import choices, netlist, restrictions
+from pla.fitting.placing import delays, passes_of
+from pla.fitting.scenario import scenarios, taken_apart
+from pla.fitting.spots import Spots
+
+if TYPE_CHECKING:
+    from collections.abc import Iterator
+
+    from pla.fitting.layout import Layout
+    from pla.fitting.netlist import Netlist
+    from pla.fitting.problem import Problem
+    from pla.fitting.scenario import Scenario
+
+__all__ = ["Found", "best_layout", "ways"]
+
+_MOST_FLEXIBLE = 6
+
+
+@dataclass(frozen=True, slots=True)
+class Found:
+    """A layout and how it compares: late outputs, terms, passes, signals fed back."""
+
+    layout: Layout
+    rank: tuple[int, int, int, int]
+
+
+def best_layout(problem: Problem) -> Found | None:
+    """The best layout of a design over all signals that could be fed back; ``None`` if none fits.
+
+    Args:
+        problem: The design with nothing fed back.
+    """
+    best: Found | None = None
+    for chosen in choices(problem.netlist.design):
+        found = _of(problem, netlist(problem.netlist.design, chosen))
+        if found is None:
+            for restriction in restrictions(chosen) if chosen else ():
+                tried = _of(problem, netlist(problem.netlist.design, chosen, restriction))
+                found = _better(found, tried)
+        best = _better(best, found)
+    return best
+
+
+def ways(problem: Problem) -> Iterator[tuple[Scenario, frozenset[int]]]:
+    """All decisions to be made beforehand: enable pins and so on, and nets for shared OR gates."""
+    switches = [switch for switch in problem.switches if switch is not None]
+    found = scenarios(problem.device, problem.netlist.design, switches, problem.placed_inputs)
+    for scenario in found:
+        for shared in _partitions(problem, scenario):
+            yield scenario, shared
+
+
+def _of(problem: Problem, nets: Netlist | None) -> Found | None:
+    if nets is None:
+        return None
+    own = replace(problem, netlist=nets)
+    inner = sum(net.inner for net in nets.nets)
+    best: Found | None = None
+    for scenario, shared in ways(own):
+        best = _better(best, _judged(layout(own, scenario, shared)))
+    if best is None and inner:
+        for scenario, shared in ways(own):
+            for apart in taken_apart(scenario, inner):
+                best = _better(best, _judged(layout(own, apart, shared)))
+    return best
+
+
+def _judged(found: Layout | None) -> Found | None:
+    if found is None:
+        return None
+    late = sum(delay.late for delay in delays(found))
+    rank = (late, found.minimum.count, max(passes_of(found), default=0))
+    return Found(found, (*rank, len(found.problem.netlist.fed)))
+
+
+def _better(one: Found | None, other: Found | None) -> Found | None:
+    """The first where they are equal."""
+    if one is None or other is None:
+        return one or other
+    return other if other.rank < one.rank else one
+
+
+def _partitions(problem: Problem, scenario: Scenario) -> list[frozenset[int]]:
+    """Which nets go onto the shared OR array, all of them first.
+
+    Where a device has both kinds of OR gates: all ways where few nets could be on either; where
+    many, those in which the nets with the largest or with the smallest sums share.
+    """
+    everyone = frozenset(range(len(problem.netlist.nets)))
+    device = problem.device
+    own_cells = [cell for cell in device.cells if cell.key not in device.or_column]
+    if not own_cells:
+        return [everyone]
+    if not device.or_column:
+        return [frozenset()]
+    forced: set[int] = set()
+    flexible: list[int] = []
+    for net in problem.netlist.nets:
+        by_class = [
+            any(Spots(problem, scenario, group).of_net(net, c, {}) for c in problem.polarities(net))
+            for group in (frozenset(), everyone)
+        ]
+        if all(by_class):
+            flexible.append(net.index)
+        elif by_class[1]:
+            forced.add(net.index)
+    if len(flexible) <= _MOST_FLEXIBLE:
+        ways_to_share = product((True, False), repeat=len(flexible))
+        picked = [[j for j, yes in zip(flexible, way, strict=True) if yes] for way in ways_to_share]
+    else:
+        nets = problem.netlist.nets
+        ordered = sorted(
+            flexible,
+            key=lambda j: min(problem.alone(nets[j], c).count for c in problem.polarities(nets[j])),
+        )
+        picked = [part for k in range(len(ordered) + 1) for part in (ordered[k:], ordered[:k])]
+    return list(dict.fromkeys(frozenset(forced.union(part)) for part in picked))
