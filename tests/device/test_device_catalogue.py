@@ -13,8 +13,18 @@ from pla.device.catalogue import catalogue, find_device
 from pla.errors import InputError
 
 NAMES = (
+    "modal-8x4-gated",
+    "modal-8x4-plain",
+    "modal-8x4-split",
+    "swap-8x4",
     "shared-8x16x4",
+    "own-9x5",
+    "gate-9x6",
     "shared-10x24x6",
+    "joint-10x27x6",
+    "shared-10x28x4",
+    "varied-11x5",
+    "varied-11x5-marked",
     "shared-12x32x6",
     "shared-14x40x8",
     "shared-16x48x8",
@@ -42,6 +52,16 @@ FIGURES = [
     ("shared-14x40x8", 14, 40, 8, 24, 1532, 40 + 1 + 1),
     ("shared-16x48x8", 16, 48, 8, 28, 1928, 48 + 48 + 1),
     ("shared-20x96x12", 20, 96, 12, 40, 5004, 1 + 96),
+    ("modal-8x4-gated", 8, 24, 4, 14, 638, 24 + 4),
+    ("modal-8x4-plain", 8, 24, 4, 14, 638, 24 + 4),
+    ("modal-8x4-split", 8, 24, 4, 14, 638, 24 + 4),
+    ("swap-8x4", 8, 24, 4, 14, 488, 24 + 4),
+    ("own-9x5", 9, 30, 5, 16, 720, 30),
+    ("gate-9x6", 9, 24, 6, 18, 438, 18 + 1),
+    ("joint-10x27x6", 10, 27, 6, 18, 776, 15 + 27 + 2),
+    ("shared-10x28x4", 10, 32, 4, 16, 1196, 32 + 1),
+    ("varied-11x5", 11, 58, 5, 18, 1866, 58 + 1),
+    ("varied-11x5-marked", 11, 58, 5, 18, 1906, 58 + 2),
 ]
 
 
@@ -64,7 +84,7 @@ def test_figures(name, inputs, terms, outputs, pins, fuses, lists):
 def test_every_pin_is_accounted_for(name):
     device = find_device(name)
     roles = [
-        *device.input_pins,
+        *{*device.input_pins, *device.enable_pins},
         *device.output_pins,
         *device.unconnected,
         *device.ground,
@@ -177,6 +197,11 @@ SENSES = [
     ("shared-14x40x8", "dead", "blank", "sum'"),
     ("shared-16x48x8", "true", "dead", "sum"),
     ("shared-20x96x12", "dead", "blank", "sum"),
+    ("modal-8x4-gated", "true", "drop", "sum"),
+    ("swap-8x4", "true", "dead", "sum"),
+    ("own-9x5", "dead", "blank", "sum'"),
+    ("gate-9x6", "true", "dead", "sum"),
+    ("varied-11x5", "dead", "blank", "sum"),
 ]
 
 
@@ -193,8 +218,26 @@ def test_senses(name, row, unused, shows):
 def test_the_arrays_differ_where_it_matters():
     devices = [find_device(name) for name in NAMES]
     assert {d.technology for d in devices} == {"one-time", "erasable"}
-    assert {(d.links.blank, d.links.connected) for d in devices} == {(0, 0), (1, 0), (1, 1)}
-    assert {len(cell.links) for d in devices for cell in d.cells} == {0, 1}
+    assert {(d.links.blank, d.links.connected) for d in devices} == {
+        (0, 0),
+        (0, 1),
+        (1, 0),
+        (1, 1),
+    }
+    assert {len(cell.links) for d in devices for cell in d.cells} == {0, 1, 2}
+    assert {d.links.unused_enable for d in devices} == {None, "blank", "off", "on"}
+
+
+def test_modes_and_variants_of_one_part_are_a_family():
+    families = {}
+    for name in NAMES:
+        families.setdefault(find_device(name).family, []).append(name)
+    assert {family: names for family, names in families.items() if len(names) > 1} == {
+        "modal-8x4": ["modal-8x4-gated", "modal-8x4-plain", "modal-8x4-split"],
+        "varied-11x5": ["varied-11x5", "varied-11x5-marked"],
+    }
+    modes = {find_device(name).mode_fuses for name in families["modal-8x4"]}
+    assert modes == {((0, 1), (1, 1)), ((0, 0), (1, 1)), ((0, 1), (1, 0))}
 
 
 def test_a_path_is_read_as_a_file(tmp_path, monkeypatch):
