@@ -67,3 +67,27 @@ def check_sources(behaviour):
             reasons = [s.reason for s in behaviour.dont_cares if held(s.cubes, point, position)]
             free = value(behaviour, point, position) == "x"
             assert len(reasons) == int(free), (position, point, reasons)
+
+
+def driving(behaviour, point, output):
+    """1, 0 or x: whether an output drives its pin; a contradiction is an error."""
+    enable = behaviour.outputs[output].enable
+    if enable is None:
+        return 1
+    on, off = held(enable.on, point, 0), held(enable.off, point, 0)
+    assert not (on and off)
+    return 1 if on else 0 if off else "x"
+
+
+def inner_value(behaviour, point, name):
+    """1, 0 or x of an inner signal; a contradiction is an error."""
+    position = [inner.name for inner in behaviour.inner].index(name)
+    on = held(behaviour.inner_function.on, point, position)
+    off = held(behaviour.inner_function.off, point, position)
+    assert not (on and off)
+    return 1 if on else 0 if off else "x"
+
+
+def reasons(behaviour, point, output):
+    """Why an output is free."""
+    return [s.reason for s in behaviour.dont_cares if held(s.cubes, point, output)]
