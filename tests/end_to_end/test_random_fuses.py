@@ -35,7 +35,7 @@ def random_states(rng: random.Random, device: Description) -> list[int]:
     pins = [i for i in lines if not isinstance(device.columns[i], int | str)]
     for fuses in device.links:
         # Rows that see inputs only keep the number of rings small.
-        among = pins if rng.random() < 0.7 else lines
+        among = pins if rng.random() < 0.85 else lines
         chosen = set(rng.sample(among, rng.choice([0, 1, 1, 2, 2, 3])))
         for column in lines:
             states[fuses[column]] = joined if column in chosen else apart

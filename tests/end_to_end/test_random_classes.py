@@ -1,0 +1,192 @@
+"""Random designs on random devices of every class: what the pins do is what was asked.
+
+The wanted levels come from the generator of the designs, the levels at the pins from the oracle;
+of the program only the written file and the pins of ``--json`` are used.
+"""
+
+import random
+
+import pytest
+from calls import call_json
+from device_classes import CLASSES, random_class_device
+from oracles.device_description import Description, read_device_file
+from oracles.fuse_file import read_transmission
+from oracles.pin_simulation import Level, signature_text, simulate
+from random_bus_designs import BusDesign, Shape, random_bus_design
+from random_designs import FREE
+
+IN_SUITE, IN_ALL = 15, 100
+
+
+def random_shape(rng: random.Random, which: str, device: Description) -> Shape:
+    """A size that mostly fits the device."""
+    cells = [cell for cell in device.cells.values() if cell.pin is not None]
+    own = [len(m.terms) for c in cells for m in c.modes.values() if m.terms is not None]
+    three_state = [c for c in cells if any(m.enable[0] != "always" for m in c.modes.values())]
+    by_pin = bool(device.enable_pins)
+    outputs = rng.randint(1, len(cells))
+    enabled = rng.randint(0, min(outputs, len(three_state)))
+    if by_pin:
+        # A cell that a pin enables serves an output without enable only where the pin is tied.
+        enabled = min(outputs, len(three_state))
+        outputs = enabled + rng.randint(0, len(cells) - len(three_state))
+    read = {m.columns[i] for c in cells for m in c.modes.values() for i in m.columns}
+    fed = {line.of for line in read if line is not None and line.kind == "pin"}
+    levels = {m.enable[2] for c in cells for m in c.modes.values() if m.enable[0] == "pin"}
+    return Shape(
+        inputs=rng.randint(3, max(3, len(device.input_pins) - rng.randint(0, 1))),
+        outputs=outputs,
+        span=rng.choice([2, 3]) if own and min(own) < 6 else rng.choice([3, 4]),
+        enabled=enabled,
+        enabled_by="input" if by_pin else "product",
+        enable_active="low" if 0 in levels else "high",
+        bidirectional=rng.randint(0, 2) if fed and enabled else 0,
+        inner=rng.choice([0, 1, 1, 2])
+        if which in {"buried", "cells", "mixed"}
+        else rng.choice([0, 1]),
+        signature=len(device.signature.fuses) // 8
+        if device.signature and rng.random() < 0.7
+        else 0,
+    )
+
+
+def random_case(which, seed, folder):
+    rng = random.Random(f"{which} class {seed}")
+    path = random_class_device(rng, which).write(folder)
+    device = read_device_file(path)
+    design = random_bus_design(rng, random_shape(rng, which, device))
+    (folder / "design.toml").write_text(design.text, encoding="utf-8")
+    return path, device, design
+
+
+def planned(which, seed, folder, capsys):
+    """Whether it fitted; if so, that it does what was asked."""
+    path, device, design = random_case(which, seed, folder)
+    out = folder / "out"
+    code, document = call_json(capsys, "plan", folder / "design.toml", "--device", path, "-o", out)
+    assert code in {0, 1}, document.get("errors")
+    if code == 1:
+        assert document["fits"] is False
+        assert document["reasons"]
+        assert not list(folder.rglob("*.jed"))
+        return False
+    states = read_transmission((out / "design.jed").read_bytes()).states
+    check_pins(device, design, document["pins"])
+    check_levels(device, design, document["pins"], states)
+    if design.signature:
+        assert signature_text(device, states) == design.signature
+    return True
+
+
+def check_pins(device, design, pins):
+    """Every signal has a pin of its own that can serve it; what is read is where it is driven."""
+    for output, name in design.reads.items():
+        assert pins.get(name, pins[output]) == pins[output]
+    own = {name: pin for name, pin in pins.items() if name not in design.read_names}
+    assert set(design.output_names) <= set(own)
+    assert len(set(own.values())) == len(own)
+    for name, pin in own.items():
+        assert name in design.output_names or name in design.input_names or pin is None
+        assert pin in device.cell_pins or name in design.input_names
+
+
+def check_levels(device, design, pins, states):
+    """Two runs of all points: unused inputs low, and at anything."""
+    points, low = design.points, design.active_low
+    cases, everywhere = 2 * points, (1 << 2 * points) - 1
+    rng = random.Random(1)
+    drivers = {pin: (everywhere, rng.getrandbits(points) << points) for pin in device.input_pins}
+    drivers |= tied_enables(device, design, pins, states, everywhere)
+    for name in design.input_names:
+        if name in pins:
+            drivers[pins[name]] = (everywhere, signal_level(design, name, cases))
+    for output, name in design.reads.items():
+        away = [not design.drives[output][case % points] for case in range(cases)]
+        outside = sum(1 << case for case, is_away in enumerate(away) if is_away)
+        drivers[pins[output]] = (outside, signal_level(design, name, cases))
+    found = simulate(device, states, drivers, cases).pins
+    for case in range(cases):
+        seen = point_seen(design, pins, found, case)
+        for name in design.output_names if seen is not None else []:
+            level = found[pins[name]].at(case)
+            drives = design.drives.get(name, [True] * points)[seen]
+            wanted = design.table[name][seen]
+            told = f"{name} on pin {pins[name]} at {seen:b}: {level}"
+            if drives is FREE:
+                continue
+            if not drives:
+                # From outside both levels come in turn: another level here would be contention.
+                outside = (
+                    f"{design_bit(design, design.reads[name], case) ^ low[name]:d}"
+                    if (name in design.reads)
+                    else "Z"
+                )
+                assert level == outside, told
+            elif wanted is not FREE:
+                assert level == f"{wanted ^ low[name]:d}", told
+
+
+def design_bit(design, name, case):
+    return case >> design.bit_of(name) & 1
+
+
+def signal_level(design, name, cases):
+    return sum(
+        1 << case
+        for case in range(cases)
+        if design_bit(design, name, case) != design.active_low[name]
+    )
+
+
+def point_seen(design: BusDesign, pins: dict[str, int], found: dict[int, Level], case: int):
+    """The point that the design sees: a pin that the part drives itself reads what it drives.
+
+    ``None`` where that is undefined and may be, as the output is free there.
+    """
+    seen = case % design.points
+    for output, name in design.reads.items():
+        if design.drives[output][seen]:
+            level = found[pins[output]].at(case)
+            if level not in {"0", "1"}:
+                if design.table[output][seen] is FREE:
+                    return None
+                continue
+            bit = 1 << design.bit_of(name)
+            asserted = (level == "1") != design.active_low[output]
+            seen = seen | bit if asserted else seen & ~bit
+    return seen
+
+
+def tied_enables(device, design, pins, states, everywhere):
+    """Enable pins without a signal, tied so that the outputs behind them drive."""
+    tied = {}
+    for name in design.output_names:
+        cell = next(c for c in device.cells.values() if c.pin == pins[name])
+        mode = cell.modes["".join(str(states[fuse]) for fuse in cell.links)]
+        if mode.enable[0] == "pin" and name not in design.drives:
+            _, pin, level = mode.enable
+            assert pin not in pins.values(), f"{name} always drives, but pin {pin} switches it"
+            tied[pin] = (everywhere, everywhere * level)
+    return tied
+
+
+@pytest.mark.parametrize("which", CLASSES)
+def test_random_designs_on_each_class(which, tmp_path, capsys):
+    fitted = [planned(which, seed, made_folder(tmp_path, seed), capsys) for seed in range(IN_SUITE)]
+    assert sum(fitted) >= IN_SUITE / 2
+
+
+@pytest.mark.slow
+@pytest.mark.parametrize("which", CLASSES)
+def test_many_random_designs_on_each_class(which, tmp_path, capsys):
+    fitted = 0
+    for seed in range(1000, 1000 + 4 * IN_ALL):
+        fitted += planned(which, seed, made_folder(tmp_path, seed), capsys)
+        if fitted == IN_ALL:
+            break
+    assert fitted == IN_ALL
+
+
+def made_folder(folder, seed):
+    (folder / str(seed)).mkdir()
+    return folder / str(seed)
