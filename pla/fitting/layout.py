@@ -69,7 +69,8 @@ def layout(problem: Problem, scenario: Scenario, shared: frozenset[int]) -> Layo
     """The cheapest layout with these nets on the shared OR array; ``None`` if there is none.
 
     Cheapest is, one behind the other: fewest terms, fewest inputs without a pin, fewest inputs on
-    pins of cells, lowest pins in order of the outputs and then of the inputs.
+    pins of cells and inner signals that show, lowest pins in order of the outputs and then of the
+    inputs.
     """
     spots = Spots(problem, scenario, shared)
     nets = problem.netlist.nets
@@ -240,13 +241,28 @@ def _cofactor(cover: Cover, bit: int, *, high: bool) -> Cover:
 def _assigned(
     spots: Spots, polarities: Mapping[int, Sequence[bool]], needs: Needs
 ) -> _Assigned | None:
-    """The cheapest assignment in which each net has one of these polarities."""
+    """The cheapest assignment in which each net has one of these polarities.
+
+    Where some input goes without a pin, those that are needed take the lowest pins.
+    """
+    found = _in_order(spots, polarities, needs, spots.inputs)
+    if found is None or len(found.input_pins) == len(spots.inputs):
+        return found
+    return _in_order(spots, polarities, needs, sorted(spots.inputs, key=lambda i: not needs[i]))
+
+
+def _in_order(
+    spots: Spots,
+    polarities: Mapping[int, Sequence[bool]],
+    needs: Needs,
+    inputs: Sequence[int],
+) -> _Assigned | None:
     problem, nets = spots.problem, spots.problem.netlist.nets
     if not all(spots.carries(pin, i, needs[i]) for i, pin in spots.carried.items()):
         return None
-    members = len(nets) + len(spots.inputs)
+    members = len(nets) + len(inputs)
     # Costs of lower rank never add up to one of higher rank.
-    base = len(spots.ranks) + len(spots.inputs) + 1
+    base = len(spots.ranks) + len(inputs) + 1
     unit = base**members
     absent = unit * (2 * members + 1)
     per_term = absent * (members + 1)
@@ -260,13 +276,13 @@ def _assigned(
             found = spots.of_net(net, c, needs)
             terms = 0 if net.index in spots.shared or not found else problem.alone(net, c).count
             for resource, spot in found.items():
-                cost = terms * per_term + spot.blemish * unit + spots.ranks[resource] * weight
+                cost = terms * per_term + spot.shows * unit + spots.ranks[resource] * weight
                 if cost < best.get(resource, cost + 1):
                     best[resource], how[resource] = cost, (c, spot)
         costs.append(best)
         chosen.append(how)
     modes: list[dict[Resource, Mode | None]] = []
-    for place, i in enumerate(spots.inputs, len(nets)):
+    for place, i in enumerate(inputs, len(nets)):
         weight = base ** (members - 1 - place)
         pins = spots.of_input(i, needs[i])
         found_costs = {
@@ -286,7 +302,7 @@ def _assigned(
     return _Assigned(
         {net.index: c for net, (c, _) in zip(nets, picked, strict=True)},
         {net.index: spot for net, (_, spot) in zip(nets, picked, strict=True)},
-        {i: pin for i, pin in zip(spots.inputs, on_pins, strict=True) if isinstance(pin, int)},
+        {i: pin for i, pin in zip(inputs, on_pins, strict=True) if isinstance(pin, int)},
         {
             cell_of[pin].key: mode
             for pin, own in zip(on_pins, modes, strict=True)

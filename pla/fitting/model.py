@@ -83,6 +83,8 @@ class PlacedOutput:
         mode: How the cell is set.
         cell: The cell.
         enable: What switches the pin; ``None`` if it is always driven, or never.
+        shown: The pin that an inner signal drives, where its cell cannot feed it back otherwise or
+            cannot be switched off.
     """
 
     index: int
@@ -93,6 +95,7 @@ class PlacedOutput:
     mode: Mode
     cell: Cell
     enable: PlacedEnable | None = None
+    shown: int | None = None
 
 
 @dataclass(frozen=True, slots=True)

@@ -38,10 +38,15 @@ class Wish:
 
 @dataclass(frozen=True, slots=True)
 class Offer:
-    """A mode that will do, and how well: 0, or 1 where an inner signal shows at a pin."""
+    """A mode that will do.
+
+    Attributes:
+        mode: The mode.
+        shows: An inner signal drives the pin of the cell.
+    """
 
     mode: Mode
-    blemish: int
+    shows: bool
 
 
 def shown(active_low: bool, complemented: bool) -> Shows:
@@ -54,32 +59,42 @@ def shown(active_low: bool, complemented: bool) -> Shows:
 
 
 def offers(scenario: Scenario, cell: Cell, wish: Wish, needs: Needs) -> list[Offer]:
-    """The modes in which a cell can hold a net, those without a blemish first."""
+    """The modes in which a cell can hold a net, those in which no inner signal shows first."""
     apart = cell.key in scenario.split
     found = []
-    for mode in scenario.modes[cell.key]:
-        blemish = _blemish(scenario, cell, mode, wish, apart)
-        if blemish is None:
-            continue
-        net = wish.net
+    net = wish.net
+    possible = [
+        (mode, shows)
+        for mode in scenario.modes[cell.key]
+        for shows in _ways(scenario, cell, mode, wish, apart)
+    ]
+    for mode, shows in possible:
         if net.reads is not None and not _has(
             _lines(scenario, mode), Line("pin", _pin(cell)), needs.get(net.reads), net
         ):
             continue
-        if net.fed is not None and not _feeds(scenario, cell, mode, wish, needs):
+        if net.fed is not None and not _feeds(scenario, cell, mode, wish, needs, shows=shows):
             continue
-        found.append(Offer(mode, blemish))
-    return sorted(found, key=lambda offer: offer.blemish)
+        found.append(Offer(mode, shows))
+    return sorted(found, key=lambda offer: offer.shows)
 
 
-def fed_lines(scenario: Scenario, cell: Cell, mode: Mode, wish: Wish) -> list[Line]:
-    """Lines that are 1 while a net is asserted, as far as the cell could provide them."""
+def fed_lines(scenario: Scenario, cell: Cell, mode: Mode, wish: Wish, *, shows: bool) -> list[Line]:
+    """Lines that are 1 while a net is asserted, as far as the cell could provide them.
+
+    Args:
+        scenario: What is decided.
+        cell: The cell that holds the net.
+        mode: How it is set.
+        wish: The net in its polarity.
+        shows: Whether it drives the pin, where it is an inner signal.
+    """
     lines = [Line("sum", cell.key, wish.complemented)]
-    drive = scenario.drive(mode)
     if (
         cell.pin is not None
         and wish.net.enable is None
-        and (drive == "always" or (drive == "row" and not wish.net.inner))
+        and scenario.drive(mode) in {"always", "row"}
+        and (shows or not wish.net.inner)
     ):
         # What the pin shows is the sum or its complement; it is the level that comes back.
         lines.append(Line("pin", cell.pin, wish.complemented != (mode.pin == "sum'")))
@@ -121,27 +136,29 @@ def column_pair(
     )
 
 
-def _blemish(scenario: Scenario, cell: Cell, mode: Mode, wish: Wish, apart: bool) -> int | None:
-    """``None`` if the mode will not do at all."""
+def _ways(scenario: Scenario, cell: Cell, mode: Mode, wish: Wish, apart: bool) -> tuple[bool, ...]:
+    """Whether an inner signal would show at the pin; empty if the mode will not do at all."""
     drive, net = scenario.drive(mode), wish.net
     if net.inner:
-        quiet = cell.pin is None or drive in {"never", "row"}
+        if cell.pin is None or drive == "never":
+            return (False,)
         if apart:
-            return 0 if quiet and mode.pin == "none" else None
-        return 0 if quiet else 1
+            return ()
+        return {"row": (False, True), "always": (True,)}.get(str(drive), ())
     if cell.pin is None or apart or mode.pin != shown(net.active_low, wish.complemented):
-        return None
+        return ()
     if net.enable is None:
-        return 0 if drive in {"always", "row"} else None
-    if drive == "row" or (isinstance(drive, Switch) and drive == wish.enable):
-        return 0
-    return None
+        return (False,) if drive in {"always", "row"} else ()
+    by_pin = isinstance(drive, Switch) and drive == wish.enable
+    return (False,) if drive == "row" or by_pin else ()
 
 
-def _feeds(scenario: Scenario, cell: Cell, mode: Mode, wish: Wish, needs: Needs) -> bool:
+def _feeds(
+    scenario: Scenario, cell: Cell, mode: Mode, wish: Wish, needs: Needs, *, shows: bool
+) -> bool:
     """Whether the feedback of a cell has the lines that are needed."""
     lines = _lines(scenario, mode)
-    asserted = fed_lines(scenario, cell, mode, wish)
+    asserted = fed_lines(scenario, cell, mode, wish, shows=shows)
     true = any(line in lines for line in asserted)
     complement = any(line.inverse in lines for line in asserted)
     senses = needs.get(wish.net.fed if wish.net.fed is not None else -1)

@@ -121,7 +121,7 @@ def _inputs(layout: Layout, modes: Mapping[Source, Mode]) -> Iterator[PlacedInpu
             net = fed_by[i]
             spot = layout.spots[net.index]
             wish = problem.wish_of(net, layout.minimum.complemented[net.index])
-            asserted = fed_lines(layout.scenario, spot.cell, spot.mode, wish)
+            asserted = fed_lines(layout.scenario, spot.cell, spot.mode, wish, shows=spot.shows)
             source = spot.cell.key
         elif i in read_at:
             pin = layout.spots[read_at[i].index].cell.pin
@@ -164,6 +164,7 @@ def _outputs(layout: Layout) -> Iterator[PlacedOutput]:
             spot.mode,
             spot.cell,
             enable,
+            spot.cell.pin if spot.shows else None,
         )
 
 

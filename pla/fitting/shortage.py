@@ -41,9 +41,8 @@ class Shortage:
     @cached_property
     def reasons(self) -> tuple[str, ...]:
         """One sentence each; never empty."""
-        found = [*self._barred(), *self._too_many_outputs(), *self._too_many_inputs()]
-        if self.minimum is not None:
-            found += [*self._shared_terms(), *self._own_terms()]
+        found = [*self._barred(), *self._shared_terms(), *self._own_terms()]
+        found += [*self._too_many_inputs(), *self._too_many_outputs()]
         if not found:
             found += self._crowded()
         return tuple(found) or ("no way was found to put all signals in their places",)
@@ -241,15 +240,19 @@ class Shortage:
                 )
                 found = problem.alone(net, c)
                 bound = "" if found.proven else f" (at least {found.lower_bound})"
-                sizes.append(f"{found.count}{bound}{' as the complement' if c else ''}")
+                sizes.append(
+                    f"{found.count} product terms{bound}{' as the complement' if c else ''}"
+                )
                 short = found.count - has
                 if best is None or short < best[0]:
                     best = short, str(has)
             if best is not None and best[0] > 0:
-                words = f"{' or '.join(sizes)} product terms"
-                yield net, best[0], f"{words}, and the largest cell it could have holds {best[1]}"
+                words = f"{' or '.join(sizes)}, and the largest cell it could have holds {best[1]}"
+                yield net, best[0], words
 
     def _own_terms(self) -> Iterator[str]:
+        if self.minimum is None:
+            return
         for net, short, words in self._short_sums():
             kept = f", {self.problem.reserve} kept spare" if self.problem.reserve else ""
             yield f"{net.name} needs {words}{kept}: {short} too many"

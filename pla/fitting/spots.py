@@ -26,11 +26,11 @@ Resource: TypeAlias = Hashable
 
 @dataclass(frozen=True, slots=True)
 class Spot:
-    """A cell and how it is set, and how well that serves: 0, or 1 with a blemish."""
+    """A cell and how it is set, and whether an inner signal shows at its pin."""
 
     cell: Cell
     mode: Mode
-    blemish: int
+    shows: bool
 
 
 @dataclass(frozen=True)
@@ -89,7 +89,7 @@ class Spots:
                     or len(offer.mode.terms) - problem.reserve
                     >= problem.alone(net, complemented).count
                 ):
-                    found[self._inside(cell)] = Spot(cell, offer.mode, offer.blemish)
+                    found[self._inside(cell)] = Spot(cell, offer.mode, offer.shows)
                     break
         return found
 

@@ -84,8 +84,8 @@ def _enable_rows(
 ) -> Iterator[tuple[int, Iterator[tuple[int, int]]]]:
     """The enable row of each cell that has one as it is set, and its links.
 
-    An output without an enable of its own always drives. The pin of a cell that holds an inner
-    signal or serves as an input is off.
+    An output without an enable of its own always drives. The pin of a cell that serves as an input
+    is off, and so is that of one that holds an inner signal, unless it is fed back from there.
     """
     device = plan.device
     output_of = {output.cell.key: output for output in plan.outputs}
@@ -94,7 +94,7 @@ def _enable_rows(
         if row is None:
             continue
         output = output_of.get(cell.key)
-        if output is not None and output.pin is not None:
+        if output is not None and (output.pin is not None or output.shown is not None):
             enable = output.enable
             wanted = frozenset() if enable is None else columns_of(plan, enable.cube)
             yield row, live_row(device, row, wanted)
