@@ -45,7 +45,10 @@ class Questions(Protocol[V]):
         ...
 
     def failure(self, demanded: Cover, value: V, expected: int, /) -> int | None:
-        """One of the combinations demanded at which the value is not known to be the expected."""
+        """One of the combinations demanded at which the value is not known to be the expected.
+
+        If there are any, one at which it is known to be the other.
+        """
         ...
 
     def unsettled(self, demanded: Cover, value: V, excepted: V, /) -> int | None:
@@ -77,7 +80,10 @@ class BySimulation:
         return Signal.of(all_combinations(self.n_inputs, index))
 
     def failure(self, demanded: Cover, value: Signal, expected: int) -> int | None:
-        return _first(_combinations_of(demanded) & ~(value.high if expected else value.low))
+        held = _combinations_of(demanded)
+        right, wrong = (value.high, value.low) if expected else (value.low, value.high)
+        point = _first(held & wrong)
+        return _first(held & ~right) if point is None else point
 
     def unsettled(self, demanded: Cover, value: Signal, excepted: Signal) -> int | None:
         return _first(_combinations_of(demanded) & ~value.known & ~excepted.high)
@@ -125,14 +131,15 @@ class ByCubes:
 
     def failure(self, demanded: Cover, value: Known, expected: int) -> int | None:
         self.cases += len(demanded)
-        if value.total and not value.is_direct(expected):
+        if value.is_direct(1 - expected):
             wrong = value.where(1 - expected)
             self.cases += len(wrong)
             pair = algebra.find_common(demanded, wrong)
-            if pair is None:
+            if pair is not None:
+                a, b = list(demanded)[pair[0]], list(wrong)[pair[1]]
+                return a.ones | b.ones
+            if value.total:
                 return None
-            a, b = list(demanded)[pair[0]], list(wrong)[pair[1]]
-            return a.ones | b.ones
         right = value.where(expected)
         self.cases += len(right)
         return _outside(demanded, right)

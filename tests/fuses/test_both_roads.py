@@ -1,4 +1,4 @@
-"""The proof by simulation, the proof by cubes and a point-by-point evaluation agree on any fuses."""
+"""Proof by simulation, proof by cubes and a point-by-point evaluation agree on any fuses."""
 
 import random
 from collections import Counter
