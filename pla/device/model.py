@@ -390,6 +390,12 @@ class Device:
         return () if self.or_array is None else self.or_array.terms
 
     @cached_property
+    def term_rows(self) -> tuple[int, ...]:
+        """Rows that are a term of some sum in some mode, ascending."""
+        own = {row for cell in self.cells for mode in cell.modes for row in mode.terms}
+        return tuple(sorted(own.union(self.shared_rows)))
+
+    @cached_property
     def cell_of_pin(self) -> dict[int, Cell]:
         """Cells that have a pin, by it."""
         return {cell.pin: cell for cell in self.cells if cell.pin is not None}
@@ -439,6 +445,22 @@ class Device:
             if line is not None and line.kind == "pin"
         }
         return tuple(sorted(p for p in lines if isinstance(p, int) and p not in self.cell_of_pin))
+
+    @cached_property
+    def readable_pins(self) -> tuple[int, ...]:
+        """Pins whose level a term can depend on in some mode, without the part driving them.
+
+        The input pins, and pins of cells that can be switched off, ascending.
+        """
+        fixed = {line.of for line in self.fixed_lines if line is not None}
+        quiet = {
+            pin
+            for pin, cell in self.cell_of_pin.items()
+            for mode in cell.modes
+            if (mode.pin == "none" or mode.enable.kind != "always")
+            and (pin in fixed or any(line == Line("pin", pin) for _, line in mode.lines))
+        }
+        return tuple(sorted({*self.input_pins, *quiet}))
 
     @cached_property
     def output_pins(self) -> tuple[int, ...]:
