@@ -142,7 +142,7 @@ ONE = [
     pytest.param(
         inner("1", "rd wx"),
         "11:13 NAME-UNKNOWN there is no input, output or inner signal 'wx'",
-        "did you mean 'wr'?",
+        "valid are: rd, wr, key, f, armed",
         id="inner-unknown",
     ),
     pytest.param(
