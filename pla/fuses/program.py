@@ -98,4 +98,5 @@ def _notes(plan: Plan) -> Iterator[str]:
         yield f"pin {pin} enables outputs, tie {'high' if level else 'low'}"
     for output in plan.outputs:
         if output.pin is None:
-            yield f"cell {output.cell.key} inner {output.name}"
+            shown = f", shows at pin {output.shown}" if output.shown is not None else ""
+            yield f"cell {output.cell.key} inner {output.name}{shown}"

@@ -36,11 +36,14 @@ class Predicted:
     def __init__(self, case, document, states):
         self.case, self.pins, self.states = case, document["pins"], states
         design, made = case.design, case.made
-        links = tomllib.loads(made.text)["links"]
+        device = tomllib.loads(made.text)
+        links = device["links"]
         all_lines = {(role[2], role[3]) for role in made.roles.values() if role[0] == "and"}
         all_lines.discard((None, False))
         blank_joins = links["blank"] == links["connected"]
-        lines = all_lines if blank_joins or links["unused_term"] == "dead" else set()
+        # Spare rows of a one-time part that are joined to no sum stay blank.
+        filled = links["unused_term"] == "dead" and device["technology"] == "erasable"
+        lines = all_lines if blank_joins or filled else set()
         sums = set(made.outputs) if blank_joins else set()
         self.rows = [(set(lines), set(sums)) for _ in range(made.terms)]
         for row, term in enumerate(document["terms"]):

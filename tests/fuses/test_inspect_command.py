@@ -13,6 +13,7 @@ from pla.cli.main import run
 from pla.device.catalogue import catalogue, find_device
 from pla.fuses.fusemap import FuseMap
 from pla.fuses.jesd3 import write_fuse_file
+from pla.fuses.signature import encode_signature
 
 
 def inspect(capsys, tmp_path, data, *options):
@@ -80,6 +81,7 @@ def test_json(capsys, tmp_path):
         "fields": dict.fromkeys(("C", "F", "G", "N", "QF", "QP", "QV", "V", "X"), 1) | {"L": 2},
         "device": None,
         "devices": [],
+        "other_modes": [],
     }
     keys = list(json.loads(out, object_pairs_hook=lambda pairs: [k for k, _ in pairs]))
     assert keys == sorted(keys)
@@ -96,9 +98,8 @@ def test_what_is_unknown_is_null(capsys, tmp_path):
 @pytest.mark.parametrize("name", catalogue())
 def test_devices_of_that_size_are_named(capsys, tmp_path, name):
     device = find_device(name)
-    data = write_fuse_file(
-        "x", [], device.pins, FuseMap.filled(device.fuses, 0), list(device.blocks())
-    )
+    fuses = FuseMap.filled(device.fuses, 0).changed(device.mode_fuses)
+    data = write_fuse_file("x", [], device.pins, fuses, list(device.blocks()))
     _, out, _ = inspect(capsys, tmp_path, data, "--json")
     assert name in json.loads(out)["devices"]
     other = write_fuse_file("x", [], device.pins + 99, FuseMap.filled(device.fuses, 0), [])
@@ -121,7 +122,7 @@ def test_refused_file(capsys, tmp_path):
 def rows(out):
     """The summary as a dictionary; of a label that stands there twice, the last."""
     block = out.split("\n\n")[1].splitlines()
-    return dict(re.split(r" {2,}", line.strip(), maxsplit=1) for line in block)
+    return dict(re.split(r" {2,}", x.strip(), maxsplit=1) for x in block if x[2] != " ")
 
 
 def golden_array(**changes):
@@ -264,6 +265,8 @@ def test_another_device_is_a_no_in_words(capsys, tmp_path):
             f"QF is {device.fuses}, but the device has 966 fuses",
             f"QP is {device.pins}, but the device has 20 pins",
         ],
+        "family": other.name,
+        "signature": None,
     }
 
 
@@ -327,3 +330,83 @@ def test_quiet_leaves_out_warnings_beside_errors(capsys, tmp_path, quiet):
     err = capsys.readouterr().err
     assert ("warning:" in err) == (not quiet)
     assert "error:" in err
+
+
+FAMILY = ["modal-8x4-gated", "modal-8x4-plain", "modal-8x4-split"]
+
+
+def modal_file(name, **changes):
+    """A blank part of the family in one of its device-wide modes, with a text in it."""
+    device = find_device(name)
+    fuses = FuseMap.filled(device.fuses, device.links.blank).changed(device.mode_fuses)
+    fuses = fuses.changed(encode_signature(device, changes.get("text", "")))
+    return device, write_fuse_file("x", [], device.pins, fuses, list(device.blocks()))
+
+
+@pytest.mark.parametrize("name", FAMILY)
+def test_the_device_wide_mode_is_recognised(capsys, tmp_path, name):
+    device, data = modal_file(name)
+    others = [other for other in FAMILY if other != name]
+    code, out, _ = inspect(capsys, tmp_path, data)
+    assert code == 0
+    lines = out.splitlines()
+    (at,) = [i for i, line in enumerate(lines) if line.split()[:1] == ["devices"]]
+    assert lines[at].split(maxsplit=1)[1] == f"{name} (family {device.family})"
+    for other, line in zip(others, lines[at + 1 :], strict=False):
+        wrong = [
+            f for f, state in find_device(other).mode_fuses if (f, state) not in device.mode_fuses
+        ]
+        assert line.strip().startswith(f"not {other} (family {device.family}): fuse {wrong[0]} is ")
+    code, out, _ = inspect(capsys, tmp_path, data, "--json")
+    document = json.loads(out)
+    assert document["devices"] == [name]
+    assert [mode["name"] for mode in document["other_modes"]] == others
+
+
+def test_another_mode_of_the_family_is_a_no(capsys, tmp_path):
+    _, data = modal_file(FAMILY[0])
+    code, out, _ = inspect(capsys, tmp_path, data, "--device", FAMILY[1])
+    assert code == 1
+    shown = rows(out)["device"]
+    assert shown.startswith(f"{FAMILY[1]}: NOT IN THIS DEVICE-WIDE MODE: fuse ")
+    code, out, _ = inspect(capsys, tmp_path, data, "--device", FAMILY[1], "--json")
+    document = json.loads(out)["device"]
+    assert (code, document["matches"]) == (1, False)
+    assert shown.endswith("; ".join(document["differences"]))
+    code, out, _ = inspect(capsys, tmp_path, data, "--device", FAMILY[0])
+    assert code == 0
+    assert rows(out)["device"] == (
+        f"{FAMILY[0]}: QF and QP and its mode fuses are those of the device"
+    )
+
+
+@pytest.mark.parametrize(
+    ("text", "shown"), [("DRY1", '"DRY1"'), ("", "blank")], ids=["text", "blank"]
+)
+def test_the_signature_is_shown(capsys, tmp_path, text, shown):
+    device, data = modal_file(FAMILY[0], text=text)
+    _, out, _ = inspect(capsys, tmp_path, data, "--device", device.name)
+    assert rows(out)["signature"] == shown
+    _, out, _ = inspect(capsys, tmp_path, data, "--device", device.name, "--json")
+    signature = json.loads(out)["device"]["signature"]
+    assert signature["text"] == text
+    assert bytes.fromhex(signature["bytes"])[: len(text)] == text.encode()
+    assert len(signature["bytes"]) == 2 * device.signature.length
+
+
+def test_a_signature_that_is_no_text(capsys, tmp_path):
+    device = find_device(FAMILY[0])
+    first = device.signature.first_fuse
+    fuses = FuseMap.filled(device.fuses, device.links.blank).changed(device.mode_fuses)
+    fuses = fuses.changed({first + bit: 1 - bit % 2 for bit in range(device.signature.bits)})
+    data = write_fuse_file("x", [], device.pins, fuses, list(device.blocks()))
+    _, out, _ = inspect(capsys, tmp_path, data, "--device", device.name)
+    assert rows(out)["signature"] == "no text; its bytes are AA AA AA AA"
+
+
+def test_modes_of_a_refused_file_are_looked_at_as_well(capsys, tmp_path):
+    _, data = modal_file(FAMILY[0])
+    code, out, _ = inspect(capsys, tmp_path, re.sub(rb"C[0-9A-F]{4}\*", b"C0001*", data), "--json")
+    document = json.loads(out)
+    assert code == 2
+    assert document["devices"] == [FAMILY[0]]
