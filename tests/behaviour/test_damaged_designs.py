@@ -28,18 +28,28 @@ select = { rom = ["0..3", 7], "ram" = 0x8 }
 elsewhere = "x"
 """
 )
-WHOLE = WHOLE.replace("step = 4", 'step = 4\naddr = "15:11"').replace(
-    "armed = 1", "armed = 1\ncode = 2\nrom = 1\nram = { active = 'low', impossible = 1 }"
+WHOLE = "signature = 'DRYER'\nmax_delay = 35.5\n" + WHOLE.replace(
+    "step = 4", 'step = 4\naddr = "15:11"'
+).replace(
+    "armed = 1",
+    "armed = 1\ncode = 2\nrom = 1\nram = { active = 'low', impossible = 1 }\n"
+    "data = { bits = 2, enable = 'start wide', reads = 'back', never_too = true }\n"
+    "[inner]\nwide = 1",
+)
+WHOLE = WHOLE.replace(
+    "[logic]\n",
+    "[logic]\nwide = \"jam' + step[1]\"\n'data[0]' = 'jam back[1]'\n'data[1]' = 'wide step[0]'\n",
 )
 SCRAPS = [
     *("", " ", "\n", "0", "1", "x", "-", "'", '"', "[", "]", "{", "}", "|", "=", ",", "..", ":"),
-    *("others", "step", "start", "0b1", "0x", "999", "true", "[never]\n", "when", "not", "+", "é"),
+    *("others", "step", "wide", "back", "reads", "enable", "[inner]\n", "start", "0b1", "0x"),
+    *("999", "true", "[never]\n", "when", "not", "+", "é"),
 ]
 
 
 def test_whole_design():
     behaviour = behaviour_of(parse_toml(WHOLE, "d.toml"))
-    assert len(behaviour.outputs) == 10
+    assert len(behaviour.outputs) == 12
 
 
 damage = st.tuples(st.integers(0, len(WHOLE) - 1), st.integers(0, 12), st.sampled_from(SCRAPS))
