@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING
 from pla.device.consistency import FuseClaim
 from pla.device.limits import CELL_LATER, KIND_LATER, known_keys
 from pla.device.modes import read_enable, read_modes, read_states
-from pla.device.words import beside, read_row_numbers, spans, usable_name
+from pla.device.words import beside, read_row_numbers, rows_in_words, spans, usable_name
 
 if TYPE_CHECKING:
     from collections.abc import Iterator
@@ -159,6 +159,8 @@ def _read_kind(
         else:
             cells.append(cell)
     unused = _read_unused(kind, bits, modes) if "unused" in kind else None
+    if enable is None and "enable" in kind:
+        good = False
     if bits is None or modes is None or not good or not cells:
         return None
     return ReadKind(name, kind, bits, tuple(modes), tuple(cells), unused)
@@ -237,7 +239,8 @@ def _read_owned(
         at = section.at(key) if key in section else section.where
         section.error(
             "ROW-OUTSIDE",
-            f"row {spans(outside)} in {key!r} of {section.title} is not among its "
+            f"{rows_in_words(outside)} in {key!r} of {section.title} "
+            f"{'is' if len(outside) == 1 else 'are'} not among its "
             f"'rows'{beside(section.at('rows'), at)}: {spans(sorted(rows))}",
             at,
             "'rows' lists all rows that the cell owns",

@@ -23,6 +23,7 @@ __all__ = [
     "PinClaim",
     "check_fuses",
     "check_pins",
+    "each_once",
     "spans",
 ]
 
@@ -55,6 +56,12 @@ class PinClaim:
     where: Callable[[], Location]
 
 
+def each_once(count: int, claims: Sequence[FuseClaim]) -> bool:
+    """Whether each of so many fuses has exactly one use."""
+    used = sorted(chain.from_iterable(claim.fuses for claim in claims))
+    return used == list(range(count))
+
+
 def check_fuses(
     count: int,
     claims: Sequence[FuseClaim],
@@ -66,9 +73,7 @@ def check_fuses(
 
     Of the fuses without a use those in `explained` are left out: they were reported elsewhere.
     """
-    used = sorted(chain.from_iterable(claim.fuses for claim in claims))
-    if used == list(range(count)):
-        return
+    used = list(chain.from_iterable(claim.fuses for claim in claims))
     before = len(diagnostics.found)
     _report_out_of_range(count, claims, at_count, diagnostics)
     _report_overlaps(claims, diagnostics)

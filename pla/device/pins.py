@@ -43,7 +43,7 @@ def check_names(
             here = cell.section.at("name")
             diagnostics.error(
                 "CELL-NAME",
-                f"two cells are named {cell.name!r}: this one and the one"
+                f"two cells are named {cell.name!r}: this one and another one"
                 f"{beside(known.section.at('name'), here)}",
                 here,
             )
@@ -117,8 +117,10 @@ def _enable_claims(kinds: Sequence[ReadKind]) -> Iterator[PinClaim]:
     seen: set[int] = set()
     for kind in kinds:
         said = [
-            *((cell.enable, cell.enable_section) for cell in kind.cells),
-            *((mode.enable, mode.section) for mode in kind.modes),
+            (mode.enable, mode.section) if mode.enable else (cell.enable, cell.enable_section)
+            for cell in kind.cells
+            for mode in kind.modes
+            if cell.pin is not None
         ]
         for enable, section in said:
             if enable is not None and enable.pin is not None and enable.pin not in seen:

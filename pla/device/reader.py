@@ -6,7 +6,7 @@ from typing import TYPE_CHECKING, cast
 
 from pla.device.arrays import read_and_array, read_or_array
 from pla.device.cells import read_kinds
-from pla.device.consistency import check_fuses
+from pla.device.consistency import check_fuses, each_once
 from pla.device.extras import read_drop, read_mode_fuses, read_signature, read_timing
 from pla.device.header import (
     read_header,
@@ -22,7 +22,6 @@ from pla.device.model import Device
 from pla.device.pins import check_names, check_roles, keys_of, warn_of_single_lines
 from pla.device.resolve import resolve
 from pla.device.rows import check_columns, check_owners, check_unused, free_rows
-from pla.device.spacing import report_missing_columns, report_wrong_steps
 from pla.device.words import MAX_TERMS, beside
 from pla.errors import Diagnostic, Diagnostics, InternalError, by_place
 from pla.tomlfile import Section, read_toml
@@ -118,13 +117,14 @@ class _Reader:
         arrays = and_array is not None and ("or" not in top or or_array is not None)
         if all_kinds and and_array and arrays and self._sums_known(kinds, or_array):
             resolved = self._resolve(kinds, and_array, or_array)
-            if header.fuses and spare is not None and mode_fuses is not None:
+            told = self._all_told(spare, mode_fuses, drop, signature)
+            if header.fuses and told and self._rows_certain(kinds, resolved):
                 claims = [
                     *(claim for kind in kinds for claim in kind.claims()),
                     *(drop.claims() if drop else ()),
-                    *mode_fuses.claims(),
+                    *(mode_fuses.claims() if mode_fuses else ()),
                     *(signature.claims() if signature else ()),
-                    *spare_claims(spare),
+                    *spare_claims(spare or []),
                 ]
                 self._check_fuses(header.fuses, and_array, or_array, claims)
         if and_array:
@@ -226,6 +226,26 @@ class _Reader:
             check_owners(self.count, self.at_count, cells, or_array, self.diagnostics)
         return [cell for kind in found for cell in kind or ()] if all(found) else None
 
+    def _all_told(
+        self,
+        spare: object,
+        mode_fuses: object,
+        drop: object,
+        signature: object,
+    ) -> bool:
+        """Whether all fuses outside the arrays are known, so that a gap is a gap."""
+        sound = spare is not None and mode_fuses is not None
+        return sound and all(
+            part is not None or key not in self.top
+            for key, part in (("drop", drop), ("signature", signature))
+        )
+
+    def _rows_certain(self, kinds: list[ReadKind], resolved: list[ReadCell] | None) -> bool:
+        """Whether the OR array has its right rows: a cell at fault may leave it too many."""
+        left_over = "or" in self.top and "terms" not in (self.top.data["or"])
+        owned = any(cell.rows for kind in kinds for cell in kind.cells)
+        return resolved is not None or not (left_over and owned)
+
     def _check_fuses(
         self,
         fuses: int,
@@ -236,6 +256,13 @@ class _Reader:
         if self._too_many(fuses, and_array, or_array):
             return
         claims = [*and_array.claims(), *(or_array.claims() if or_array else ()), *others]
+        if each_once(fuses, claims):
+            return
+        from pla.device.spacing import (  # noqa: PLC0415 - rarely needed
+            report_missing_columns,
+            report_wrong_steps,
+        )
+
         if report_wrong_steps(fuses, and_array, or_array, claims):
             return
         explained = report_missing_columns(fuses, and_array, or_array, claims)

@@ -6,7 +6,7 @@ from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
 from pla.device.model import ALWAYS, Cell, Line, Mode
-from pla.device.words import spans
+from pla.device.words import beside, rows_in_words, spans
 
 if TYPE_CHECKING:
     from collections.abc import Collection, Sequence
@@ -122,7 +122,8 @@ class _Resolver:
             if idle and not self.faults:
                 self.kind.section.diagnostics.warning(
                     "ROW-UNUSED",
-                    f"row {spans(idle)} of {raw} is neither a term nor an enable in any mode",
+                    f"{rows_in_words(idle)} of {raw} {'is' if len(idle) == 1 else 'are'} neither "
+                    "term nor enable in any mode",
                     raw.at_rows,
                 )
             if cell.pin is None and not self.own[cell.key]:
@@ -130,7 +131,7 @@ class _Resolver:
                     "CELL-NOWHERE",
                     f"{raw} has no pin, and no column of [and] carries its sum: it does nothing",
                     raw.where,
-                    f"is {raw.key} or {raw.key}' missing among the columns of [and]?",
+                    self._own_hint(raw),
                 )
 
     def _fault(
@@ -166,8 +167,7 @@ class _Resolver:
             self._fault(
                 mode if mode.enable or mode.terms is not None else None,
                 "ENABLE-IS-TERM",
-                f"row {enable.row} of {raw} is its enable and one of its terms in mode "
-                f'"{mode.set}"',
+                f"row {enable.row} of {raw} is its enable and one of its terms in {_titled(mode)}",
                 at,
                 'a mode in which the pin is always driven says enable = "always"',
             )
@@ -200,7 +200,7 @@ class _Resolver:
             return raw.terms or ()
         outside = [index for index in mode.terms if index >= len(raw.rows)]
         if outside:
-            self._outside(raw, mode, spans(outside), "terms")
+            self._outside(raw, mode, rows_in_words(outside), "terms")
             return ()
         return tuple(sorted(raw.rows[index] for index in mode.terms))
 
@@ -212,19 +212,19 @@ class _Resolver:
         if mode.enable.row is None:
             return mode.enable
         if mode.enable.row >= len(raw.rows):
-            self._outside(raw, mode, str(mode.enable.row), "enable")
+            self._outside(raw, mode, f"row {mode.enable.row}", "enable")
             return ALWAYS
         return replace(mode.enable, row=raw.rows[mode.enable.row])
 
     def _outside(self, raw: RawCell, mode: RawMode, rows: str, key: str) -> None:
         number = len(raw.rows)
         has = f"{number} row{'' if number == 1 else 's'}" if number else "no rows of its own"
-        line = raw.at_rows.line if number else raw.where.line
+        said = raw.at_rows if number else raw.where
         self._fault(
             mode,
             "ROW-OUTSIDE",
-            f'row {rows} in {key!r} of mode "{mode.set}" does not exist for {raw}: it has {has} '
-            f"(line {line} of the file)",
+            f"{rows} in {key!r} of {_titled(mode)} does not exist for {raw}: it has {has}"
+            f"{beside(said, mode.section.at(key))}",
             mode.section.at(key),
             "rows in a mode count within the rows of the cell, from 0",
         )
@@ -246,7 +246,7 @@ class _Resolver:
         if needed and raw.key not in self.summed and not has_terms:
             has, hint = "no terms of its own", 'add terms = "a..b" to the cell'
             if self.summed:
-                there = ", ".join(map(str, self.summed))
+                there = ", ".join(map(str, dict.fromkeys(self.summed)))
                 has = f"no column in [or] and no terms of its own; columns are for: {there}"
                 hint = f"add {raw.key} to the columns of [or], or terms to the cell"
             fault = _Fault("CELL-NO-SUM", f"{raw} has {has}", raw.where, hint)
@@ -273,8 +273,7 @@ class _Resolver:
             self._fault(
                 mode,
                 "FEEDBACK-MISSING",
-                f"{mode.section.title} has no 'feedback', but {raw} has column {spans(own)} of "
-                "[and]",
+                f"{mode.section.title} has no 'feedback', but {raw} has {_columns(own)} of [and]",
                 mode.section.where,
                 'say what the unprimed column carries: "sum", "sum\'", "pin" or "none"',
             )
@@ -291,7 +290,9 @@ class _Resolver:
         return tuple((index, self._line(raw, mode, index)) for index in own)
 
     def _own_hint(self, raw: RawCell) -> str | None:
-        if raw.pin is None or raw.name is None:
+        if raw.pin is None:
+            return f"is {raw.key} or {raw.key}' missing among the columns of [and]?"
+        if raw.name is None:
             return None
         return f"the columns of a cell with a pin and a name are those of its name, {raw.name}"
 
@@ -313,8 +314,8 @@ class _Resolver:
                 mode,
                 "MODE-COLUMNS",
                 f"'columns' of {mode.section.title} has {len(listed)} word"
-                f"{'' if len(listed) == 1 else 's'}, but {raw} has {len(own)} in [and]: column "
-                f"{spans(own)}",
+                f"{'' if len(listed) == 1 else 's'}, but {raw} has {len(own)} in [and]: "
+                f"{_columns(own)}",
                 mode.section.at("columns"),
                 "one word for each column of the cell in [and], in the order there",
             )
@@ -323,6 +324,14 @@ class _Resolver:
             (index, None if word is None else Line("pin", word.source, word.complement))
             for index, word in zip(own, listed, strict=True)
         )
+
+
+def _titled(mode: RawMode) -> str:
+    return f'mode "{mode.set}"' if mode.set else "its only mode"
+
+
+def _columns(indices: Sequence[int]) -> str:
+    return f"column{'' if len(indices) == 1 else 's'} {spans(indices)}"
 
 
 def _does_something(mode: Mode) -> bool:

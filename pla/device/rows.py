@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
-from pla.device.words import beside, named, order, spans
+from pla.device.words import beside, named, order, rows_in_words, spans
 
 if TYPE_CHECKING:
     from collections.abc import Callable, Mapping, Sequence
@@ -32,11 +32,11 @@ def check_owners(
 ) -> None:
     """Report rows with two owners and rows with none."""
     claims: list[tuple[Sequence[int], str, Callable[[], Location]]] = [
-        (cell.rows, f"a row of {cell}", lambda cell=cell: cell.at_rows)  # type: ignore[misc]
+        (cell.rows, str(cell), lambda cell=cell: cell.at_rows)  # type: ignore[misc]
         for cell in cells
     ]
     if or_array is not None:
-        claims.append((or_array.array.terms, "a row of [or]", or_array.at_rows))
+        claims.append((or_array.array.terms, "[or]", or_array.at_rows))
     owner: dict[int, int] = {}
     clashes: dict[tuple[int, int], list[int]] = {}
     for index, (rows, _, _) in enumerate(claims):
@@ -50,7 +50,8 @@ def check_owners(
         )
         diagnostics.error(
             "ROW-TWICE",
-            f"row {spans(rows)} is {one}{beside(at_one(), at_other())} and {other}",
+            f"{rows_in_words(rows)} belong{'s' if len(rows) == 1 else ''} to {one}"
+            f"{beside(at_one(), at_other())} and to {other}",
             at_other(),
             "a row of the AND array has one owner",
         )
@@ -123,7 +124,7 @@ def check_unused(device: Device, at: Callable[[str], Location], diagnostics: Dia
         if lack:
             diagnostics.error(
                 "ROW-NOT-DEAD",
-                f"unused_enable is 'off', but enable row {spans(lack)} cannot be made 0: "
+                f"unused_enable is 'off', but enable {rows_in_words(lack)} cannot be made 0: "
                 "no source has both a true and a complement line",
                 at("unused_enable"),
                 "a dead row has a line and its complement connected",
@@ -147,7 +148,8 @@ def _check_filling(
         elif lack:
             diagnostics.error(
                 "DROP-MISSING",
-                f"unused_term is 'drop', but row {spans(lack)} has no link in [drop]",
+                f"unused_term is 'drop', but {rows_in_words(lack)} "
+                f"{'has' if len(lack) == 1 else 'have'} no link in [drop]",
                 at,
                 "a row without such a link is made 'dead', or left 'blank' if it is 0 then",
             )
@@ -185,7 +187,7 @@ def _check_own_blank(
         diagnostics.error(
             "ROW-TRUE",
             f"unused_term is 'blank', but a blank row is always 1: no line is connected to it; "
-            f"row {spans(true)} goes straight to the OR gate of a cell, whose sum would be 1",
+            f"{_straight(true)}, whose sum would be 1",
             at,
             'say unused_term = "dead", or look again at blank and connected',
         )
@@ -194,7 +196,12 @@ def _check_own_blank(
             "ROW-LIVE",
             "unused_term is 'blank', but a blank row is not dead: all its lines are connected, and "
             "no pin has both a true and a complement line; "
-            f"row {spans(live)} goes straight to the OR gate of a cell",
+            f"{_straight(live)}",
             at,
             "look again at the columns of [and], and at blank and connected",
         )
+
+
+def _straight(rows: list[int]) -> str:
+    verb = "goes" if len(rows) == 1 else "go"
+    return f"{rows_in_words(rows)} {verb} straight to the OR gate of a cell"

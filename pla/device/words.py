@@ -22,6 +22,7 @@ __all__ = [
     "order",
     "read_row_numbers",
     "read_step",
+    "rows_in_words",
     "spans",
     "split_words",
     "usable_name",
@@ -117,7 +118,7 @@ def read_row_numbers(
         again = [row for row in numbers if row in found]
         if again:
             good = False
-            message = f"{key!r} of {section.title} names row {spans(again)} twice"
+            message = f"{key!r} of {section.title} names {rows_in_words(again)} twice"
             section.error("ROW-TWICE", message, at)
         found.update(dict.fromkeys(numbers))
     return tuple(found) if good else None
@@ -135,6 +136,12 @@ def spans(numbers: Iterable[int], shown: int = _SHOWN) -> str:
     if len(parts) > shown:
         texts.append(f"and {len(parts) - shown} more ranges")
     return ", ".join(texts)
+
+
+def rows_in_words(rows: Iterable[int]) -> str:
+    """``row 3`` or ``rows 3, 5..7``."""
+    listed = list(rows)
+    return f"row{'' if len(listed) == 1 else 's'} {spans(listed)}"
 
 
 def beside(other: Location, at: Location) -> str:

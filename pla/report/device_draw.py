@@ -77,12 +77,10 @@ def owner_of(device: Device, row: int) -> str:
     if row in device.shared_rows:
         return "shared term"
     for cell in device.cells:
-        roles: dict[str, None] = {}
-        for mode in cell.modes:
-            if row in mode.terms:
-                roles[f"term {mode.terms.index(row) + 1}"] = None
-            if mode.enable.row == row:
-                roles["enable"] = None
+        numbers = sorted({m.terms.index(row) + 1 for m in cell.modes if row in m.terms})
+        roles = ["enable"] if any(mode.enable.row == row for mode in cell.modes) else []
+        if numbers:
+            roles.append(f"term {' or '.join(map(str, numbers))}")
         whose = f"pin {cell.pin}" if cell.pin is not None else f"cell {cell.name}"
         if roles:
             return f"{' or '.join(roles)} of {whose}"
@@ -153,7 +151,7 @@ def _labels(device: Device) -> Iterator[tuple[list[str], list[str]]]:
     lines = device.and_array.columns
     sums = () if device.or_array is None else device.or_array.sums
     words = [str(line.source) for line in lines if line is not None]
-    digits = max(len(str(device.pins)), *map(len, [*words, *map(str, sums)]))
+    digits = max(map(len, [*words, *map(str, sums)]))
     above = [f"{line.source if line else '':>{digits}}" for line in lines]
     beside = [f"{pin:>{digits}}" for pin in sums]
     for k in range(digits):

@@ -114,11 +114,12 @@ def _fed_back(device: Device, cells: Sequence[Cell], mode: Mode) -> Iterator[str
         yield ", ".join(listed)
     else:
         plain, primed = _CARRIED[model.feedback]
+        alone = _PRIMED_ALONE[model.feedback]
         both = senses == {False, True}
         if both:
             yield f"its unprimed column carries {plain}, the primed {primed}{some}"
         else:
-            which, what = ("primed", primed) if True in senses else ("unprimed", plain)
+            which, what = ("unprimed", plain) if False in senses else ("primed", alone)
             yield f"its {which} column carries {what}{some}"
 
 
@@ -126,6 +127,11 @@ _CARRIED = {
     "sum": ("the sum", "its complement"),
     "sum'": ("the complement of the sum", "the sum itself"),
     "pin": ("the level of the pin", "the complement of that level"),
+}
+_PRIMED_ALONE = {
+    "sum": "the complement of the sum",
+    "sum'": "the sum itself",
+    "pin": "the complement of the level of the pin",
 }
 
 

@@ -80,7 +80,7 @@ def _on_owners(device: Device, enables: list[int]) -> Iterator[str]:
         also = ""
         if both:
             some = "all" if len(both) == len(enables) else f"{len(both)}"
-            also = f", {some} of them terms in another mode"
+            also = f", {some} of them {'a term' if some == '1' else 'terms'} in another mode"
         parts.append(f"{len(enables)} are output enables{also}")
     yield f"{device.terms} rows: {'; '.join(parts)}."
 

@@ -253,7 +253,10 @@ def test_list_as_json(capsys):
     assert document["schema_version"] == 1
     terms = {d["name"]: d["terms"] for d in document["devices"]}
     shared = [terms[name] for name in terms if name.startswith("shared-")]
-    assert shared == [16, 24, 32, 32, 40, 48, 96]
+    assert shared == [16, 24, 28, 32, 40, 48, 96]
+    assert terms["own-9x5"] == 25  # five cells with five terms; their enable rows do not count
+    families = {d["family"] for d in document["devices"] if d["name"].startswith("modal-8x4")}
+    assert families == {"modal-8x4"}
 
 
 def test_show_explains_and_draws(capsys):
@@ -271,9 +274,21 @@ def test_show_as_json(capsys):
     assert document["or"]["columns"] == [22, 21, 20, 19, 18, 17, 16, 15]
     assert document["cells"][0] == {
         "pin": 15,
+        "name": None,
         "kind": "out",
         "links": {"polarity": 1527},
-        "modes": [{"set": "1", "pin": "sum'"}, {"set": "0", "pin": "sum"}],
+        "rows": [],
+        "modes": [
+            {
+                "set": states,
+                "pin": shows,
+                "feedback": None,
+                "terms": [],
+                "enable": "always",
+                "columns": {},
+            }
+            for states, shows in (("1", "sum'"), ("0", "sum"))
+        ],
         "unused": "1",
     }
     assert document["spare"] == [[1528, 1531]]
