@@ -118,6 +118,7 @@ class _Writer:
         self.equated: dict[str, list[bool]] = {}
         self.support: dict[str, set[int]] = {}
         self.inner: list[str] = []
+        self.named: set[str] = set()
         # Inner signals that have a value for impossible inputs too, as an enable needs them.
         self.closed: set[str] = set()
 
@@ -191,7 +192,10 @@ class _Writer:
                     where = [value == 1 for value in values]
                 else:
                     known = dict(self.equated)
-                    text, where = _equation(rng, self.made, fields, known, depth=2)
+                    if rng.random() < 0.4:
+                        text, where = self._parity(fields)
+                    else:
+                        text, where = _equation(rng, self.made, fields, known, depth=2)
                     self.equations.append(f"{_key(bit)} = {_toml(text)}")
                     support = support.union(*(self.support[name] for name in known))
                     if self.closed.issuperset(known):
@@ -260,6 +264,8 @@ class _Writer:
             allowed = set(range(made.bit_of(later)))
         fields = [f for f in self.every if set(f.bits) <= allowed]
         form = rng.choice(["cases", "minterms", "logic", "logic"])
+        if set(self.inner) - self.named and rng.random() < 0.7:
+            form = "logic"
         values: dict[str, list[int | None]] = {}
         if form == "cases":
             section, values = _cases(rng, made, self._some(fields), [signal])
@@ -288,16 +294,27 @@ class _Writer:
     def _equation(self, fields, known):
         """Often with an inner signal in it."""
         rng = self.rng
-        text, where = _equation(rng, self.made, fields, known, depth=2)
+        text, where = _equation(rng, self.made, fields, known, depth=rng.choice([2, 2, 3]))
         names = [name for name in self.inner if name in known]
-        if names and rng.random() < 0.6:
-            name = rng.choice(names)
-            if rng.random() < 0.5:
-                return f"{name} ({text})", [
-                    a and b for a, b in zip(where, known[name], strict=True)
-                ]
-            return f"{name} + {text}", [a or b for a, b in zip(where, known[name], strict=True)]
+        fresh = [name for name in names if name not in self.named]
+        if names and rng.random() < 0.8:
+            name = rng.choice(fresh or names)
+            self.named.add(name)
+            pairs = zip(where, known[name], strict=True)
+            form = rng.randint(0, 2)
+            if form == 0:
+                return f"{name} ({text})", [a and b for a, b in pairs]
+            if form == 1:
+                return f"{name} + {text}", [a or b for a, b in pairs]
+            return f"{name} ⊕ ({text})", [a != b for a, b in pairs]
         return text, where
+
+    def _parity(self, fields):
+        """Nothing takes more terms to fold in."""
+        chosen = [f for f in fields if f.single]
+        bits = [f.bits[0] for f in chosen]
+        where = [sum(p >> b & 1 for b in bits) % 2 == 1 for p in range(self.made.points)]
+        return " ⊕ ".join(f.name for f in chosen), where
 
     def _declarations(self, inner):
         lines = []

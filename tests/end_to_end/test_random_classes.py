@@ -5,6 +5,7 @@ of the program only the written file and the pins of ``--json`` are used.
 """
 
 import random
+import re
 
 import pytest
 from calls import call_json
@@ -33,20 +34,21 @@ def random_shape(rng: random.Random, which: str, device: Description) -> Shape:
     read = {m.columns[i] for c in cells for m in c.modes.values() for i in m.columns}
     fed = {line.of for line in read if line is not None and line.kind == "pin"}
     levels = {m.enable[2] for c in cells for m in c.modes.values() if m.enable[0] == "pin"}
+    inputs = len(device.input_pins) - rng.choice([0, 0, 1])
+    if outputs < len(cells) and fed and rng.random() < 0.3:
+        inputs += 1  # onto the pin of a cell
+    tight = own and min(own) < 6
+    text = len(device.signature.fuses) // 8 if device.signature is not None else 0
     return Shape(
-        inputs=rng.randint(3, max(3, len(device.input_pins) - rng.randint(0, 1))),
+        inputs=rng.randint(min(3, inputs), inputs),
         outputs=outputs,
-        span=rng.choice([2, 3]) if own and min(own) < 6 else rng.choice([3, 4]),
+        span=rng.choice([2, 3, 3]) if tight else rng.choice([3, 4, 4]),
         enabled=enabled,
         enabled_by="input" if by_pin else "product",
         enable_active="low" if 0 in levels else "high",
         bidirectional=rng.randint(0, 2) if fed and enabled else 0,
-        inner=rng.choice([0, 1, 1, 2])
-        if which in {"buried", "cells", "mixed"}
-        else rng.choice([0, 1]),
-        signature=len(device.signature.fuses) // 8
-        if device.signature and rng.random() < 0.7
-        else 0,
+        inner=rng.choice([0, 1, 1, 2]) if which in {"buried", "cells"} else rng.choice([0, 0, 1]),
+        signature=text if rng.random() < 0.7 else 0,
     )
 
 
@@ -72,7 +74,9 @@ def planned(which, seed, folder, capsys):
         return False
     states = read_transmission((out / "design.jed").read_bytes()).states
     check_pins(device, design, document["pins"])
-    check_levels(device, design, document["pins"], states)
+    remarks = idle_remarks((out / "report.md").read_text(encoding="utf-8"))
+    assert set(range(1, device.pins + 1)) == {*remarks, *document["pins"].values()}
+    check_levels(device, design, document["pins"], states, remarks)
     if design.signature:
         assert signature_text(device, states) == design.signature
     return True
@@ -90,13 +94,17 @@ def check_pins(device, design, pins):
         assert pin in device.cell_pins or name in design.input_names
 
 
-def check_levels(device, design, pins, states):
-    """Two runs of all points: unused inputs low, and at anything."""
+def check_levels(device, design, pins, states, remarks):
+    """Two runs of all points: pins that may be tied either way are low, and at anything."""
     points, low = design.points, design.active_low
     cases, everywhere = 2 * points, (1 << 2 * points) - 1
     rng = random.Random(1)
-    drivers = {pin: (everywhere, rng.getrandbits(points) << points) for pin in device.input_pins}
-    drivers |= tied_enables(device, design, pins, states, everywhere)
+    drivers = {}
+    for pin, remark in remarks.items():
+        if "tie to ground or power" in remark:
+            drivers[pin] = (everywhere, rng.getrandbits(points) << points)
+        elif "tie to" in remark:
+            drivers[pin] = (everywhere, everywhere * ("tie to power" in remark))
     for name in design.input_names:
         if name in pins:
             drivers[pins[name]] = (everywhere, signal_level(design, name, cases))
@@ -108,22 +116,30 @@ def check_levels(device, design, pins, states):
     for case in range(cases):
         seen = point_seen(design, pins, found, case)
         for name in design.output_names if seen is not None else []:
-            level = found[pins[name]].at(case)
             drives = design.drives.get(name, [True] * points)[seen]
             wanted = design.table[name][seen]
-            told = f"{name} on pin {pins[name]} at {seen:b}: {level}"
-            if drives is FREE:
-                continue
-            if not drives:
-                # From outside both levels come in turn: another level here would be contention.
-                outside = (
-                    f"{design_bit(design, design.reads[name], case) ^ low[name]:d}"
-                    if (name in design.reads)
-                    else "Z"
-                )
-                assert level == outside, told
-            elif wanted is not FREE:
-                assert level == f"{wanted ^ low[name]:d}", told
+            if drives:
+                level = None if wanted is FREE else f"{wanted ^ low[name]:d}"
+            elif name in design.reads:
+                # Both levels come from outside in turn: another one here would be contention.
+                level = f"{design_bit(design, design.reads[name], case) ^ low[name]:d}"
+            else:
+                level = None if drives is FREE else "Z"
+            told = f"{name} on pin {pins[name]} at {seen:b}"
+            assert level in {None, found[pins[name]].at(case)}, told
+    check_idle_pins(device, remarks, drivers, found, everywhere)
+
+
+def check_idle_pins(device, remarks, drivers, found, everywhere):
+    """Pins of cells that carry no signal do what the pin list says."""
+    for pin in set(device.cell_pins) & set(remarks) - set(drivers):
+        level, remark = found[pin], remarks[pin]
+        if "the part does not drive it" in remark:
+            assert level.floating == everywhere
+        elif "at times" not in remark:
+            assert level.floating == 0
+            told = re.search(r"the part drives it( low| high|$)", remark)[1]
+            assert {" low": level.low, " high": level.high}.get(told, everywhere) == everywhere
 
 
 def design_bit(design, name, case):
@@ -157,17 +173,10 @@ def point_seen(design: BusDesign, pins: dict[str, int], found: dict[int, Level],
     return seen
 
 
-def tied_enables(device, design, pins, states, everywhere):
-    """Enable pins without a signal, tied so that the outputs behind them drive."""
-    tied = {}
-    for name in design.output_names:
-        cell = next(c for c in device.cells.values() if c.pin == pins[name])
-        mode = cell.modes["".join(str(states[fuse]) for fuse in cell.links)]
-        if mode.enable[0] == "pin" and name not in design.drives:
-            _, pin, level = mode.enable
-            assert pin not in pins.values(), f"{name} always drives, but pin {pin} switches it"
-            tied[pin] = (everywhere, everywhere * level)
-    return tied
+def idle_remarks(report: str) -> dict[int, str]:
+    """What the pin list of the report says of pins without a signal."""
+    rows = re.findall(r"^\| +(\d+) \|([^|]*)\|[^|]*\|[^|]*\|([^|]*)\|$", report, re.MULTILINE)
+    return {int(pin): remark.strip() for pin, name, remark in rows if not name.strip()}
 
 
 @pytest.mark.parametrize("which", CLASSES)
