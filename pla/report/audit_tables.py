@@ -158,9 +158,19 @@ def enable_table(behaviour: Behaviour, found: Sequence[AtImpossible]) -> Table |
         ),
         aligned="llrl",
         lead=(lead, *none, *((_READING,) if found else ())),
+        remarks=tuple(_both_ways(behaviour)),
         wrapped=(0, 3),
         repeated=2,
     )
+
+
+def _both_ways(behaviour: Behaviour) -> Iterator[str]:
+    pairs = [f"{o.reads} is {o.name}" for o in behaviour.outputs if o.reads is not None]
+    if pairs:
+        yield (
+            f"Read at the pin that drives: {listed(pairs)} for as long as that is driven; "
+            "combinations in which the two differ then cannot last."
+        )
 
 
 def detail_table(behaviour: Behaviour, found: Sequence[Settled]) -> Table:

@@ -10,11 +10,12 @@ from pla.report.table import Table
 if TYPE_CHECKING:
     from collections.abc import Iterator
 
+    from pla.behaviour.model import Behaviour
     from pla.device.model import Device
     from pla.fitting.model import Fit, Usage
     from pla.fuses.fusemap import FuseMap
 
-__all__ = ["budget_table", "links_sentence"]
+__all__ = ["budget_table", "links_sentence", "own_pin_inputs"]
 
 
 def budget_table(fit: Fit, fuses: FuseMap | None = None) -> Table:
@@ -33,8 +34,8 @@ def budget_table(fit: Fit, fuses: FuseMap | None = None) -> Table:
 
 
 def _remarks(fit: Fit, fuses: FuseMap | None) -> Iterator[str]:
-    idle = len(fit.behaviour.inputs) - fit.inputs.used
-    if idle and fit.minimum is not None:
+    idle = len(own_pin_inputs(fit.behaviour)) - fit.inputs.used
+    if idle > 0 and fit.minimum is not None:
         counted = "is not counted" if idle == 1 else "are not counted"
         yield f"{plural(idle, 'input')} that no term needs {counted}."
     if fit.minimum is None:
@@ -47,6 +48,11 @@ def _remarks(fit: Fit, fuses: FuseMap | None) -> Iterator[str]:
         yield f"Not minimized: {why}, so how many product terms it takes was not worked out."
     if fuses is not None:
         yield links_sentence(fit.device, fuses)
+
+
+def own_pin_inputs(behaviour: Behaviour) -> tuple[str, ...]:
+    """Inputs that are not read from the pin of an output."""
+    return tuple(signal.name for signal in behaviour.inputs if signal.read_from is None)
 
 
 def links_sentence(device: Device, fuses: FuseMap) -> str:

@@ -4,12 +4,13 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
+from pla.report.budget import own_pin_inputs
 from pla.report.delays import nanoseconds, output_delays, plain_number
 from pla.report.gates import headroom_text
 from pla.report.notation import listed, plural
 from pla.report.table import Table
 from pla.report.text import filled, table_text
-from pla.report.verdict import title
+from pla.report.verdict import sentence, title
 
 if TYPE_CHECKING:
     from collections.abc import Collection, Iterator, Sequence
@@ -73,7 +74,7 @@ def _by_family(found: Sequence[DeviceBudget]) -> Iterator[tuple[DeviceBudget, st
             yield budget, f"{_INDENT}{budget.device.name}"
 
 
-_INDENT = "\u00a0\u00a0"  # blanks that stay at the start of a cell
+_INDENT = "  "
 
 
 def _family(device: Device) -> str:
@@ -154,8 +155,8 @@ def _others(found: Sequence[DeviceBudget]) -> Table:
         known = budget.usages
         resources: tuple[Resource, ...] = ("terms", "inputs", "outputs")
         cells = [_used(known[r]) if r in known else "not known" for r in resources]
-        why = "; ".join(budget.reasons)
-        rows.append((name, *cells, budget.tightest, f"{why[:1].upper()}{why[1:]}."))
+        why = sentence("; ".join(budget.reasons), budget.fit.behaviour)
+        rows.append((name, *cells, budget.tightest, why))
     return Table(
         "Devices that do not",
         ("device", "terms", "inputs", "outputs", "tightest", "why"),
@@ -176,7 +177,7 @@ def _remarks(
     yield "Tightest: what is used up by the largest share."
     yield from _proofs(found)
     needed = [b.fit.inputs.used for b in found if b.fit.minimum]
-    if any(used < len(behaviour.inputs) for used in needed):
+    if any(used < len(own_pin_inputs(behaviour)) for used in needed):
         yield "Inputs that no term needs are not counted."
     yield from _families(found)
     own = [b.device for b in found if b.device.name not in catalogue]
@@ -192,7 +193,10 @@ def _families(found: Sequence[DeviceBudget]) -> Iterator[str]:
         members.setdefault(_family(budget.device), []).append(budget.device.name)
     for family, names in members.items():
         if len(names) > 1:
-            yield f"Modes or variants of one part, {family}, best first: {', '.join(names)}."
+            yield (
+                f"Modes or variants of one part, {family}, best first and together in each table: "
+                f"{', '.join(names)}."
+            )
 
 
 def _proofs(found: Sequence[DeviceBudget]) -> Iterator[str]:

@@ -71,9 +71,8 @@ def fit_document(
         holders: Where it does not fit, devices of the catalogue that would hold it.
     """
     plan = fit.plan
-    laid_out = (plan.behaviour, plan.minimum) if plan else (fit.behaviour, fit.minimum)
     return (
-        cover_document(*laid_out)
+        cover_document(fit.laid_out, fit.minimum)
         | {
             "device": fit.device.name,
             "fits": fit.fits,

@@ -46,7 +46,7 @@ def plan_text(fit: Fit, proven: ProvenFile, paths: Sequence[str]) -> str:
             *([table_text(delays)] if delays else []),
             "\n".join(filled(line) for line in pin_summary(plan)),
             filled(
-                f"{proof_sentence(proven.proof)} Fuse checksum {proven.fuses.checksum:04X}."
+                f"{proof_sentence(proven.proof, design)} Fuse checksum {proven.fuses.checksum:04X}."
                 f"{signature}"
             ),
             "\n".join(["Label", *(f"  {line}" for line in label(plan, proven.fuses))]),

@@ -10,7 +10,7 @@ from pla.report.notation import listed, plural
 from pla.report.sharing import shares
 from pla.report.table import Table
 from pla.report.text import filled, table_text
-from pla.report.verdict import title
+from pla.report.verdict import sentence, title
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
@@ -41,7 +41,7 @@ def refusal_text(fit: Fit, holders: Sequence[Fit]) -> str:
     return "\n\n".join(
         [
             f"{title(fit.behaviour)}: does not fit {fit.device.name}",
-            "\n".join(filled(f"{reason[:1].upper()}{reason[1:]}.") for reason in fit.reasons),
+            "\n".join(filled(sentence(reason, fit.behaviour)) for reason in fit.reasons),
             *([filled(_released(fit))] if fit.released else []),
             *map(table_text, tables),
             _on_holders(holders),
@@ -52,8 +52,7 @@ def refusal_text(fit: Fit, holders: Sequence[Fit]) -> str:
 def _released(fit: Fit) -> str:
     """The fewest decided pins that stand in the way."""
     places = [f"{place.signal} were not placed on pin {place.pin}" for place in fit.released]
-    fewest = " These are the fewest places whose release helps." if len(places) > 1 else ""
-    return f"It would fit if {listed(places)}.{fewest}"
+    return f"It would fit if {listed(places)}."
 
 
 def _gates(fit: Fit) -> Table:
@@ -61,20 +60,20 @@ def _gates(fit: Fit) -> Table:
     polarities = [p for p in fit.polarities if p is not None]
     needs = alone_counts(fit.behaviour.function, polarities)
     placed = {place.signal: place.pin for place in fit.behaviour.places.get(fit.device.name, ())}
-    cells = [cell for cell in fit.device.cells if cell.pin is not None]
+    capacity = {pin: cell.capacity for pin, cell in sorted(fit.device.cell_of_pin.items())}
     rows = []
     for name, need in zip(fit.behaviour.output_names, needs, strict=True):
         holding = [
-            str(cell.pin)
-            for cell in cells
-            if cell.capacity >= need.terms and placed.get(name, cell.pin) == cell.pin
+            str(pin)
+            for pin, has in capacity.items()
+            if has >= need.terms and placed.get(name, pin) == pin
         ]
         fewest = f"{'' if need.proven else 'at most '}{need.terms}"
         pin = f"pin {placed[name]}" if name in placed else "any"
         rows.append((name, fewest, pin, " ".join(holding) or "none"))
     capacities: dict[int, list[str]] = {}
-    for cell in cells:
-        capacities.setdefault(cell.capacity, []).append(str(cell.pin))
+    for each, has in capacity.items():
+        capacities.setdefault(has, []).append(str(each))
     have = "; ".join(
         f"{plural(count, 'term')} on {'pin' if len(pins) == 1 else 'pins'} {', '.join(pins)}"
         for count, pins in sorted(capacities.items(), reverse=True)

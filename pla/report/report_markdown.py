@@ -60,7 +60,7 @@ def _front(plan: Plan, proven: ProvenFile, doubts: Sequence[Diagnostic]) -> Iter
         [
             *count_sentences(minimum, own),
             *design_sentences(plan.behaviour, minimum, own),
-            proof_sentence(proven.proof),
+            proof_sentence(proven.proof, design),
             links_sentence(device, fuses),
         ]
     )

@@ -14,13 +14,27 @@ if TYPE_CHECKING:
     from pla.fuses.proof import Proof
     from pla.logic.minimize import Minimum
 
-__all__ = ["connections", "count_sentences", "design_sentences", "proof_sentence", "title"]
+__all__ = [
+    "connections",
+    "count_sentences",
+    "design_sentences",
+    "proof_sentence",
+    "sentence",
+    "title",
+]
 
 
 def title(behaviour: Behaviour) -> str:
     """Name and revision."""
     revision = f", revision {one_line(behaviour.revision)}" if behaviour.revision else ""
     return one_line(behaviour.name) + revision
+
+
+def sentence(reason: str, behaviour: Behaviour) -> str:
+    """A reason with a capital, unless it begins with the name of a signal, and a full stop."""
+    first = reason.partition(" ")[0].rstrip(",")
+    signals = (*behaviour.input_names, *behaviour.output_names, *(i.name for i in behaviour.inner))
+    return f"{reason if first in signals else reason[:1].upper() + reason[1:]}."
 
 
 def count_sentences(minimum: Minimum, own: Sequence[bool] = ()) -> Iterator[str]:
@@ -113,7 +127,7 @@ def _polarity(names: Sequence[str], complemented: Sequence[bool]) -> str:
     )
 
 
-def proof_sentence(proof: Proof) -> str:
+def proof_sentence(proof: Proof, design: Behaviour) -> str:
     """How the fuse file was compared with the design."""
     if proof.method == "simulation":
         how = (
@@ -126,7 +140,9 @@ def proof_sentence(proof: Proof) -> str:
             f"{plural(proof.cases, 'cube')} in all"
         )
     verdict = "equal to" if proof.equal else "NOT equal to"
+    switched = any(output.enable for output in design.outputs)
+    drives = ", and drives each pin exactly when it should" if switched and proof.equal else ""
     return (
         f"The fuse file was read back from its own bytes, and {how}: it is {verdict} the design "
-        "wherever the design demands 0 or 1."
+        f"wherever the design demands 0 or 1{drives}."
     )

@@ -21,6 +21,7 @@ from pla.report.notation import listed
 from pla.report.pins import pin_list
 from pla.report.plan_text import plan_text
 from pla.report.refusal_text import refusal_text
+from pla.report.rows import ProgrammedRows
 from pla.report.terms_text import terms_text
 from pla.report.text import WIDTH
 from pla.report.verdict import count_sentences, design_sentences, proof_sentence
@@ -138,14 +139,14 @@ def test_text_of_a_plan_needs_a_plan(planned):
 
 
 def test_every_pin_is_listed_once_in_order(planned):
-    outcome, *_ = planned
+    outcome, proven, _ = planned
     device = outcome.device
-    rows = pin_list(outcome.plan).rows
+    rows = pin_list(ProgrammedRows.of(outcome.plan, proven.fuses)).rows
     assert [int(row[0]) for row in rows] == list(range(1, device.pins + 1))
     named = {row[1]: int(row[0]) for row in rows if row[1]}
     assert named == outcome.plan.pins
-    assert rows[device.ground - 1][2] == "ground"
-    assert rows[device.power - 1][2] == "power"
+    assert {rows[pin - 1][2] for pin in device.ground} == {"ground"}
+    assert {rows[pin - 1][2] for pin in device.power} == {"power"}
 
 
 @pytest.mark.parametrize(
@@ -167,7 +168,8 @@ def test_an_unused_output_says_what_it_shows(tmp_path, mode, level):
     design = tmp_path / "one.toml"
     design.write_text('name = "O"\n[inputs]\na = 1\n[outputs]\nf = 1\n[logic]\nf = "a"\n')
     outcome = fit(read_behaviour(str(design)), find_device(str(path)))
-    remarks = [row[4] for row in pin_list(outcome.plan).rows if row[2] == "output" and not row[1]]
+    programmed = ProgrammedRows.of(outcome.plan, fuse_file(outcome.plan, "one.jed").fuses)
+    remarks = [row[4] for row in pin_list(programmed).rows if row[2] == "output" and not row[1]]
     assert len(remarks) == 5
     assert all(remark == f"unused, leave open: the part {level}" for remark in remarks)
 
@@ -197,9 +199,11 @@ def test_sentences_about_the_count(planned, changes, words):
 
 
 def test_a_proof_by_cubes_says_so(planned):
-    _, proven, _ = planned
+    outcome, proven, _ = planned
     by_cubes = replace(proven.proof, method="cubes", cases=12)
-    assert "compared with the design as cubes, 12 cubes in all" in proof_sentence(by_cubes)
+    said = proof_sentence(by_cubes, outcome.behaviour)
+    assert "compared with the design as cubes, 12 cubes in all" in said
+    assert "drives each pin" not in said
 
 
 def test_warnings_and_cautions_stand_in_the_report(planned):
