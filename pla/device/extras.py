@@ -29,6 +29,7 @@ __all__ = [
 ]
 
 _TIMES = ("tpd", "tfb", "ten", "tdis")
+_LONGEST = 10**9  # ns: a second
 _ORDERS = ("most significant bit first", "least significant bit first")
 
 
@@ -198,7 +199,7 @@ def _time(section: Section, key: str) -> Fraction | None:
     if value is None:
         return None
     number = isinstance(value, int | float) and not isinstance(value, bool)
-    if not number or not 0 < value < float("inf"):
-        section.wrong("a time in ns, a number greater than 0", key)
+    if not number or not 0 < value <= _LONGEST:
+        section.wrong(f"a time in ns, a number above 0 and up to {_LONGEST}", key)
         return None
     return Fraction(str(value))
