@@ -87,9 +87,10 @@ def one_output(
         return None
     claims.claim(output, at, form)
     if not output.is_bit:
+        what = "output " if output.role == "output" else ""
         section.diagnostics.error(
             "BUS-AS-BIT",
-            f"{name!r} has {output.width} bits, expected one output bit",
+            f"{name!r} has {output.width} bits, expected one {what}bit",
             at,
             f'give each bit: "{name.partition("[")[0]}[0]"',
         )
