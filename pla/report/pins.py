@@ -193,7 +193,7 @@ def _idle(programmed: ProgrammedRows, cell: Cell) -> str:
     drive = programmed.drive_of(cell)
     if drive == "never":
         if _is_read(programmed, cell):
-            return f"{what}, not driven: tie to ground or power"
+            return f"{what}, tie to ground or power: the part does not drive it"
         return f"{what}, leave open: the part does not drive it"
     level = programmed.level_of(cell)
     shown = "" if level is None else f" {_LEVELS[level]}"

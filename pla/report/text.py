@@ -35,6 +35,6 @@ def table_text(table: Table) -> str:
     """Title, paragraphs and table; no newline at the end."""
     parts = [f"{table.title}\n{'-' * len(table.title)}", *map(filled, table.lead)]
     if table.rows:
-        parts.append(drawn(table))
+        parts.append(drawn(table).replace(_KEEP, " "))
     parts += map(filled, table.remarks)
     return "\n\n".join(parts)
