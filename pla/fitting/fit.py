@@ -9,7 +9,6 @@ from typing import TYPE_CHECKING
 from pla.errors import Diagnostic
 from pla.fitting.minima import Minima
 from pla.fitting.model import Fit, Usage
-from pla.fitting.netlist import netlist
 from pla.fitting.places import settled_places
 from pla.fitting.placing import delays, plan_of
 from pla.fitting.problem import Problem
@@ -56,10 +55,11 @@ def fit(
         InputError: If a place names a pin that cannot carry its signal.
     """
     places = settled_places(behaviour, device)
-    folded = netlist(behaviour)
+    known = minima or Minima()
+    folded = known.netlist(behaviour)
     if folded is None:  # pragma: no cover - nothing is fed back
         raise AssertionError
-    problem = Problem(folded, device, wish, places, minima or Minima(), reserve)
+    problem = Problem(folded, device, wish, places, known, reserve)
     shortage = Shortage(problem, list(ways(problem)))
     reasons = list(_too_long(behaviour, device))
     found = best_layout(problem)

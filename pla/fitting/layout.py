@@ -9,7 +9,6 @@ from pla.fitting.assignment import cheapest_assignment
 from pla.fitting.matching import can_match
 from pla.fitting.minima import joined_minimum
 from pla.fitting.spots import Spots
-from pla.logic import algebra
 from pla.logic.cubes import Cover
 from pla.logic.phases import Polarity
 
@@ -21,7 +20,6 @@ if TYPE_CHECKING:
     from pla.fitting.problem import Problem
     from pla.fitting.scenario import Scenario
     from pla.fitting.spots import Resource, Spot
-    from pla.logic.function import Function
     from pla.logic.minimize import Minimum
     from pla.logic.relaxation import Decisions
     from pla.logic.search import Feasible
@@ -155,11 +153,10 @@ def joint_minimum(spots: Spots) -> Minimum | None:
     group = sorted(spots.shared)
     if not all(any(own.values()) for own in options.values()):
         return None
-    function = problem.netlist.behaviour.function
     inputs = [
         set(spots.of_input(i, frozenset()))
         for i in spots.inputs
-        if i in problem.placed_inputs or _essential(function, i)
+        if i in problem.placed_inputs or i in problem.netlist.essential
     ]
     feasible = _feasible(spots, options, group, inputs)
     if not feasible((None,) * len(group)):
@@ -214,28 +211,6 @@ def _ties(options: Options, inputs: Sequence[set[Resource]]) -> Hashable:
     wanted = [set(found) for own in options.values() for found in own.values()]
     takers = [tuple(r in own for own in (*wanted, *inputs)) for r in resources]
     return tuple(sorted(takers))
-
-
-def _essential(function: Function, index: int) -> bool:
-    """Whether some output is 1 and 0 at inputs that differ in this one only."""
-    bit = 1 << index
-    for j in range(function.n_outputs):
-        on, off = function.on.of_output(j), function.off.of_output(j)
-        for one, zero in ((on, off), (off, on)):
-            low = _cofactor(one, bit, high=False)
-            high = _cofactor(zero, bit, high=True)
-            if algebra.find_common(low, high) is not None:
-                return True
-    return False
-
-
-def _cofactor(cover: Cover, bit: int, *, high: bool) -> Cover:
-    cubes = [
-        (cube.ones & ~bit, cube.zeros & ~bit, 1)
-        for cube in cover
-        if not (cube.zeros if high else cube.ones) & bit
-    ]
-    return Cover.of(cover.n_inputs, cubes)
 
 
 def _assigned(

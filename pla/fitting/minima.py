@@ -2,9 +2,10 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from typing import TYPE_CHECKING
 
+from pla.fitting.netlist import netlist as fed_back
 from pla.logic.cubes import Cover
 from pla.logic.effort import Effort
 from pla.logic.function import Function
@@ -14,7 +15,8 @@ from pla.logic.phases import Polarity
 if TYPE_CHECKING:
     from collections.abc import Callable, Hashable, Sequence
 
-    from pla.fitting.netlist import Netlist
+    from pla.behaviour.model import Behaviour
+    from pla.fitting.netlist import Netlist, Restriction
     from pla.logic.search import Feasible
 
 __all__ = ["Minima", "joined_minimum"]
@@ -30,10 +32,30 @@ class Minima:
 
     effort: Callable[[], Effort] = Effort
     _known: dict[Hashable, Minimum] = field(default_factory=dict)
+    _netlists: dict[Hashable, Netlist | None] = field(default_factory=dict)
 
     def within(self, effort: Callable[[], Effort]) -> Minima:
         """The same minima, with another budget for those that are still to be found."""
-        return Minima(effort, self._known)
+        return Minima(effort, self._known, self._netlists)
+
+    def netlist(
+        self, behaviour: Behaviour, fed: Sequence[str] = (), restriction: Restriction | None = None
+    ) -> Netlist | None:
+        """The design with some signals fed back; see `pla.fitting.netlist.netlist`.
+
+        Args:
+            behaviour: The design, with any places.
+            fed: Names of the signals.
+            restriction: How they may be read.
+        """
+        key = (tuple(fed), restriction)
+        if key not in self._netlists:
+            self._netlists[key] = fed_back(behaviour, fed, restriction)
+        found = self._netlists[key]
+        if found is None or found.design is behaviour:
+            return found
+        laid = replace(found.behaviour, places=behaviour.places) if fed else behaviour
+        return replace(found, design=behaviour, behaviour=laid)
 
     def alone(self, netlist: Netlist, output: int, complemented: bool) -> Minimum:
         """One output by itself in one polarity; its terms feed this output only."""

@@ -105,6 +105,21 @@ class Netlist:
         """The inputs that come from outside."""
         return range(len(self.design.inputs))
 
+    @cached_property
+    def essential(self) -> frozenset[int]:
+        """Inputs without which some output cannot do: it differs where they alone do."""
+        return frozenset(i for i in range(len(self.behaviour.inputs)) if self._depends(1 << i))
+
+    def _depends(self, bit: int) -> bool:
+        function = self.behaviour.function
+        for j in range(function.n_outputs):
+            on, off = function.on.of_output(j), function.off.of_output(j)
+            for one, zero in ((on, off), (off, on)):
+                low, high = _cofactor(one, bit, high=False), _cofactor(zero, bit, high=True)
+                if algebra.find_common(low, high) is not None:
+                    return True
+        return False
+
 
 def candidates(behaviour: Behaviour) -> tuple[str, ...]:
     """Signals that could be fed back: inner ones and outputs, as far as others name them."""
@@ -277,6 +292,12 @@ def _monotone(
         zeros = zeros + Cover(zeros.n_inputs, loose.ones & ~bit, loose.zeros & ~bit, loose.outputs)
         zeros = zeros.absorbed()
     return (zeros, off) if restriction.complemented else (on, zeros)
+
+
+def _cofactor(cover: Cover, bit: int, *, high: bool) -> Cover:
+    other = np.uint64(bit)
+    kept = cover.take((cover.zeros if high else cover.ones) & other == 0)
+    return Cover(kept.n_inputs, kept.ones & ~other, kept.zeros & ~other, kept.outputs)
 
 
 def _lifted(cover: Cover, n: int) -> Cover:

@@ -11,13 +11,23 @@ from functools import cached_property
 from itertools import islice, product
 from typing import TYPE_CHECKING, Literal
 
+from pla.device.model import Line
+
 if TYPE_CHECKING:
     from collections.abc import Iterable, Iterator, Mapping, Sequence
 
     from pla.behaviour.model import Behaviour
-    from pla.device.model import Cell, Device, Line, Mode, Source
+    from pla.device.model import Cell, Device, Mode, Source
 
-__all__ = ["Drive", "PinUse", "Scenario", "Switch", "scenarios", "taken_apart"]
+__all__ = [
+    "Drive",
+    "PinUse",
+    "Scenario",
+    "Switch",
+    "has_single_lines",
+    "scenarios",
+    "taken_apart",
+]
 
 MOST_SCENARIOS = 256
 
@@ -147,6 +157,25 @@ def taken_apart(scenario: Scenario, inner: int) -> Iterator[Scenario]:
             scenario.modes,
             frozenset(both[-count:]),
         )
+
+
+def has_single_lines(device: Device) -> bool:
+    """Whether some cell may be fed back by a line whose complement is not there."""
+    fixed = {line for line in device.fixed_lines if line is not None}
+    for cell in device.cells:
+        elsewhere = {
+            line for other in device.cells for mode in other.modes for line in _foreign(other, mode)
+        }
+        carried = [Line("sum", cell.key)]
+        if cell.pin is not None:
+            carried.append(Line("pin", cell.pin))
+        for mode in cell.modes:
+            lines = fixed.union(line for _, line in mode.lines if line is not None)
+            if any((line in lines) != (line.inverse in lines) for line in carried):
+                return True
+        if any({line, line.inverse} & elsewhere for line in carried):
+            return True
+    return False
 
 
 def _single(indexes: Sequence[int | None]) -> bool:

@@ -7,9 +7,9 @@ from itertools import product
 from typing import TYPE_CHECKING
 
 from pla.fitting.layout import layout
-from pla.fitting.netlist import choices, netlist, restrictions
+from pla.fitting.netlist import choices, restrictions
 from pla.fitting.placing import delays, passes_of
-from pla.fitting.scenario import scenarios, taken_apart
+from pla.fitting.scenario import has_single_lines, scenarios, taken_apart
 from pla.fitting.spots import Spots
 
 if TYPE_CHECKING:
@@ -39,12 +39,15 @@ def best_layout(problem: Problem) -> Found | None:
     Args:
         problem: The design with nothing fed back.
     """
+    design, device, minima = problem.netlist.design, problem.device, problem.minima
+    if len(design.outputs) > len(device.output_pins):
+        return None
     best: Found | None = None
-    for chosen in choices(problem.netlist.design):
-        found = _of(problem, netlist(problem.netlist.design, chosen))
-        if found is None:
+    for chosen in choices(design):
+        found = _of(problem, minima.netlist(design, chosen), best)
+        if found is None and has_single_lines(device):
             for restriction in restrictions(chosen) if chosen else ():
-                tried = _of(problem, netlist(problem.netlist.design, chosen, restriction))
+                tried = _of(problem, minima.netlist(design, chosen, restriction), best)
                 found = _better(found, tried)
         best = _better(best, found)
     return best
@@ -59,19 +62,42 @@ def ways(problem: Problem) -> Iterator[tuple[Scenario, frozenset[int]]]:
             yield scenario, shared
 
 
-def _of(problem: Problem, nets: Netlist | None) -> Found | None:
+def _of(problem: Problem, nets: Netlist | None, known: Found | None) -> Found | None:
+    """The best layout of one netlist; ``None`` if there is none that could beat a known one."""
     if nets is None:
         return None
     own = replace(problem, netlist=nets)
+    if any(
+        net.enable is not None and cube is None
+        for net, cube in zip(nets.nets, own.enables, strict=True)
+    ):
+        return None
     inner = sum(net.inner for net in nets.nets)
     best: Found | None = None
     for scenario, shared in ways(own):
-        best = _better(best, _judged(layout(own, scenario, shared)))
+        if not _hopeless(own, shared, _better(known, best)):
+            best = _better(best, _judged(layout(own, scenario, shared)))
     if best is None and inner:
         for scenario, shared in ways(own):
+            if _hopeless(own, shared, _better(known, best)):
+                continue
             for apart in taken_apart(scenario, inner):
                 best = _better(best, _judged(layout(own, apart, shared)))
     return best
+
+
+def _hopeless(problem: Problem, shared: frozenset[int], known: Found | None) -> bool:
+    """Whether the sums alone take more terms than a known layout that is not late."""
+    if known is None or known.rank[0]:
+        return False
+    own, joint = 0, [0]
+    for net in problem.netlist.nets:
+        sums = [problem.alone(net, c) for c in problem.polarities(net)]
+        if net.index in shared:
+            joint.append(min(found.lower_bound for found in sums))
+        else:
+            own += min(found.count for found in sums)
+    return own + max(joint) > known.rank[1]
 
 
 def _judged(found: Layout | None) -> Found | None:
