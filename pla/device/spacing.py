@@ -10,8 +10,8 @@ from dataclasses import replace
 from itertools import chain, count
 from typing import TYPE_CHECKING, TypeAlias, TypeVar, cast
 
-from pla.device.consistency import spans
 from pla.device.model import Column
+from pla.device.words import named, spans
 
 if TYPE_CHECKING:
     from collections.abc import Collection, Iterator, Sequence
@@ -97,7 +97,7 @@ def _missing(read: _Read, and_array: ReadAndArray) -> str:
     if not single:
         return "perhaps a column is missing"
     pins = [
-        f"pin {line.source} has a {'complement' if line.complement else 'true'} line, but no "
+        f"{named(line.source)} has a {'complement' if line.complement else 'true'} line, but no "
         f"{Column(line.source, not line.complement)}"
         for line in single[:_SHOWN]
     ]

@@ -94,8 +94,13 @@ def _on_blank_rows(device: Device, enables: list[int]) -> Iterator[str]:
         if device.drop is not None and device.drop.dropped == device.links.blank
     ]
     if dropped:
-        which = "A blank row is" if len(dropped) == device.terms else f"Blank {rows_text(dropped)}:"
-        yield f"{which} cut off by its drop link, and counts as 0."
+        if len(dropped) == device.terms:
+            yield "A blank row is cut off by its drop link, and counts as 0."
+        else:
+            rest = "is cut off by its drop link, and counts as 0."
+            if len(dropped) > 1:
+                rest = "are cut off by their drop links, and count as 0."
+            yield f"Blank {rows_text(dropped)} {rest}"
     bare = [row for row in worth if row not in dropped]
     if not bare:
         return
@@ -124,12 +129,14 @@ def _paired(device: Device) -> str:
     sources = {c.source for c in device.and_array.columns if c is not None}
     if len(device.paired_sources) == len(sources):
         return "every line and its complement are"
-    pins = spans(sorted(s for s in device.paired_sources if isinstance(s, int)))
-    names = ", ".join(s for s in device.paired_sources if isinstance(s, str))
-    some = " and ".join(
-        filter(None, [f"pins {pins}" if pins else "", f"cells {names}" if names else ""])
-    )
-    return f"line and complement of {some} are"
+    pins = sorted(s for s in device.paired_sources if isinstance(s, int))
+    names = [s for s in device.paired_sources if isinstance(s, str)]
+    parts = []
+    if pins:
+        parts.append(f"pin{'' if len(pins) == 1 else 's'} {spans(pins)}")
+    if names:
+        parts.append(f"cell{'' if len(names) == 1 else 's'} {', '.join(names)}")
+    return f"line and complement of {' and '.join(parts)} are"
 
 
 def _on_unused_row(device: Device) -> str:

@@ -14,6 +14,9 @@ from pla.tomlfile import parse_toml
 
 DEVICES = Path(__file__).parents[2] / "devices"
 ALTERNATE = "shared-12x32x6"  # rows of 24 AND links and 6 OR links, 30 in all, then 6 cells
+OWN = "own-9x5"  # 30 rows of 24 AND links, terms and enables of five cells, no OR links
+UPRIGHT = "gate-9x6"  # 18 columns of 24 AND links: column by column, no OR links
+LISTED = "shared-10x28x4"  # 6 OR links and 32 AND links, rows of [and] listed one by one
 APART = "shared-10x24x6"  # 24 rows of 20 AND links, then 24 rows of 6 OR links
 
 
@@ -53,6 +56,9 @@ AND, OR = 0, 1
         pytest.param(APART, [step(21, AND)], AND, 20, id="apart-and-more"),
         pytest.param(APART, [step(5, OR)], OR, 6, id="apart-or-less"),
         pytest.param(APART, [step(7, OR)], OR, 6, id="apart-or-more"),
+        pytest.param(OWN, [step(23, AND)], AND, 24, id="own-less"),
+        pytest.param(OWN, [step(25, AND)], AND, 24, id="own-more"),
+        pytest.param(LISTED, [step(39, 0)], 0, 38, id="or-beside-listed-rows"),
     ],
 )
 def test_a_wrong_step_is_one_error_at_the_step(name, edits, array, right):
@@ -130,6 +136,22 @@ def test_a_wrong_step_beside_another_slip_is_still_found_where_a_row_cannot_fit(
             "perhaps a column is missing; only if",
             id="sum",
         ),
+        pytest.param(
+            OWN,
+            (r" 7'", "", 0),
+            "23 columns of [and] do not fill term_step = 24: behind the columns of [and] 1 fuse of "
+            "each row has no use: 23, 47, 71,",
+            "perhaps a column is missing: pin 7 has a true line, but no 7'; only if",
+            id="own",
+        ),
+        pytest.param(
+            LISTED,
+            (r" 11'", "", 0),
+            "31 columns of [and] and 6 of [or] do not fill the array: behind the columns of [and] "
+            "1 fuse of each row has no use: 37, 75,",
+            "pin 11 has a true line, but no 11', cell c has a complement line, but no c; only if",
+            id="beside-listed-rows",
+        ),
     ],
 )
 def test_a_forgotten_column_is_not_taken_for_spare_fuses(name, edit, message, hint):
@@ -138,6 +160,23 @@ def test_a_forgotten_column_is_not_taken_for_spare_fuses(name, edit, message, hi
     assert found.message.startswith(message)
     assert hint in found.hint
     assert text.splitlines()[found.location.line - 1].startswith("columns")
+
+
+def test_a_wrong_step_between_columns_is_one_error():
+    text = spoilt(UPRIGHT, (r"term_step = \d+", "term_step = 2", 0))
+    (found,) = refused(text)
+    assert found.message == (
+        "term_step = 2 of [and] does not fit: fuse 24 would be both AND row 0 column 1 for 1' and "
+        "AND row 12 column 0 for 1; with 1 each of the 438 fuses has one use"
+    )
+
+
+def test_a_step_that_cannot_be_right_is_found_without_an_or_array():
+    more = (r"fuses = \d+", "fuses = 730", 0)
+    (found,) = refused(spoilt(OWN, more, step(23, AND)))
+    assert found.message == (
+        "term_step = 23 of [and] is smaller than a row, so that rows overlap; expected at least 24"
+    )
 
 
 def test_fuses_past_the_last_row_are_no_forgotten_column():
