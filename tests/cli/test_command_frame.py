@@ -146,6 +146,8 @@ def test_every_example_is_planned_or_refused(tmp_path, capsys):
         "rotator-readout": ("shared-20x96x12", 0),
         "sump-pumps": ("shared-12x32x6", 0),
         "egg-totals": ("shared-12x32x6", 1),
+        "clamp-card": ("varied-11x5-marked", 0),
+        "cabinet-fans": ("joint-10x27x6", 0),
     }
     assert {path.stem for path in EXAMPLES.glob("*.toml")} == set(wanted)
     for name, (device, expected) in wanted.items():
