@@ -265,7 +265,7 @@ def _in_order(
             for pin, mode in pins.items()
         }
         if not needs[i] and i not in problem.placed_inputs:
-            found_costs[_NO_PIN, i] = absent
+            found_costs[_NO_PIN, i] = absent + (base - 1) * weight
         costs.append(found_costs)
         modes.append(pins)
     assigned = cheapest_assignment(costs)

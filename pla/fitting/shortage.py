@@ -300,16 +300,20 @@ class Shortage:
             f"pin {r}" if isinstance(r, int) else f"cell {r[1] if isinstance(r, tuple) else r}"
             for r in sorted(resources_of, key=spots.ranks.__getitem__)
         ]
-        return len(members), [_too_few(signals, where)]
+        narrowed = problem.wish == "true" and any(
+            spots.of_net(problem.netlist.nets[m], True, {}) for m in members - set(lone)
+        )
+        return len(members), [_too_few(signals, where, narrowed=narrowed)]
 
 
-def _too_few(signals: Sequence[str], where: Sequence[str]) -> str:
+def _too_few(signals: Sequence[str], where: Sequence[str], *, narrowed: bool) -> str:
     named = _listed(signals)
     if not where:
         return f"no cell or pin is left that {named} could have"
     verb = "has" if len(signals) == 1 else "have"
     return (
-        f"{named} {verb} only {_listed(where)} to be on: {len(signals)} signals, "
+        f"{named} {verb} only {_listed(where)} to be on"
+        f"{' with --polarity true' if narrowed else ''}: {len(signals)} signals, "
         f"{len(where)} place{'s' if len(where) != 1 else ''}"
     )
 
