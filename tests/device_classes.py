@@ -262,7 +262,7 @@ def _buried(rng):
             _own_rows(draft, cell, enable=True)
     bits, senses = _any_sense(rng)
     for group in (fed, [cell for cell in cells if cell not in fed]):
-        feedback = {"feedback": rng.choice(["pin", "sum", "sum'"])} if group is fed else {}
+        feedback = {"feedback": rng.choice(["pin", "pin", "sum", "sum'"])} if group is fed else {}
         modes = [{"set": s, "pin": shows, **feedback} for s, shows in senses]
         draft.kinds += [_Kind(bits, modes, group)] * bool(group)
     draft.kinds.append(_Kind([], [{"set": "", "feedback": "sum"}], [complement]))
@@ -282,7 +282,7 @@ def _enable_pin(rng):
     enabling = draft.free.pop()
     if rng.random() < 0.5:
         draft.inputs.append(enabling)
-    fed = rng.sample(cells, rng.randint(0, outputs)) if rng.random() < 0.5 else []
+    fed = rng.sample(cells, rng.randint(1, outputs)) if rng.random() < 0.7 else []
     draft.columns = _lines(rng, [*draft.inputs, *(cell.pin for cell in fed)])
     if rng.random() < 0.5:
         _hand_out_rows(draft, cells, [0] * outputs, shared=rng.randint(8, 20))
@@ -297,7 +297,7 @@ def _enable_pin(rng):
     by_pin = rng.sample(cells, rng.randint(1, outputs))
     bits, senses = _any_sense(rng)
     for group in ([c for c in cells if c in by_pin], [c for c in cells if c not in by_pin]):
-        feedback = {"feedback": rng.choice(["pin", "sum", "sum'"])}
+        feedback = {"feedback": rng.choice(["pin", "pin", "sum", "sum'"])}
         modes = [{"set": s, "pin": p, **(feedback if fed else {})} for s, p in senses]
         if not set(map(id, group)) & set(map(id, fed)):
             modes = [{"set": s, "pin": p} for s, p in senses]
@@ -347,7 +347,7 @@ def _mixed(rng):
     draft = _draft(rng, rng.randint(4, 8), outputs)
     cells = [_Cell(draft.free.pop()) for _ in range(outputs)]
     sharing = rng.sample(cells, rng.randint(1, outputs - 1))
-    fed = rng.sample(cells, rng.randint(0, outputs))
+    fed = rng.sample(cells, rng.randint(1, outputs))
     draft.columns = _lines(rng, [*draft.inputs, *(cell.pin for cell in fed)])
     enables = [rng.random() < 0.4 for _ in cells]
     counts = [
@@ -358,7 +358,7 @@ def _mixed(rng):
     for cell, on in zip(cells, enables, strict=True):
         if cell.rows:
             _own_rows(draft, cell, enable=on)
-    feedback = {"feedback": rng.choice(["pin", "sum", "sum'"])} if fed else {}
+    feedback = {"feedback": rng.choice(["pin", "pin", "sum", "sum'"])} if fed else {}
     bits, senses = _any_sense(rng)
     draft.kinds = [_Kind(bits, [{"set": s, "pin": p, **feedback} for s, p in senses], cells)]
     draft.sums = rng.sample(sharing, len(sharing))

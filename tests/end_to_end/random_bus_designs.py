@@ -7,6 +7,7 @@ there by its value at every point, so nothing has to be read back.
 from __future__ import annotations
 
 from dataclasses import dataclass, field
+from itertools import combinations
 from typing import TYPE_CHECKING
 
 from random_designs import (
@@ -35,11 +36,13 @@ class Shape:
         inputs: Input bits, those that are read from bidirectional pins not counted.
         outputs: Output bits.
         span: Input bits that one description may speak of.
-        enabled: Output signals that may have an enable.
+        enabled: Output bits that have an enable, or fewer where buses do not divide so.
         enabled_by: ``product`` of several inputs, or a single ``input``, the same for all, whose
             active level is `enable_active`.
         bidirectional: Output bits that may be read.
         inner: Inner signals.
+        layered: The inner signals take many terms and the outputs name them, so that it costs more
+            to fold them in.
         signature: Characters of the signature.
     """
 
@@ -51,6 +54,7 @@ class Shape:
     enable_active: str = "high"
     bidirectional: int = 0
     inner: int = 0
+    layered: bool = False
     signature: int = 0
 
 
@@ -151,12 +155,16 @@ class _Writer:
     def _choose_buses(self):
         """Which outputs have an enable, and which of these are read."""
         rng, made = self.rng, self.made
-        chosen = rng.sample(made.outputs, min(self.shape.enabled, len(made.outputs)))
+        signals = rng.sample(made.outputs, len(made.outputs))
+        sets = [set_ for n in range(len(signals) + 1) for set_ in combinations(signals, n)]
+        sizes = [sum(len(signal.names) for signal in set_) for set_ in sets]
+        most = max(size for size in sizes if size <= self.shape.enabled)
+        chosen = sets[sizes.index(most)]
         self.enabled = [s for s in made.outputs if s in chosen]
         room, first = self.shape.bidirectional, len(made.input_names)
         for signal in self.enabled:
             width = len(signal.names)
-            if width <= room and rng.random() < 0.7:
+            if width <= room and rng.random() < 0.9:
                 room -= width
                 name = f"{signal.name}_in"
                 made.read.append(Signal(name, list(range(first, first + width)), signal.active_low))
@@ -180,19 +188,19 @@ class _Writer:
     def _inner(self):
         rng, lines = self.rng, []
         for name in rng.sample(["armed", "ready", "warm"], self.shape.inner):
-            width = rng.choice([1, 1, 1, 2])
+            width = 1 if self.shape.layered else rng.choice([1, 1, 1, 2])
             signal = Signal(name, list(range(width)), active_low=False)
             lines.append(f"{name} = {width}")
             for bit in signal.names:
                 fields = self._some(self.every if rng.random() < 0.2 else self.plain)
                 support = {b for f in fields for b in f.bits}
-                if rng.random() < 0.3:
+                if rng.random() < 0.3 and not self.shape.layered:
                     section, values = _minterms(rng, self.made, fields, bit, complete=True)
                     self.sections.append(section)
                     where = [value == 1 for value in values]
                 else:
                     known = dict(self.equated)
-                    if rng.random() < 0.4:
+                    if rng.random() < 0.4 or self.shape.layered:
                         text, where = self._parity(fields)
                     else:
                         text, where = _equation(rng, self.made, fields, known, depth=2)
@@ -204,11 +212,14 @@ class _Writer:
                 self.inner.append(bit)
         return lines
 
-    def _some(self, fields):
-        """Fields that together have few enough bits, in their order."""
+    def _some(self, fields, span=None):
+        """Fields that together have few enough bits, in their order; often what pins give."""
         chosen, bits = [], set()
-        for candidate in self.rng.sample(fields, len(fields)):
-            if len(bits | set(candidate.bits)) <= self.shape.span:
+        candidates = self.rng.sample(fields, len(fields))
+        if self.rng.random() < 0.7:
+            candidates.sort(key=lambda f: f in self.plain)
+        for candidate in candidates:
+            if len(bits | set(candidate.bits)) <= (span or self.shape.span):
                 chosen.append(candidate)
                 bits |= set(candidate.bits)
         return [f for f in fields if f in chosen]
@@ -264,14 +275,14 @@ class _Writer:
             allowed = set(range(made.bit_of(later)))
         fields = [f for f in self.every if set(f.bits) <= allowed]
         form = rng.choice(["cases", "minterms", "logic", "logic"])
-        if set(self.inner) - self.named and rng.random() < 0.7:
+        if self.shape.layered or (set(self.inner) - self.named and rng.random() < 0.7):
             form = "logic"
         values: dict[str, list[int | None]] = {}
         if form == "cases":
             section, values = _cases(rng, made, self._some(fields), [signal])
             self.sections.append(section)
         for name in signal.names if form != "cases" else []:
-            chosen = self._some(fields)
+            chosen = self._some(fields, 2 if self.shape.layered else None)
             if form == "minterms":
                 section, values[name] = _minterms(rng, made, chosen, name)
                 self.sections.append(section)
@@ -297,11 +308,11 @@ class _Writer:
         text, where = _equation(rng, self.made, fields, known, depth=rng.choice([2, 2, 3]))
         names = [name for name in self.inner if name in known]
         fresh = [name for name in names if name not in self.named]
-        if names and rng.random() < 0.8:
+        if names and rng.random() < (1 if self.shape.layered else 0.8):
             name = rng.choice(fresh or names)
             self.named.add(name)
             pairs = zip(where, known[name], strict=True)
-            form = rng.randint(0, 2)
+            form = rng.choice([0, 1, 2, 2, 2] if self.shape.layered else [0, 1, 2])
             if form == 0:
                 return f"{name} ({text})", [a and b for a, b in pairs]
             if form == 1:

@@ -22,32 +22,40 @@ IN_SUITE, IN_ALL = 15, 100
 def random_shape(rng: random.Random, which: str, device: Description) -> Shape:
     """A size that mostly fits the device."""
     cells = [cell for cell in device.cells.values() if cell.pin is not None]
-    own = [len(m.terms) for c in cells for m in c.modes.values() if m.terms is not None]
+    modes = [mode for cell in cells for mode in cell.modes.values()]
+    own = [len(mode.terms) for mode in modes if mode.terms is not None]
     three_state = [c for c in cells if any(m.enable[0] != "always" for m in c.modes.values())]
-    by_pin = bool(device.enable_pins)
-    outputs = rng.randint(1, len(cells))
+    pins_read = any(line and line.kind == "pin" for m in modes for line in m.columns.values())
+    sums_read = {c.key for c in device.cells.values() for m in c.modes.values() if m.columns}
+    inner = rng.choice([0, 1, 1, 2]) if which in {"buried", "cells"} else rng.choice([0, 0, 1])
+    layered = bool(sums_read) and rng.random() < 0.5
+    if layered:
+        # Room for the inner signal: a buried cell, or that of one output less.
+        inner, spare = 1, 0 if which == "buried" else 1
+    else:
+        spare = rng.choice([0, 0, 1, 2])
+    outputs = max(1, len(cells) - spare)
     enabled = rng.randint(0, min(outputs, len(three_state)))
-    if by_pin:
+    if device.enable_pins:
         # A cell that a pin enables serves an output without enable only where the pin is tied.
         enabled = min(outputs, len(three_state))
-        outputs = enabled + rng.randint(0, len(cells) - len(three_state))
-    read = {m.columns[i] for c in cells for m in c.modes.values() for i in m.columns}
-    fed = {line.of for line in read if line is not None and line.kind == "pin"}
-    levels = {m.enable[2] for c in cells for m in c.modes.values() if m.enable[0] == "pin"}
-    inputs = len(device.input_pins) - rng.choice([0, 0, 1])
-    if outputs < len(cells) and fed and rng.random() < 0.3:
-        inputs += 1  # onto the pin of a cell
+        outputs = min(outputs, enabled + len(cells) - len(three_state))
+    inputs = rng.randint(max(1, len(device.input_pins) - 2), len(device.input_pins))
+    if outputs < len(cells) and pins_read and rng.random() < 0.5:
+        inputs = len(device.input_pins) + 1  # one of them onto the pin of a cell
     tight = own and min(own) < 6
     text = len(device.signature.fuses) // 8 if device.signature is not None else 0
+    levels = {mode.enable[2] for mode in modes if mode.enable[0] == "pin"}
     return Shape(
-        inputs=rng.randint(min(3, inputs), inputs),
+        inputs=inputs,
         outputs=outputs,
-        span=rng.choice([2, 3, 3]) if tight else rng.choice([3, 4, 4]),
+        span=3 if tight else 4,
         enabled=enabled,
-        enabled_by="input" if by_pin else "product",
+        enabled_by="input" if device.enable_pins else "product",
         enable_active="low" if 0 in levels else "high",
-        bidirectional=rng.randint(0, 2) if fed and enabled else 0,
-        inner=rng.choice([0, 1, 1, 2]) if which in {"buried", "cells"} else rng.choice([0, 0, 1]),
+        bidirectional=rng.choice([0, 1, 2]) if pins_read else 0,
+        inner=inner,
+        layered=layered,
         signature=text if rng.random() < 0.7 else 0,
     )
 
