@@ -3,6 +3,8 @@
 
 from __future__ import annotations
 
+from pathlib import Path
+
 import pytest
 from full_device import FULL, device
 from hypothesis import given
@@ -505,6 +507,47 @@ WARNINGS = [
 @pytest.mark.parametrize(("edits", "expected"), WARNINGS)
 def test_doubtful_files_are_read_with_a_warning(edits, expected):
     assert shown(device(*edits).warnings) == expected
+
+
+OWN = (Path(__file__).parents[2] / "devices" / "own-9x5.toml").read_text(encoding="utf-8")
+
+OWN_CASES = [
+    pytest.param(
+        [('terms = "25..29"', 'terms = "25..28"')],
+        ["20:9 ROW-IDLE 1 of 30 rows has no use: 29; no cell owns it and there is no [or] with it"],
+        id="idle-row",
+    ),
+    pytest.param(
+        [("terms = 30", "terms = 31")],
+        [
+            "8:9 FUSE-COUNT 31 terms with 24 AND links each are 744 fuses, but the device has 720",
+            "20:9 ROW-IDLE 1 of 31 rows has no use: 30; no cell owns it and there is no [or] with it",
+        ],
+        id="far-too-many",
+    ),
+    pytest.param(
+        [(', terms = "25..29"', "")],
+        [
+            "20:9 ROW-IDLE 5 of 30 rows have no use: 25..29; no cell owns them and there is no [or] with them",
+            "29:19 CELL-NO-SUM the cell on pin 11 has no terms of its own",
+        ],
+        id="no-terms",
+    ),
+    pytest.param(
+        [('terms = "25..29"', 'terms = "24..29"')],
+        [
+            "29:32 ENABLE-IS-TERM row 24 of the cell on pin 11 is its enable and one of its terms in its only mode"
+        ],
+        id="enable-among-the-terms",
+    ),
+]
+
+
+@pytest.mark.parametrize(("edits", "expected"), OWN_CASES)
+def test_errors_where_no_or_array_is(edits, expected):
+    with pytest.raises(InputError) as caught:
+        device(*edits, text=OWN)
+    assert shown(caught.value.diagnostics) == expected
 
 
 @pytest.mark.parametrize("blank", [0, 1])
