@@ -94,6 +94,9 @@ class Cubes:
             total,
         )
 
+    def same(self, one: Known, other: Known) -> bool:
+        return one.one == other.one and one.zero == other.zero
+
     def _union(self, covers: Sequence[Cover]) -> Cover:
         return algebra.union(self.n_inputs, *covers)
 

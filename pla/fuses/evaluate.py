@@ -45,6 +45,10 @@ class Logic(Protocol[V]):
         """1 where one is 1, 0 where all are 0; of no values 0."""
         ...
 
+    def same(self, one: V, other: V, /) -> bool:
+        """Whether two values are seen to be equal; equal ones that look different may be missed."""
+        ...
+
 
 @dataclass(frozen=True, slots=True)
 class Outside(Generic[V]):
@@ -95,14 +99,7 @@ def evaluate(
         ring = is_ring(group, needs)
         if ring:
             rings.append(group)
-        for node in group:
-            run.values[node] = logic.unknown
-        # In each round at least one member becomes known where anything does.
-        for _ in range(len(group) if ring else 1):
-            for node in group:
-                run.values[node] = run.worth(node)
-                if ring:
-                    run.products.clear()
+        run.settle(group, ring=ring)
     pins = {s.cell.pin: s for s in realised.sums if s.cell.pin is not None}
     return Evaluated(
         {key: run.values[Line("sum", key)] for key in realised.sum_of},
@@ -121,6 +118,20 @@ class _Run(Generic[V]):
     outside: Mapping[int, Outside[V]]
     values: dict[Line, V] = field(default_factory=dict)
     products: dict[int, V] = field(default_factory=dict)
+
+    def settle(self, group: tuple[Line, ...], *, ring: bool) -> None:
+        for node in group:
+            self.values[node] = self.logic.unknown
+        # In each round at least one member becomes known where anything does.
+        for _ in range(len(group) if ring else 1):
+            before = [self.values[node] for node in group]
+            for node in group:
+                self.values[node] = self.worth(node)
+                if ring:
+                    self.products.clear()
+            after = [self.values[node] for node in group]
+            if ring and all(map(self.logic.same, before, after)):
+                break
 
     def worth(self, node: Line) -> V:
         device = self.realised.device

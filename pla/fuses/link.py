@@ -105,6 +105,8 @@ def _enable_rows(
 
 
 def _signature(plan: Plan) -> Iterator[tuple[int, int]]:
+    if plan.device.signature is None:
+        return  # the fit warns that the text is left out
     try:
         yield from encode_signature(plan.device, plan.design.signature or "")
     except ValueError as problem:

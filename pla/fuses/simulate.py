@@ -72,6 +72,9 @@ class Packed:
     def disjunction(self, values: Sequence[Signal]) -> Signal:
         return self.inverse(self.conjunction([self.inverse(value) for value in values]))
 
+    def same(self, one: Signal, other: Signal) -> bool:
+        return bool(np.array_equal(one.high, other.high) and np.array_equal(one.low, other.low))
+
 
 def all_combinations(count: int, number: int) -> Levels:
     """``uint8[2^count / 8]``, packed: level of signal `number` in each combination.

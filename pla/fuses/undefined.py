@@ -8,9 +8,9 @@ from pla.device.model import Line
 from pla.fuses.network import reached
 
 if TYPE_CHECKING:
-    from collections.abc import Container, Iterator
+    from collections.abc import Container, Iterator, Sequence
 
-    from pla.device.model import Source
+    from pla.device.model import Cell, Source
     from pla.fitting.model import PlacedOutput
     from pla.fuses.evaluate import Evaluated
     from pla.fuses.recover import Realised, Row
@@ -49,9 +49,18 @@ def nearest_ring(realised: Realised, made: Evaluated[V], output: PlacedOutput) -
         for ring in made.rings:
             if node in ring:
                 keys = {_key(realised, line) for line in ring}
-                cells = [cell for cell in realised.device.cells if cell.key in keys]
-                return " and ".join(map(str, cells))
+                return _cells([cell for cell in realised.device.cells if cell.key in keys])
     return None
+
+
+def _cells(cells: Sequence[Cell]) -> str:
+    """Such as "cell b1 and the cells on pins 14 and 15"."""
+    pins = [str(cell.pin) for cell in cells if cell.pin is not None]
+    named = [str(cell) for cell in cells if cell.pin is None]
+    if pins:
+        several = f"the cells on pins {', '.join(pins[:-1])} and {pins[-1]}"
+        named.append(several if len(pins) > 1 else f"the cell on pin {pins[0]}")
+    return " and ".join(named)
 
 
 def _without_level(

@@ -235,7 +235,7 @@ def test_outputs_that_hold_each_other(device, proven):
     found = proven(passing(device, {1, 3}, {2, 3}), fuses)
     assert (found.fault, found.output, found.point & 3) == ("held", "up", 3)
     assert found.text.startswith(
-        "up holds itself by way of the cell on pin 7 and the cell on pin 8: they drive each other "
+        "up holds itself by way of the cells on pins 7 and 8: they drive each other "
         "at the same time, at a=1 b=1"
     )
 
