@@ -10,7 +10,7 @@ from pla.report.table import Table
 if TYPE_CHECKING:
     from collections.abc import Iterator
 
-    from pla.device.model import Cell, Mode
+    from pla.device.model import Cell, Line, Mode
     from pla.fitting.model import PlacedOutput, Plan
     from pla.report.rows import ProgrammedRows
 
@@ -50,7 +50,7 @@ def cell_table(programmed: ProgrammedRows) -> Table | None:
             cell_name(cell),
             _holds(plan, cell),
             "–" if cell.pin is None else mode.pin,
-            _feedback(plan, mode),
+            _feedback(mode),
             _driven(programmed, cell, mode),
             ", ".join(f"{bit} {fuse}={state}" for bit, fuse, state in link_states(cell, mode))
             or "none",
@@ -76,7 +76,7 @@ def cell_table(programmed: ProgrammedRows) -> Table | None:
             ),
             *_mode_fuses(plan),
         ),
-        wrapped=(1, len(kept) - 1),
+        wrapped=tuple(place for place, k in enumerate(kept) if k in {1, 3, 5}),
     )
 
 
@@ -127,15 +127,18 @@ def _holds(plan: Plan, cell: Cell) -> str:
     return "nothing"
 
 
-def _feedback(plan: Plan, mode: Mode) -> str:
+def _feedback(mode: Mode) -> str:
+    """What the lines of a cell carry: as the device file has it, or line by line."""
     if mode.feedback is not None:
         return mode.feedback
-    if not mode.lines:
-        return "–"
-    columns = plan.device.and_array.columns
-    return ", ".join(
-        f"{columns[column]}: {'nothing' if line is None else line}" for column, line in mode.lines
-    )
+    return ", ".join(_line(line) for _, line in mode.lines) or "–"
+
+
+def _line(line: Line | None) -> str:
+    if line is None:
+        return "nothing"
+    what = f"pin {line.of}" if line.kind == "pin" else f"sum of {line.of}"
+    return f"{what}'" if line.complement else what
 
 
 def _driven(rows: ProgrammedRows, cell: Cell, mode: Mode) -> str:

@@ -189,7 +189,10 @@ def _tie(plan: Plan, pin: int, level: int) -> str:
 def _idle(programmed: ProgrammedRows, cell: Cell) -> str:
     """What to do with the pin of a cell that carries no signal of the design."""
     placed = holder_of(programmed.plan, cell)
-    what = f"inner signal {placed.name} is in its cell" if placed else "unused"
+    what = "unused"
+    if placed is not None:
+        verb = "is in its cell" if placed.shown is None else "shows here"
+        what = f"inner signal {placed.name} {verb}"
     drive = programmed.drive_of(cell)
     if drive == "never":
         if _is_read(programmed, cell):

@@ -62,7 +62,7 @@ def _enable_rows(plan: Plan, n: int, m: int) -> Iterator[tuple[str, ...]]:
     """The rows that switch the pins of outputs."""
     for placed in plan.outputs:
         row = placed.mode.enable.row
-        if placed.pin is None or row is None:
+        if row is None or (placed.pin is None and placed.shown is None):
             continue
         text = placed.enable.cube.text(n) if placed.enable is not None else "-" * n
         yield (
@@ -127,7 +127,7 @@ def _on_cells(plan: Plan) -> Iterator[str]:
             f"Fed back inside the device, and therefore among the inputs, {verb} {listed(fed)}; "
             "instead of a pin the cell is named."
         )
-    if any(o.pin is not None and o.mode.enable.row is not None for o in plan.outputs):
+    if next(_enable_rows(plan, 0, 0), None):
         yield (
             "E: the row feeds no sum, it enables the output: the pin is driven while the row is 1. "
             "One that is – everywhere is always 1."
