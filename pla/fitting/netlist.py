@@ -22,7 +22,7 @@ from pla.logic.cubes import MAX_INPUTS, Cover
 from pla.logic.function import Function
 
 if TYPE_CHECKING:
-    from collections.abc import Iterator, Sequence
+    from collections.abc import Iterator, Mapping, Sequence
 
     from pla.behaviour.model import Behaviour
 
@@ -81,7 +81,8 @@ class Netlist:
     Attributes:
         design: What is wanted.
         behaviour: The same with the fed-back signals behind the inputs and those of them that are
-            inner behind the outputs; the design itself if nothing is fed back.
+            inner behind the outputs, and with every output free of what is read at its own pin; the
+            design itself if it has no such signals.
         nets: What the cells have to hold, in order of the outputs of `behaviour`.
         fed: Names of the fed-back signals, in order of the inputs that they are.
         restriction: How fed-back signals may be read.
@@ -164,16 +165,15 @@ def netlist(
         fed: Names of the signals.
         restriction: How they may be read.
     """
+    design, behaviour = behaviour, _deaf(behaviour)
+    if not fed:
+        return Netlist(design, behaviour, _nets(design, behaviour, ()))
     inner = [i for i in behaviour.inner if i.name in fed]
     n = len(behaviour.inputs) + len(fed)
-    if not fed:
-        return Netlist(behaviour, behaviour, _nets(behaviour, behaviour, ()))
     of_input = {name: len(behaviour.inputs) + k for k, name in enumerate(fed)}
     sets = {name: _sets(behaviour, name) for name in (*fed, *behaviour.output_names)}
-    held = {
-        name: _consistent(sets[name], n, len(behaviour.inputs) + k) for k, name in enumerate(fed)
-    }
-    reach = _reach(behaviour)
+    held = {name: _consistent(sets[name], n, of_input[name]) for name in fed}
+    reach = _reach(behaviour, {name: algebra.support(*sets[name]) for name in fed})
     every = (*behaviour.output_names, *(i.name for i in inner))
     functions: list[Sets] = []
     for name in every:
@@ -203,13 +203,43 @@ def netlist(
         ),
         function=Function.of_outputs(n, functions),
     )
-    nets = _nets(behaviour, laid, fed)
+    nets = _nets(design, laid, fed)
     readers = frozenset(
         net.index
         for net in nets
         if restriction is not None and any(s in reach[net.name] for s, _ in restriction.senses)
     )
-    return Netlist(behaviour, laid, nets, tuple(fed), restriction, readers)
+    return Netlist(design, laid, nets, tuple(fed), restriction, readers)
+
+
+def _deaf(behaviour: Behaviour) -> Behaviour:
+    """The design with every output free of what is read at its own pin.
+
+    No value that is asked for depends on that. Where something is left open, a term with a literal
+    of the own pin would do as well, and the output would hold itself.
+    """
+    if all(output.reads is None for output in behaviour.outputs):
+        return behaviour
+    n = len(behaviour.inputs)
+    functions, outputs = [], []
+    for j, output in enumerate(behaviour.outputs):
+        on, off = (cover.of_output(j) for cover in (behaviour.function.on, behaviour.function.off))
+        if output.reads is not None:
+            bit = 1 << behaviour.input_names.index(output.reads)
+            on, off = _without(on, bit), _without(off, bit)
+            if output.enable is not None:
+                enable = output.enable
+                free = replace(enable, on=_without(enable.on, bit), off=_without(enable.off, bit))
+                output = replace(output, enable=free)  # noqa: PLW2901
+        functions.append((on, off))
+        outputs.append(output)
+    return replace(behaviour, outputs=tuple(outputs), function=Function.of_outputs(n, functions))
+
+
+def _without(cover: Cover, bit: int) -> Cover:
+    """The same without literals of an input."""
+    kept = np.uint64(~bit & (2**64 - 1))
+    return Cover(cover.n_inputs, cover.ones & kept, cover.zeros & kept, cover.outputs).absorbed()
 
 
 def _nets(design: Behaviour, laid: Behaviour, fed: Sequence[str]) -> tuple[Net, ...]:
@@ -248,8 +278,15 @@ def _sets(behaviour: Behaviour, name: str) -> Sets:
     return function.on.of_output(index), function.off.of_output(index)
 
 
-def _reach(behaviour: Behaviour) -> dict[str, frozenset[str]]:
-    """For each output and inner signal what it names, directly or through what it names."""
+def _reach(behaviour: Behaviour, support: Mapping[str, int]) -> dict[str, frozenset[str]]:
+    """For each output and inner signal the fed-back signals that it may be a function of.
+
+    Those that it names, directly or through what it names; not those that depend on its own pin.
+
+    Args:
+        behaviour: The design.
+        support: For each fed-back signal the inputs that it depends on, as a mask.
+    """
     found: dict[str, frozenset[str]] = {}
 
     def visit(name: str) -> frozenset[str]:
@@ -258,9 +295,15 @@ def _reach(behaviour: Behaviour) -> dict[str, frozenset[str]]:
             found[name] = frozenset(direct).union(*(visit(other) for other in direct))
         return found[name]
 
-    for name in (*behaviour.output_names, *(i.name for i in behaviour.inner)):
-        visit(name)
-    return found
+    own = {
+        output.name: 1 << behaviour.input_names.index(output.reads)
+        for output in behaviour.outputs
+        if output.reads is not None
+    }
+    return {
+        name: frozenset(s for s in visit(name) if not support.get(s, 0) & own.get(name, 0))
+        for name in (*behaviour.output_names, *(i.name for i in behaviour.inner))
+    }
 
 
 def _consistent(sets: Sets, n: int, variable: int) -> Cover:
