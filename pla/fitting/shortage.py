@@ -6,8 +6,8 @@ from dataclasses import dataclass, replace
 from functools import cached_property
 from typing import TYPE_CHECKING
 
+from pla.fitting.crowding import choices_of, crowd_of, joined_choices, listed
 from pla.fitting.layout import joint_minimum, literals_of
-from pla.fitting.matching import deficient
 from pla.fitting.minima import joined_minimum
 from pla.fitting.spots import Spots
 from pla.logic.phases import Polarity
@@ -15,15 +15,13 @@ from pla.logic.phases import Polarity
 if TYPE_CHECKING:
     from collections.abc import Iterator, Sequence
 
+    from pla.fitting.crowding import Choices, Crowd
     from pla.fitting.netlist import Net
     from pla.fitting.problem import Problem
     from pla.fitting.scenario import Scenario
-    from pla.fitting.spots import Resource
     from pla.logic.minimize import Minimum
 
 __all__ = ["Shortage"]
-
-_LISTED = 12
 
 
 @dataclass(frozen=True)
@@ -45,6 +43,10 @@ class Shortage:
         found += [*self._too_many_inputs(), *self._too_many_outputs()]
         if not found:
             found += self._crowded()
+        if not found and self._left_over is not None:
+            found.append(self._left_over[1])
+        if not found:
+            found += self._crowded_somehow()
         return tuple(found) or ("no way was found to put all signals in their places",)
 
     @cached_property
@@ -65,7 +67,7 @@ class Shortage:
         shared = self._sharing
         parts = []
         if shared:
-            candidates = [joint_minimum(Spots(problem, s, g)) for s, g in self.ways if g == shared]
+            candidates = [joint_minimum(self._spots(s, g)) for s, g in self.ways if g == shared]
             known = [c for c in candidates if c is not None]
             if known:
                 parts.append(min(known, key=lambda m: m.count))
@@ -88,7 +90,10 @@ class Shortage:
         if self.minimum is None:
             return 0
         over = sum(short for _, short, _ in self._short_sums())
-        return over + max(0, self._joint_count() - len(self.problem.device.shared_rows))
+        over += max(0, self._joint_count() - len(self.problem.device.shared_rows))
+        if not over and self._left_over is not None:
+            return self._left_over[0]
+        return over
 
     @cached_property
     def needed_inputs(self) -> tuple[int, ...]:
@@ -103,10 +108,39 @@ class Shortage:
         return tuple(i for i in own if needs[i] or i in problem.placed_inputs or i in switching)
 
     @cached_property
+    def _left_over(self) -> tuple[int, str] | None:
+        """What cells of their own leave to shared OR gates, where that is too much: how much."""
+        nets, has = self.problem.netlist.nets, len(self.problem.device.shared_rows)
+        best: tuple[int, str] | None = None
+        for scenario, shared in self.ways:
+            spots = self._spots(scenario, shared)
+            joint = joint_minimum(spots) if shared else None
+            if joint is None or joint.count <= has:
+                continue
+            own = [net.name for net in nets if net.index not in shared]
+            on_own = f" with {listed(own)} on cells with terms of their own" if own else ""
+            words = (
+                f"{listed([nets[j].name for j in sorted(shared)])} "
+                f"{'need' if len(shared) > 1 else 'needs'} {joint.count} shared "
+                f"product terms{on_own}, the device has {has}: {joint.count - has} too many"
+            )
+            if best is None or joint.count - has < best[0]:
+                best = joint.count - has, words
+        return best
+
+    def _spots(self, scenario: Scenario, shared: frozenset[int]) -> Spots:
+        return Spots(self.problem, scenario, shared)
+
+    @cached_property
     def _sharing(self) -> frozenset[int]:
         """Nets that the shared OR array has to hold: all it can, where there is no other."""
         groups = [shared for _, shared in self.ways]
         return groups[0] if len(set(groups)) == 1 else frozenset.intersection(*groups)
+
+    @property
+    def _all_shared(self) -> bool:
+        device = self.problem.device
+        return len(device.or_column) == len(device.cells)
 
     @property
     def _overcrowded(self) -> bool:
@@ -117,7 +151,7 @@ class Shortage:
         return [
             c
             for c in self.problem.polarities(net)
-            if any(Spots(self.problem, s, g).of_net(net, c, {}, room=False) for s, g in self.ways)
+            if any(self._spots(s, g).of_net(net, c, {}, room=False) for s, g in self.ways)
         ]
 
     def _joint_count(self) -> int:
@@ -221,7 +255,8 @@ class Shortage:
             claim = f"every set has at least {minimum.lower_bound}, the best found has"
         else:
             claim = f"the best set found (at least {minimum.lower_bound} are needed) has"
-        yield f"{claim} {used} product terms, the device {has}: {used - has} too many"
+        shared = "" if self._all_shared else "shared "
+        yield f"{claim} {used} {shared}product terms, the device {has}: {used - has} too many"
 
     def _short_sums(self) -> Iterator[tuple[Net, int, str]]:
         """Nets whose smallest sum is too large for every cell: by how much, and in words."""
@@ -232,12 +267,7 @@ class Shortage:
             best: tuple[int, str] | None = None
             sizes = []
             for c in self._offered(net):
-                has = max(
-                    len(spot.mode.terms) - problem.reserve
-                    for s, g in self.ways
-                    if net.index not in g
-                    for spot in Spots(problem, s, g).of_net(net, c, {}, room=False).values()
-                )
+                has = max(self._rooms(net, c))
                 found = problem.alone(net, c)
                 bound = "" if found.proven else f" (at least {found.lower_bound})"
                 sizes.append(
@@ -250,6 +280,14 @@ class Shortage:
                 words = f"{' or '.join(sizes)}, and the largest cell it could have holds {best[1]}"
                 yield net, best[0], words
 
+    def _rooms(self, net: Net, complemented: bool) -> Iterator[int]:
+        """Terms that cells could give a net in a polarity."""
+        for scenario, shared in self.ways:
+            found = self._spots(scenario, shared).of_net(net, complemented, {}, room=False)
+            for spot in found.values():
+                own = len(spot.mode.terms) - self.problem.reserve
+                yield len(self.problem.device.shared_rows) if net.index in shared else own
+
     def _own_terms(self) -> Iterator[str]:
         if self.minimum is None:
             return
@@ -257,73 +295,45 @@ class Shortage:
             kept = f", {self.problem.reserve} kept spare" if self.problem.reserve else ""
             yield f"{net.name} needs {words}{kept}: {short} too many"
 
-    def _crowded(self) -> list[str]:
-        """Signals that have too few pins or cells between them."""
-        problem = self.problem
-        best: tuple[int, list[str]] | None = None
+    def _crowded(self) -> Iterator[str]:
+        """Signals that have too few pins between them, whatever is decided beforehand."""
+        crowd = crowd_of(joined_choices(self._choices(s, g) for s, g in self.ways))
+        if crowd is not None:
+            yield self._sentence(crowd)
+        elif self.minimum is None:
+            yield "the cells cannot give all outputs a polarity that they may have together"
+
+    def _crowded_somehow(self) -> Iterator[str]:
+        """The same for the way that leaves the fewest of them."""
+        found: list[tuple[Crowd, frozenset[int]]] = []
         for scenario, shared in self.ways:
-            found = self._crowd(Spots(problem, scenario, shared))
-            if found is not None and (best is None or found[0] < best[0]):
-                best = found
-        return best[1] if best else []
+            crowd = crowd_of(self._choices(scenario, shared))
+            if crowd is not None:
+                found.append((crowd, shared))
+        if not found:
+            return
+        crowd, shared = min(found, key=lambda pair: len(pair[0].signals))
+        nets = self.problem.netlist.nets
+        names = listed([nets[j].name for j in sorted(shared)]) if shared else "no output"
+        several = len({g for _, g in self.ways}) > 1
+        where = f"with {names} on shared OR gates, " if several else ""
+        yield where + self._sentence(crowd)
 
-    def _crowd(self, spots: Spots) -> tuple[int, list[str]] | None:
-        problem = self.problem
-        needs = literals_of(problem, [self.minimum.cover]) if self.minimum is not None else {}
-        names: list[str] = []
-        choices: list[list[Resource]] = []
-        for net in problem.netlist.nets:
-            resources: dict[Resource, None] = {}
-            for c in problem.polarities(net):
-                resources.update(dict.fromkeys(spots.of_net(net, c, {})))
-            names.append(net.name)
-            choices.append(list(resources))
-        for i in self.needed_inputs:
-            if i in spots.inputs:
-                names.append(problem.netlist.design.inputs[i].name)
-                choices.append(list(spots.of_input(i, needs.get(i, frozenset()))))
-        found = deficient(choices)
-        if found is None:
-            if self.minimum is None:
-                return 0, [
-                    "the cells cannot give all outputs a polarity that they may have together"
-                ]
-            return None
-        members, resources_of = found
-        lone = [m for m in members if m >= len(problem.netlist.nets)]
-        if lone and not resources_of:
-            return len(members), [
-                "the input pins lack a true or complement line that the terms need"
-            ]
-        signals = [names[m] for m in sorted(members)]
-        where = [
-            f"pin {r}" if isinstance(r, int) else f"cell {r[1] if isinstance(r, tuple) else r}"
-            for r in sorted(resources_of, key=spots.ranks.__getitem__)
-        ]
-        narrowed = problem.wish == "true" and any(
-            spots.of_net(problem.netlist.nets[m], True, {}) for m in members - set(lone)
+    def _choices(self, scenario: Scenario, shared: frozenset[int]) -> Choices:
+        needs = literals_of(self.problem, [self.minimum.cover]) if self.minimum is not None else {}
+        return choices_of(self._spots(scenario, shared), self.needed_inputs, needs)
+
+    def _sentence(self, crowd: Crowd) -> str:
+        nets = {net.name: net for net in self.problem.netlist.nets}
+        outputs = [nets[name] for name in crowd.signals if name in nets]
+        if not crowd.pins and not outputs:
+            which = listed(crowd.signals)
+            return f"{which} has no pin with the true and complement lines that its terms need"
+        narrowed = self.problem.wish == "true" and any(
+            self._spots(s, g).of_net(net, True, {}) for net in outputs for s, g in self.ways
         )
-        return len(members), [_too_few(signals, where, narrowed=narrowed)]
-
-
-def _too_few(signals: Sequence[str], where: Sequence[str], *, narrowed: bool) -> str:
-    named = _listed(signals)
-    if not where:
-        return f"no cell or pin is left that {named} could have"
-    verb = "has" if len(signals) == 1 else "have"
-    return (
-        f"{named} {verb} only {_listed(where)} to be on"
-        f"{' with --polarity true' if narrowed else ''}: {len(signals)} signals, "
-        f"{len(where)} place{'s' if len(where) != 1 else ''}"
-    )
-
-
-def _listed(words: Sequence[str]) -> str:
-    shown = list(words[:_LISTED])
-    if len(words) > _LISTED:
-        shown.append(f"{len(words) - _LISTED} more")
-    return shown[0] if len(shown) == 1 else f"{', '.join(shown[:-1])} and {shown[-1]}"
+        return crowd.sentence(" with --polarity true" if narrowed else "")
 
 
 def _pins(pins: Sequence[int]) -> str:
-    return f"pin {pins[0]}" if len(pins) == 1 else f"pins {_listed([str(p) for p in pins])}"
+    return f"pin {pins[0]}" if len(pins) == 1 else f"pins {listed([str(p) for p in pins])}"

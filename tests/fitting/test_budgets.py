@@ -7,7 +7,7 @@ import pytest
 from mixed_device import MIXED
 
 from pla.behaviour.reader import read_behaviour
-from pla.device.catalogue import catalogue, find_device
+from pla.device.catalogue import find_device
 from pla.fitting import minima
 from pla.fitting.budgets import DeviceBudget, budgets, fits_on
 from pla.fitting.fit import fit
