@@ -166,7 +166,7 @@ def test_sums_are_the_smallest_in_either_polarity(tmp_path, inputs):
 
 
 def fewest_released(table, low, gates, shared, places):
-    """All smallest sets of places without which there is a way; ``None`` if there never is."""
+    """The smallest sets of places without which there is a way; ``None`` if there never is."""
     for size in range(len(places) + 1):
         found = [
             set(chosen)
@@ -214,10 +214,10 @@ def test_fewest_places_to_release_against_brute_force(tmp_path, sharing):
             refused += 1
             several += len(smallest[0]) > 1
             assert not found.fits
-            assert released in smallest
+            assert released == smallest[0]  # of equal numbers the first in the file
     assert refused > 8
     assert several
-    assert never > 5
+    assert never
 
 
 def test_signals_that_have_too_few_cells_between_them_are_named(tmp_path):
