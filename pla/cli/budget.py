@@ -27,8 +27,8 @@ __all__ = ["command"]
     default=0,
     show_default=True,
     metavar="N",
-    help="Product terms that must stay spare; a device with fewer to spare does not count as "
-    "holding the design.",
+    help="Product terms that must stay spare: of a shared OR array in all, of OR gates with terms "
+    "of their own in each. A device with fewer to spare does not count as holding the design.",
 )
 @polarity_option
 @json_option
@@ -38,7 +38,8 @@ def command(design: str, folder: str | None, reserve: int, polarity: str, as_jso
     Devices that hold the design come first: fewest pins, then fewest fuses, then by name. Then
     those that do not, by how many product terms (the reserve included), input pins and output
     cells are missing together, of equals the smallest; last those that leave an output no polarity,
-    so that the number of product terms is not known. Exit code 1 if no device holds the design.
+    so that the number of product terms is not known. Modes and variants of one part stand together,
+    the best of them first. Exit code 1 if no device holds the design.
 
     \b
       fuseplan budget design.toml

@@ -67,6 +67,7 @@ def _device(budget: DeviceBudget, catalogue: Collection[str]) -> dict[str, Any]:
         "pins": device.pins,
         "fuses": device.fuses,
         "family": device.family or device.name,
+        "warnings": [doubt.as_json() for doubt in budget.fit.warnings],
         **_outputs(budget.fit.plan),
     }
 

@@ -180,6 +180,13 @@ def _remarks(
     if any(used < len(own_pin_inputs(behaviour)) for used in needed):
         yield "Inputs that no term needs are not counted."
     yield from _families(found)
+    silent = [
+        budget.device.name
+        for budget in found
+        if budget.fits and any(doubt.code == "SIGNATURE-NONE" for doubt in budget.fit.warnings)
+    ]
+    if silent:
+        yield f"No signature fuses, so that the design's text is left out: {listed(silent)}."
     own = [b.device for b in found if b.device.name not in catalogue]
     if own:
         files = listed([f"{device.name} in {device.location.file}" for device in own])

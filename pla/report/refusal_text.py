@@ -5,6 +5,7 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from pla.fitting.prices import alone_counts, counts_without
+from pla.logic.phases import Polarity
 from pla.report.budget import budget_table
 from pla.report.notation import listed, plural
 from pla.report.sharing import shares
@@ -13,8 +14,9 @@ from pla.report.text import filled, table_text
 from pla.report.verdict import sentence, title
 
 if TYPE_CHECKING:
-    from collections.abc import Sequence
+    from collections.abc import Mapping, Sequence
 
+    from pla.device.model import Cell
     from pla.fitting.model import Fit, Usage
     from pla.fitting.prices import Count
     from pla.logic.minimize import Minimum
@@ -31,7 +33,7 @@ def refusal_text(fit: Fit, holders: Sequence[Fit]) -> str:
     """
     tables = [budget_table(fit)]
     own = fit.device.or_array is None
-    if fit.minimum is not None and own:
+    if fit.minimum is not None and own and (fit.lacking or not fit.outputs.over):
         tables.append(_gates(fit))
     elif fit.minimum is not None and len(fit.behaviour.outputs) > 1:
         if fit.terms.over:
@@ -56,35 +58,58 @@ def _released(fit: Fit) -> str:
 
 
 def _gates(fit: Fit) -> Table:
-    """Terms that each output needs alone, and those that the cells' OR gates have."""
-    polarities = [p for p in fit.polarities if p is not None]
-    needs = alone_counts(fit.behaviour.function, polarities)
+    """Terms that each output needs alone, and the cells whose OR gates have as many."""
+    function = fit.behaviour.function
+    senses = {c: alone_counts(function, [Polarity(not c, c)] * function.n_outputs) for c in _SENSES}
     placed = {place.signal: place.pin for place in fit.behaviour.places.get(fit.device.name, ())}
-    capacity = {pin: cell.capacity for pin, cell in sorted(fit.device.cell_of_pin.items())}
+    cells = sorted(fit.device.cell_of_pin.items())
     rows = []
-    for name, need in zip(fit.behaviour.output_names, needs, strict=True):
+    for j, output in enumerate(fit.behaviour.outputs):
+        needs = {c: senses[c][j] for c in _SENSES}
+        pin = placed.get(output.name)
         holding = [
-            str(pin)
-            for pin, has in capacity.items()
-            if has >= need.terms and placed.get(name, pin) == pin
+            str(number)
+            for number, cell in cells
+            if pin in {None, number} and _holds(cell, output.active_low, needs)
         ]
-        fewest = f"{'' if need.proven else 'at most '}{need.terms}"
-        pin = f"pin {placed[name]}" if name in placed else "any"
-        rows.append((name, fewest, pin, " ".join(holding) or "none"))
+        rows.append(
+            (
+                output.name,
+                *(f"{'' if need.proven else 'at most '}{need.terms}" for need in needs.values()),
+                "any" if pin is None else f"pin {pin}",
+                " ".join(holding) or "none",
+            )
+        )
     capacities: dict[int, list[str]] = {}
-    for each, has in capacity.items():
-        capacities.setdefault(has, []).append(str(each))
+    for number, cell in cells:
+        capacities.setdefault(cell.capacity, []).append(str(number))
     have = "; ".join(
         f"{plural(count, 'term')} on {'pin' if len(pins) == 1 else 'pins'} {', '.join(pins)}"
         for count, pins in sorted(capacities.items(), reverse=True)
     )
     return Table(
         "Terms that each output needs, and the cells that have as many",
-        ("output", "fewest terms", "placed on", "cells with enough, on pins"),
+        ("output", "terms", "complemented", "placed on", "cells with enough, on pins"),
         tuple(rows),
-        aligned="lrll",
-        wrapped=(0, 3),
-        remarks=(f"The OR gates of the cells have: {have}.",),
+        aligned="lrrll",
+        wrapped=(0, 4),
+        remarks=(
+            (
+                f"The OR gates of the cells have: {have}. Complemented: the terms of the "
+                "complement, for cells that can show it with the right level."
+            ),
+        ),
+    )
+
+
+_SENSES = (False, True)
+
+
+def _holds(cell: Cell, active_low: bool, needs: Mapping[bool, Count]) -> bool:
+    """Whether a cell has a mode with terms enough in the polarity that it shows."""
+    return any(
+        mode.pin != "none" and len(mode.terms) >= needs[(mode.pin == "sum'") != active_low].terms
+        for mode in cell.modes
     )
 
 
