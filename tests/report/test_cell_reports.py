@@ -275,22 +275,14 @@ def test_refusal_names_the_place_and_the_cells(planned):
 
 
 def test_refusal_counts_the_terms_of_the_polarity_that_a_cell_shows(planned):
-    """Four terms, or four of the complement's five products: only pins 9 and 11 have so many.
-
-    Without a choice of polarity the cells on 9 and 11 show the sum of an active-high output, so
-    that the complement with its single term helps on no cell.
-    """
-    design = (
-        PARITY.format(pin=10)
-        .replace("a ⊕ b ⊕ c", "a' + b' + c' + d'")
-        .replace("c = 1", "c = 1\nd = 1")
-    )
-    one = ('modes = [ { set = "1", pin = "sum\'" }, { set = "0", pin = "sum" } ]',)
-    outcome = planned(design, (*one, 'modes = [ { set = "0", pin = "sum" } ]'))
+    """Four terms, or one of the complement, which only a cell with a choice can show."""
+    design = PARITY.format(pin=10).replace("c = 1", "c = 1\nd = 1")
+    design = design.replace("a ⊕ b ⊕ c", "a' + b' + c' + d'")
+    choice = 'modes = [ { set = "1", pin = "sum\'" }, { set = "0", pin = "sum" } ]'
+    outcome = planned(design, (choice, 'modes = [ { set = "0", pin = "sum" } ]'))
     text = refusal_text(outcome, ())
     assert re.search(r"^odd +4 +1  pin 10 +none$", text, re.MULTILINE)
-    free = planned(design)
-    assert free.fits
+    assert planned(design).fits
 
 
 # --- the commands ---
