@@ -215,7 +215,7 @@ def test_fewest_places_to_release_against_brute_force(tmp_path, sharing):
             several += len(smallest[0]) > 1
             assert not found.fits
             assert released == smallest[0]  # of equal numbers the first in the file
-    assert refused > 8
+    assert refused > 5
     assert several
     assert never
 
