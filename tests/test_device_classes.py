@@ -10,7 +10,7 @@ from pla.device.catalogue import find_device
 
 
 @pytest.mark.parametrize("which", CLASSES)
-@pytest.mark.parametrize("seed", range(60))
+@pytest.mark.parametrize("seed", range(25))
 def test_every_fuse_has_one_use_and_every_pin_one_role(which, seed, tmp_path):
     made = random_class_device(random.Random(f"{which} {seed}"), which)
     main = made.write(tmp_path)

@@ -107,7 +107,13 @@ class BusDesign:
 def random_bus_design(rng: random.Random, shape: Shape) -> BusDesign:
     """A design of this shape; whether it uses all that the shape permits is left to chance."""
     made = BusDesign(
-        _signals(rng, shape.inputs, INPUT_NAMES, ["step", "zone"], outputs=False),
+        _signals(
+            rng,
+            shape.inputs,
+            [*INPUT_NAMES, "gate", "flow", "lid"],
+            ["step", "zone"],
+            outputs=False,
+        ),
         _signals(rng, shape.outputs, OUTPUT_NAMES, ["code"], outputs=True),
     )
     return _Writer(rng, shape, made).write()

@@ -6,13 +6,14 @@ of the program only the written file and the pins of ``--json`` are used.
 
 import random
 import re
+from dataclasses import dataclass
 
 import pytest
 from calls import call_json
 from device_classes import CLASSES, random_class_device
 from oracles.device_description import Description, read_device_file
-from oracles.fuse_file import read_transmission
-from oracles.pin_simulation import Level, signature_text, simulate
+from oracles.fuse_file import UnreadableError, read_transmission
+from oracles.pin_simulation import Level, LoopError, signature_text, simulate
 from random_bus_designs import BusDesign, Shape, random_bus_design
 from random_designs import FREE
 
@@ -69,8 +70,17 @@ def random_case(which, seed, folder):
     return path, device, design
 
 
-def planned(which, seed, folder, capsys):
-    """Whether it fitted; if so, that it does what was asked."""
+@dataclass
+class Planned:
+    device: Description
+    design: BusDesign
+    pins: dict[str, int]
+    states: list[int]
+    remarks: dict[int, str]
+
+
+def planned(which, seed, folder, capsys) -> Planned | None:
+    """A plan that does what was asked; ``None`` where the design did not fit."""
     path, device, design = random_case(which, seed, folder)
     out = folder / "out"
     code, document = call_json(capsys, "plan", folder / "design.toml", "--device", path, "-o", out)
@@ -79,19 +89,21 @@ def planned(which, seed, folder, capsys):
         assert document["fits"] is False
         assert document["reasons"]
         assert not list(folder.rglob("*.jed"))
-        return False
+        return None
     states = read_transmission((out / "design.jed").read_bytes()).states
-    check_pins(device, design, document["pins"])
     remarks = idle_remarks((out / "report.md").read_text(encoding="utf-8"))
-    assert set(range(1, device.pins + 1)) == {*remarks, *document["pins"].values()}
-    check_levels(device, design, document["pins"], states, remarks)
+    plan = Planned(device, design, document["pins"], states, remarks)
+    check_pins(plan)
+    check_levels(plan, states)
     if design.signature:
         assert signature_text(device, states) == design.signature
-    return True
+    return plan
 
 
-def check_pins(device, design, pins):
+def check_pins(plan):
     """Every signal has a pin of its own that can serve it; what is read is where it is driven."""
+    device, design, pins = plan.device, plan.design, plan.pins
+    assert set(range(1, device.pins + 1)) == {*plan.remarks, *pins.values()}
     for output, name in design.reads.items():
         assert pins.get(name, pins[output]) == pins[output]
     own = {name: pin for name, pin in pins.items() if name not in design.read_names}
@@ -102,8 +114,9 @@ def check_pins(device, design, pins):
         assert pin in device.cell_pins or name in design.input_names
 
 
-def check_levels(device, design, pins, states, remarks):
+def check_levels(plan, states):
     """Two runs of all points: pins that may be tied either way are low, and at anything."""
+    device, design, pins, remarks = plan.device, plan.design, plan.pins, plan.remarks
     points, low = design.points, design.active_low
     cases, everywhere = 2 * points, (1 << 2 * points) - 1
     rng = random.Random(1)
@@ -189,8 +202,42 @@ def idle_remarks(report: str) -> dict[int, str]:
 
 @pytest.mark.parametrize("which", CLASSES)
 def test_random_designs_on_each_class(which, tmp_path, capsys):
-    fitted = [planned(which, seed, made_folder(tmp_path, seed), capsys) for seed in range(IN_SUITE)]
-    assert sum(fitted) >= IN_SUITE / 2
+    plans = [planned(which, seed, made_folder(tmp_path, seed), capsys) for seed in range(IN_SUITE)]
+    assert sum(plan is not None for plan in plans) >= IN_SUITE / 2
+
+
+@pytest.mark.parametrize("which", CLASSES)
+def test_flipped_links_show(which, tmp_path, capsys):
+    """The checks above have teeth: many links of used cells and rows matter to some pin."""
+    plan = next(
+        filter(None, (planned(which, s, made_folder(tmp_path, s), capsys) for s in range(9)))
+    )
+    device, states = plan.device, plan.states
+    used = [cell for cell in device.cells.values() if cell.pin in plan.pins.values()]
+    rows = {row for cell in used for row in cell.rows}
+    for cell in used:
+        by_row = device.sums.get(cell.key, {})
+        rows |= {row for row, fuse in by_row.items() if states[fuse] == device.connected}
+    links = []
+    for row in sorted(rows):
+        joined = [fuse for fuse in device.links[row] if states[fuse] == device.connected]
+        # In a row that is made dead many links are joined, and one more or less means nothing.
+        links += joined if len(joined) < len(device.input_pins) else []
+    rng = random.Random(which)
+    chosen = [fuse for cell in used for fuse in cell.links]
+    chosen += rng.sample(links, min(12, len(links)))
+    chosen += [fuse for row, fuse in device.drop.items() if row in rows][:6]
+    assert sum(differs(plan, fuse) for fuse in chosen) >= len(chosen) / 4
+    assert all(differs(plan, fuse) for fuse in device.mode_fuses)
+
+
+def differs(plan, fuse):
+    states = [state ^ (number == fuse) for number, state in enumerate(plan.states)]
+    try:
+        check_levels(plan, states)
+    except (AssertionError, LoopError, UnreadableError):
+        return True
+    return False
 
 
 @pytest.mark.slow
@@ -198,7 +245,7 @@ def test_random_designs_on_each_class(which, tmp_path, capsys):
 def test_many_random_designs_on_each_class(which, tmp_path, capsys):
     fitted = 0
     for seed in range(1000, 1000 + 4 * IN_ALL):
-        fitted += planned(which, seed, made_folder(tmp_path, seed), capsys)
+        fitted += planned(which, seed, made_folder(tmp_path, seed), capsys) is not None
         if fitted == IN_ALL:
             break
     assert fitted == IN_ALL
