@@ -42,8 +42,8 @@ class Counterexample:
         text: In words.
         fault: ``value``: a wrong value. ``drive``: the pin is driven where it must not be, or not
             driven where it must be. ``undefined``: there is no value. ``contention``: a pin that
-            serves as an input is driven by the part. ``held``: values that hold themselves by way
-            of bidirectional pins. ``reads``: an input is not on the pin that it reads. ``mode``:
+            serves as an input is driven by the part. ``held``: it depends on itself by way of
+            bidirectional pins. ``reads``: an input is not on the pin that it reads. ``mode``:
             the fuses select another device-wide mode.
     """
 
@@ -212,32 +212,33 @@ class _Comparison(Generic[V]):
         Each pin read alone is free of them. So the true levels are looked at as well: where the
         part drives, the outside lets go.
         """
-        inputs = list(zip(self.plan.design.inputs, self.plan.inputs, strict=False))
-        both = [p for signal, p in inputs if signal.read_from is not None and p.pin is not None]
-        if not both:
-            return
+        inputs = zip(self.plan.design.inputs, self.plan.inputs, strict=False)
+        read = {p.pin: p.index for signal, p in inputs if signal.read_from is not None}
         made = evaluate(self.realised, self.road.logic, self._outside("yields"))
-        if not made.rings:
+        if not read or not made.rings:
             return
-        logic, function = self.road.logic, self.plan.design.function
         # Values of an input that its pin cannot have while the part drives it.
-        untrue = []
-        for placed in both:
-            level, given = made.levels[placed.pin or 0], self._level(placed.index)
-            untrue.append(logic.conjunction([level, logic.inverse(given)]))
-            untrue.append(logic.conjunction([logic.inverse(level), given]))
+        logic, untrue = self.road.logic, []
+        for pin, index in read.items():
+            if pin is not None:
+                level, given = made.levels[pin], self._level(index)
+                untrue.append(logic.conjunction([level, logic.inverse(given)]))
+                untrue.append(logic.conjunction([logic.inverse(level), given]))
         excepted = logic.disjunction(untrue)
-        for output in self.plan.outputs[: len(self.plan.design.outputs)]:
-            demanded = function.on.of_output(output.index) + function.off.of_output(output.index)
-            shown = made.shown[_pin(output)]
-            point = self.road.unsettled(demanded, shown, excepted)
-            if point is not None:
-                ring = nearest_ring(self.realised, made, output) or "bidirectional pins"
-                text = (
-                    f"{output.name} holds itself by way of {ring}: they drive each other at the "
-                    f"same time{self._at(point)}"
-                )
-                yield Counterexample(output.name, point, None, text, "held")
+        function = self.plan.design.function
+        for asked, output in zip(self.plan.design.outputs, self.plan.outputs, strict=False):
+            valued = function.on.of_output(output.index) + function.off.of_output(output.index)
+            switched = valued if asked.enable is None else asked.enable.on + asked.enable.off
+            pin = _pin(output)
+            for demanded, level in ((valued, made.shown[pin]), (switched, made.driven[pin])):
+                point = self.road.unsettled(demanded, level, excepted)
+                if point is not None:
+                    ring = nearest_ring(self.realised, made, output) or "bidirectional pins"
+                    text = (
+                        f"{output.name} depends on itself by way of {ring}, which drive each other "
+                        f"at the same time{self._at(point)}"
+                    )
+                    yield Counterexample(output.name, point, None, text, "held")
 
     @property
     def _design(self) -> str:

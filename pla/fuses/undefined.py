@@ -44,8 +44,11 @@ def why_undefined(
 
 
 def nearest_ring(realised: Realised, made: Evaluated[V], output: PlacedOutput) -> str | None:
-    """The cells of the ring nearest to the sum of an output, in words."""
-    for node in reached(made.needs, Line("sum", output.cell.key)):
+    """The cells of the ring nearest to an output or to its enable, in words."""
+    nodes = reached(made.needs, Line("sum", output.cell.key))
+    if output.pin is not None:
+        nodes = (*nodes, *reached(made.needs, Line("pin", output.pin)))
+    for node in nodes:
         for ring in made.rings:
             if node in ring:
                 keys = {_key(realised, line) for line in ring}

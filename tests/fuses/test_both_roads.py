@@ -104,12 +104,15 @@ class Case:
             level = made.levels.get(self.pins[name])
             if name in self.reads and level not in {None, (point >> bit & 1) ^ self.low[name]}:
                 return set()
-        cells = self.device.cell_of_pin
-        return {
-            name
-            for name, (on, off, _) in self.wanted.items()
-            if point in on | off and made.shown(cells[self.outputs[name]]) is None
-        }
+        found = set()
+        for name, (on, off, enable) in self.wanted.items():
+            cell = self.device.cell_of_pin[self.outputs[name]]
+            switched = on | off if enable is None else enable[0] | enable[1]
+            if (point in on | off and made.shown(cell) is None) or (
+                point in switched and made.driven(cell) is None
+            ):
+                found.add(name)
+        return found
 
     def check(self, found, fuses):
         """A counterexample is one."""
@@ -122,7 +125,7 @@ class Case:
         if found.fault == "value":
             assert made.shown(cell) ^ self.low[found.output] == 1 - found.expected
         elif found.fault == "held":
-            assert made.shown(cell) is None
+            assert None in {made.shown(cell), made.driven(cell)}
         elif found.fault == "contention":
             assert made.driven(cell) != 0
         else:

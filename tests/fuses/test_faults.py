@@ -235,9 +235,29 @@ def test_outputs_that_hold_each_other(device, proven):
     found = proven(passing(device, {1, 3}, {2, 3}), fuses)
     assert (found.fault, found.output, found.point & 3) == ("held", "up", 3)
     assert found.text.startswith(
-        "up holds itself by way of the cells on pins 7 and 8: they drive each other "
+        "up depends on itself by way of the cells on pins 7 and 8, which drive each other "
         "at the same time, at a=1 b=1"
     )
+
+
+def test_enables_that_hang_on_each_other(device, proven):
+    # Both show 1; up drives while down is 1, down while up is 0: with both low outside neither
+    # level can last.
+    points = set(range(16))
+    up, down = ({p for p in points if bool(p & bit) == level} for bit, level in ((8, 1), (4, 0)))
+    inputs = [*AB, ("up_in", False, "up"), ("down_in", False, "down")]
+    wanted = design(
+        inputs,
+        [
+            ("up", False, sorted(up), [], (up, points - up), "up_in"),
+            ("down", False, sorted(down), [], (down, points - down), "down_in"),
+        ],
+    )
+    pins = PINS | {"up": 7, "up_in": 7, "down": 8, "down_in": 8}
+    fuses = programmed(device, {0: "8", 1: "", 3: "7'", 4: ""}, cells="10000")
+    found = proven(plan(device, wanted, pins), fuses)
+    assert (found.fault, found.point & 12) == ("held", 0)
+    assert "by way of the cells on pins 7 and 8" in found.text
 
 
 def test_outputs_that_take_turns_do_not(device, proven):

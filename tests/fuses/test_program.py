@@ -73,7 +73,7 @@ def test_notes(device):
 
 def test_a_design_that_holds_itself_is_refused(device):
     made = passing_plan(device, {1, 3}, {2, 3}, ("1---", "-1--"))
-    with pytest.raises(RefusalError, match="up holds itself by way of") as caught:
+    with pytest.raises(RefusalError, match="up depends on itself by way of") as caught:
         fuse_file(made, "panel.jed")
     (found,) = caught.value.diagnostics
     assert found.code == "HOLDS-ITSELF"

@@ -130,5 +130,5 @@ def level(plan, fuses, found):
 
 def test_a_wide_design_that_holds_itself(tmp_path):
     plan = planned(tmp_path, passing("on dir", "on"))
-    with pytest.raises(RefusalError, match="a0 holds itself by way of the cells on pins"):
+    with pytest.raises(RefusalError, match="a0 depends on itself by way of the cells on pins"):
         fuse_file(plan, "design.jed")
