@@ -17,12 +17,14 @@ from pla.device.model import Timing
 from pla.fitting.budgets import budgets
 from pla.fitting.fit import fit
 from pla.fuses.program import fuse_file
+from pla.logic.phases import Polarity
 from pla.report.budget_json import budgets_document
 from pla.report.budget_text import budgets_text
 from pla.report.cautions import LABEL_WIDTH, label
 from pla.report.cells import cell_table, row_table
 from pla.report.delays import delay_table, output_delays
 from pla.report.folder import plan_files
+from pla.report.gates import group_prices
 from pla.report.pins import inner_table, pin_list, pin_summary
 from pla.report.plan_text import plan_text
 from pla.report.refusal_text import refusal_text
@@ -245,6 +247,61 @@ def test_label_lines_are_short(hopper):
     checksum = f"fuse checksum {proven.fuses.checksum:04X}"
     assert lines[-4:-1] == ("rev C", "gates-5x4", checksum)
     assert re.fullmatch(r"date _+", lines[-1])
+
+
+MIXED = """
+name = "Mixed"
+[inputs]
+a = 1
+b = 1
+c = 1
+[outputs]
+own = { impossible = 0 }
+one = { impossible = 0 }
+two = 1
+[never]
+when = ["b c"]
+[logic]
+own = "a b"
+one = "a b + c"
+two = "a b + a' c'"
+[place.joint-10x27x6]
+own = 12
+one = 14
+two = 15
+"""
+
+
+def test_own_and_shared_gates_in_one_device(tmp_path):
+    """Three sums need a b; one has terms of its own, so the product is programmed twice."""
+    path = tmp_path / "mixed.toml"
+    path.write_text(MIXED, "utf-8")
+    behaviour = read_behaviour(str(path))
+    outcome = fit(behaviour, find_device("joint-10x27x6"), "true")
+    proven = fuse_file(outcome.plan, "mixed.jed")
+    said = " ".join(plan_files(outcome, proven)["term-sharing.txt"].decode().split())
+    assert "The sum of own has terms of its own" in said
+    assert "Here 1 row repeats a product that another row has." in said
+    summary = " ".join(plan_text(outcome, proven, []).split())
+    assert "since some sums have an OR gate with terms of its own" in summary
+    assert "Terms of each output, and of its cell: own 1 of 5." in summary
+    prices = {p.price.output: p for p in group_prices(outcome.plan, [Polarity(True, False)] * 3)}
+    # Alone `own` has a b; `one` and `two` share a b beside c and a' c'.
+    assert (prices[0].terms, prices[0].alone) == (1, True)
+    assert (prices[1].terms, prices[1].alone) == (3, False)
+    table = row_table(ProgrammedRows.of(outcome.plan, proven.fuses))
+    assert [row[0] for row in table.rows] == ["pin 12, u", "pin 13, v"]
+
+
+def test_rows_that_are_cut_off(tmp_path):
+    path = tmp_path / "lamp.toml"
+    path.write_text(LAMP, "utf-8")
+    outcome = fit(read_behaviour(str(path)), find_device("modal-8x4-plain"))
+    table = row_table(programmed(outcome))
+    own = next(row for row in table.rows if row[1] == "lamp")
+    first, last = map(int, re.fullmatch(r"(\d+)\.\.(\d+) dropped", own[5]).groups())
+    assert last - first + 1 == 5
+    assert own[2:4] == ("1 of 6", "5")
 
 
 PARITY = """
