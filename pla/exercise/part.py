@@ -27,7 +27,7 @@ if TYPE_CHECKING:
 __all__ = ["Part", "Step", "make_part"]
 
 _TEXT = "EXERCISE"
-_ROWS_AT_ONCE = 2
+_ROWS_AT_ONCE = 3
 _LEAST_STEPS = 16
 _BASES = 2
 
@@ -66,41 +66,53 @@ class Part:
     contents: tuple[str, ...]
 
 
-def make_part(device: Device, number: int) -> Part:
-    """The part with this number; each has its cells set differently."""
+def make_part(device: Device, number: int, variant: int = 0) -> Part:
+    """The part with this number; each has its cells set differently.
+
+    Args:
+        device: A checked description.
+        number: Counts from 1.
+        variant: Other contents of the rows and other steps for the same settings.
+    """
     modes = _modes(device, number - 1)
-    return _Maker(device, modes, number).part()
+    return _Maker(device, modes, number, variant).part()
 
 
 def _modes(device: Device, turn: int) -> dict[Source, Mode]:
-    """A mode for every cell, so that cells of a kind differ and take turns.
+    """A mode for every cell, so that cells differ and take turns.
 
-    In the first turn modes that show nothing are kept to the last cells of a kind, so that as many
-    sums as possible can be seen.
+    Cells with equally many modes are numbered through. In the turns behind those in which every
+    cell has had every mode, cells that were set alike up to then are set differently. In the first
+    turn modes that show nothing are kept to the last cells of a kind, so that as many sums as
+    possible can be seen.
     """
-    kinds: dict[str, list[Cell]] = {}
-    for cell in device.cells:
-        kinds.setdefault(cell.kind, []).append(cell)
+    numbers: dict[int, int] = {}
     found: dict[Source, Mode] = {}
-    for cells in kinds.values():
-        count = len(cells[0].modes)
-        speaking = [
-            k for k, m in enumerate(cells[0].modes) if cells[0].pin is None or m.pin != "none"
-        ]
-        silent = [k for k in range(count) if k not in speaking]
-        for i, cell in enumerate(cells):
-            if turn == 0:
-                order = speaking or silent
-                chosen = order[i % len(order)]
-                from_end = len(cells) - 1 - i
-                if speaking and from_end < len(silent) and i >= len(speaking):
-                    chosen = silent[from_end]
-            elif turn < count:
-                chosen = (i + turn) % count
-            else:
-                chosen = (i + i // count ** (turn - count + 1)) % count
-            found[cell.key] = cell.modes[chosen]
-    return {cell.key: found[cell.key] for cell in device.cells}
+    for cell in device.cells:
+        count = len(cell.modes)
+        i = numbers.get(count, 0)
+        numbers[count] = i + 1
+        chosen = (i + turn) % count
+        if turn == 0:
+            chosen = _seen(device, cell, i)
+        elif turn >= count > 1:
+            chosen = (i + i // count ** (turn - count + 1)) % count
+        found[cell.key] = cell.modes[chosen]
+    return found
+
+
+def _seen(device: Device, cell: Cell, number: int) -> int:
+    """Which mode a cell has in the first turn."""
+    speaking = [k for k, m in enumerate(cell.modes) if cell.pin is None or m.pin != "none"]
+    silent = [k for k in range(len(cell.modes)) if k not in speaking]
+    if not speaking:
+        return silent[number % len(silent)]
+    alike = [other for other in device.cells if other.kind == cell.kind]
+    place = alike.index(cell)
+    from_end = len(alike) - 1 - place
+    if from_end < len(silent) and place >= len(speaking):
+        return silent[from_end]
+    return speaking[number % len(speaking)]
 
 
 @dataclass(frozen=True, slots=True)
@@ -132,10 +144,11 @@ class _Maker:
     device: Device
     modes: Mapping[Source, Mode]
     number: int
+    variant: int
 
     @cached_property
     def bits(self) -> Bits:
-        return Bits(self.number)
+        return Bits(self.number + (self.variant << 32))
 
     @cached_property
     def turns(self) -> dict[Line, int]:
@@ -268,7 +281,8 @@ class _Maker:
             for spare, at in zip(idle, everything, strict=False):
                 dealt[at].append(_Row(spare, frozenset(), f"{cell}, no use in this mode"))
         self._deal_shared(dealt)
-        return [self.bits.shuffled(own) for own in dealt]
+        # A row that is blocked comes last, so that any of the sums of the step can block it.
+        return [sorted(self.bits.shuffled(own), key=lambda row: row.blocked) for own in dealt]
 
     def _deal_shared(self, dealt: list[list[_Row]]) -> None:
         array = self.device.or_array
@@ -281,9 +295,8 @@ class _Maker:
             at = steps.pop()
             taken = _targets(dealt[at])
             free = [key for key in array.sums if key not in taken]
-            word = self.bits.wide(len(free))
-            sums = frozenset(key for k, key in enumerate(free) if word >> k & 1)
-            sums = sums or frozenset(free[:1])
+            sums = frozenset(key for key in free if self.bits.word() % _ROWS_AT_ONCE == 0)
+            sums = sums or frozenset(self.bits.shuffled(free)[:1])
             dropped = self._drops(number)
             dealt[at].append(_Row(number, sums, "shared term", dropped, self._blocks()))
 
@@ -292,7 +305,7 @@ class _Maker:
         return drop is not None and number in drop.terms and self.bits.word() % 5 == 0
 
     def _blocks(self) -> bool:
-        return self.bits.word() % 4 == 0
+        return self.bits.word() % 3 == 0
 
     def _levels(self, pattern: Mapping[int, bool]) -> dict[int, bool]:
         """What is set from outside, with some of the pins that the part lets go of."""

@@ -10,12 +10,17 @@ from pla.exercise.readings import differences, readings
 from pla.exercise.slips import slips
 
 if TYPE_CHECKING:
+    from collections.abc import Sequence
+
     from pla.device.model import Device
     from pla.exercise.part import Part
+    from pla.exercise.slips import Slip
 
 __all__ = ["Exercise", "Exercised", "exercise"]
 
 _IN_VAIN = 3
+_VARIANTS = 4
+_LARGE = 2_000
 
 
 @dataclass(frozen=True, slots=True)
@@ -63,9 +68,7 @@ def exercise(device: Device, most: int | None = None) -> Exercise:
     number = vain = 0
     while (left or not found) and vain < _IN_VAIN and (most is None or len(found) < most):
         number += 1
-        part = make_part(device, number)
-        expected = readings(device, part)
-        hidden = [s for s in left if not differences(expected, readings(s.device, part))]
+        part, expected, hidden = _best(device, number, left)
         if found and len(hidden) == len(left):
             vain += 1
             continue
@@ -73,3 +76,22 @@ def exercise(device: Device, most: int | None = None) -> Exercise:
         told, left = len(left) - len(hidden), hidden
         found.append(Exercised(part, expected, told, tuple(s.what for s in left)))
     return Exercise(device, len(every), tuple(found))
+
+
+def _best(
+    device: Device, number: int, left: Sequence[Slip]
+) -> tuple[Part, dict[int, str], list[Slip]]:
+    """The variant of a part at which most slips show; a large device has one only."""
+    links = device.terms * len(device.and_array.columns)
+    found: tuple[Part, dict[int, str], list[Slip]] | None = None
+    for variant in range(_VARIANTS if links < _LARGE else 1):
+        part = make_part(device, number, variant)
+        expected = readings(device, part)
+        hidden = [s for s in left if not differences(expected, readings(s.device, part))]
+        if found is None or len(hidden) < len(found[2]):
+            found = part, expected, hidden
+        if not hidden:
+            break
+    if found is None:  # pragma: no cover - there is one variant at least
+        raise AssertionError
+    return found

@@ -19,6 +19,7 @@ if TYPE_CHECKING:
 
 __all__ = ["Slip", "slips"]
 
+_NEAR = 4
 _FLIPPED = {"sum": "sum'", "sum'": "sum", "none": "none"}
 
 
@@ -60,8 +61,19 @@ def _within(device: Device) -> bool:
 
 
 def _columns(device: Device) -> Iterator[Slip]:
+    """What stands in some columns stands in others.
+
+    Columns that carry nothing in any mode are left out: what a row does that is joined to one is
+    not known.
+    """
     columns = device.and_array.columns
-    for a, b in pairwise(range(len(columns))):
+    by_mode: dict[int, list[Line | None]] = {column: [] for column in range(len(columns))}
+    for cell in device.cells:
+        for mode in cell.modes:
+            for column, line in mode.lines:
+                by_mode[column].append(line)
+    empty = {c for c, lines in by_mode.items() if lines and not any(lines)}
+    for a, b in pairwise(c for c in range(len(columns)) if c not in empty):
         if columns[a] != columns[b]:
             yield Slip(
                 f"columns {a} and {b} exchanged ({_named(columns[a])}, {_named(columns[b])})",
@@ -69,13 +81,17 @@ def _columns(device: Device) -> Iterator[Slip]:
             )
     pairs: dict[Source, dict[bool, int]] = {}
     for (source, complement), column in device.column_of.items():
-        pairs.setdefault(source, {})[complement] = column
+        if column not in empty:
+            pairs.setdefault(source, {})[complement] = column
     both = {source: own for source, own in pairs.items() if len(own) == 2}
     for source, own in both.items():
         moves = {own[False]: own[True], own[True]: own[False]}
         if abs(own[False] - own[True]) != 1:
             yield Slip(f"true and complement line of {source} exchanged", _exchanged(device, moves))
+    order = list(both)
     for one, other in combinations(both, 2):
+        if abs(order.index(one) - order.index(other)) > _NEAR:
+            continue
         moves = {}
         for complement in (False, True):
             moves[both[one][complement]] = both[other][complement]
@@ -297,14 +313,16 @@ def _changes(
             lambda _, own: _relined(own, lambda line: line.inverse),
         )
     carried = {line.kind for own in modes for _, line in own.lines if line is not None}
-    if "pin" in carried and mode.feedback is not None:
+    # A pin that is always driven carries the sum anyway.
+    differ = mode.pin == "none" or mode.enable.kind != "always"
+    if "pin" in carried and mode.feedback is not None and differ:
         yield (
             "the feedback carries the sum and not the pin",
             lambda cell, own: _relined(
                 own, lambda line: Line("sum", cell.key, line.complement != (own.pin == "sum'"))
             ),
         )
-    if "sum" in carried and all(cell.pin is not None for cell in cells):
+    if "sum" in carried and all(cell.pin is not None for cell in cells) and differ:
         yield (
             "the feedback carries the pin and not the sum",
             lambda cell, own: _relined(
