@@ -213,17 +213,18 @@ class _Comparison(Generic[V]):
         part drives, the outside lets go.
         """
         inputs = zip(self.plan.design.inputs, self.plan.inputs, strict=False)
-        read = {p.pin: p.index for signal, p in inputs if signal.read_from is not None}
+        read = {p.pin: p.index for s, p in inputs if s.read_from is not None and p.pin is not None}
+        if not read:
+            return
         made = evaluate(self.realised, self.road.logic, self._outside("yields"))
-        if not read or not made.rings:
+        if not made.rings:
             return
         # Values of an input that its pin cannot have while the part drives it.
         logic, untrue = self.road.logic, []
         for pin, index in read.items():
-            if pin is not None:
-                level, given = made.levels[pin], self._level(index)
-                untrue.append(logic.conjunction([level, logic.inverse(given)]))
-                untrue.append(logic.conjunction([logic.inverse(level), given]))
+            level, given = made.levels[pin], self._level(index)
+            untrue.append(logic.conjunction([level, logic.inverse(given)]))
+            untrue.append(logic.conjunction([logic.inverse(level), given]))
         excepted = logic.disjunction(untrue)
         function = self.plan.design.function
         for asked, output in zip(self.plan.design.outputs, self.plan.outputs, strict=False):
