@@ -168,11 +168,8 @@ def design_bit(design, name, case):
 
 
 def signal_level(design, name, cases):
-    return sum(
-        1 << case
-        for case in range(cases)
-        if design_bit(design, name, case) != design.active_low[name]
-    )
+    bit, low = design.bit_of(name), design.active_low[name]
+    return sum(1 << case for case in range(cases) if (case >> bit & 1) != low)
 
 
 def point_seen(design: BusDesign, pins: dict[str, int], found: dict[int, Level], case: int):
