@@ -22,6 +22,7 @@ from calls import (
 from oracles.array_oracle import read_transmission
 
 from pla.logic.effort import Effort
+from pla.logic.minimize import minimize
 
 DEVICES = Path(__file__).parents[2] / "devices"
 
@@ -213,7 +214,11 @@ def test_design_that_does_not_fit_leaves_an_old_folder_alone(tmp_path, out, caps
 
 def test_require_proof(tmp_path, capsys, monkeypatch):
     design = hard_design(tmp_path / "hard.toml", 7, 3)
-    monkeypatch.setattr("pla.logic.minimize.Effort", lambda: Effort(work=0, nodes=0))
+
+    def idle(*arguments, **keywords):
+        return minimize(*arguments, **keywords | {"effort": Effort(work=0, nodes=0)})
+
+    monkeypatch.setattr("pla.fitting.minima.minimize", idle)
     demanded = plan(design, "shared-20x96x12", tmp_path / "a", "--require-proof")
     code, found = call_json(capsys, *demanded)
     assert code == 1
@@ -279,7 +284,7 @@ def test_an_existing_folder_is_refused_before_any_work(out, capsys, monkeypatch)
     def busy(*_arguments, **_keywords):
         raise AssertionError("minimized for nothing")
 
-    monkeypatch.setattr("pla.fitting.fit.minimize", busy)
+    monkeypatch.setattr("pla.fitting.minima.minimize", busy)
     out.mkdir()
     code, found = call_json(capsys, *plan(CISTERN, "shared-8x16x4", out))
     assert (code, [e["code"] for e in found["errors"]]) == (2, ["FOLDER-EXISTS"])
