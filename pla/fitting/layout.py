@@ -16,6 +16,7 @@ if TYPE_CHECKING:
     from collections.abc import Hashable, Iterable, Mapping, Sequence
 
     from pla.device.model import Mode, Source
+    from pla.fitting.netlist import Net
     from pla.fitting.offers import Needs
     from pla.fitting.problem import Problem
     from pla.fitting.scenario import Scenario
@@ -66,9 +67,9 @@ class _Assigned:
 def layout(problem: Problem, scenario: Scenario, shared: frozenset[int]) -> Layout | None:
     """The cheapest layout with these nets on the shared OR array; ``None`` if there is none.
 
-    Cheapest is, one behind the other: fewest terms, fewest inputs without a pin, fewest inputs on
-    pins of cells and inner signals that show, lowest pins in order of the outputs and then of the
-    inputs.
+    Cheapest is, one behind the other: fewest terms, fewest connections, fewest inputs without a
+    pin, fewest inputs on pins of cells and inner signals that show, lowest pins in order of the
+    outputs and then of the inputs.
     """
     spots = Spots(problem, scenario, shared)
     nets = problem.netlist.nets
@@ -226,6 +227,13 @@ def _assigned(
     return _in_order(spots, polarities, needs, sorted(spots.inputs, key=lambda i: not needs[i]))
 
 
+def _most_links(spots: Spots, net: Net, polarities: Sequence[bool]) -> int:
+    """Connections of a sum of its own, in the polarity that takes more."""
+    if net.index in spots.shared:
+        return 0
+    return max(spots.problem.alone(net, c).cover.links for c in polarities)
+
+
 def _in_order(
     spots: Spots,
     polarities: Mapping[int, Sequence[bool]],
@@ -240,7 +248,8 @@ def _in_order(
     base = len(spots.ranks) + len(inputs) + 1
     unit = base**members
     absent = unit * (2 * members + 1)
-    per_term = absent * (members + 1)
+    per_link = absent * (members + 1)
+    per_term = per_link * (1 + sum(_most_links(spots, net, polarities[net.index]) for net in nets))
     costs: list[dict[Resource, int]] = []
     chosen: list[dict[Resource, tuple[bool, Spot]]] = []
     for place, net in enumerate(nets):
@@ -249,9 +258,12 @@ def _in_order(
         how: dict[Resource, tuple[bool, Spot]] = {}
         for c in polarities[net.index]:
             found = spots.of_net(net, c, needs)
-            terms = 0 if net.index in spots.shared or not found else problem.alone(net, c).count
+            price = 0
+            if found and net.index not in spots.shared:
+                cover = problem.alone(net, c).cover
+                price = len(cover) * per_term + cover.links * per_link
             for resource, spot in found.items():
-                cost = terms * per_term + spot.shows * unit + spots.ranks[resource] * weight
+                cost = price + spot.shows * unit + spots.ranks[resource] * weight
                 if cost < best.get(resource, cost + 1):
                     best[resource], how[resource] = cost, (c, spot)
         costs.append(best)

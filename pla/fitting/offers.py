@@ -143,7 +143,7 @@ def _ways(scenario: Scenario, cell: Cell, mode: Mode, wish: Wish, apart: bool) -
         if cell.pin is None or drive == "never":
             return (False,)
         if apart:
-            return ()
+            return (False,) if drive == "row" else ()
         return {"row": (False, True), "always": (True,)}.get(str(drive), ())
     if cell.pin is None or apart or mode.pin != shown(net.active_low, wish.complemented):
         return ()

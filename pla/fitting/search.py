@@ -27,10 +27,10 @@ _MOST_FLEXIBLE = 6
 
 @dataclass(frozen=True, slots=True)
 class Found:
-    """A layout and how it compares: late outputs, terms, passes, signals fed back."""
+    """A layout and how it compares: late outputs, terms, passes, signals fed back, connections."""
 
     layout: Layout
-    rank: tuple[int, int, int, int]
+    rank: tuple[int, int, int, int, int]
 
 
 def best_layout(problem: Problem) -> Found | None:
@@ -104,8 +104,9 @@ def _judged(found: Layout | None) -> Found | None:
     if found is None:
         return None
     late = sum(delay.late for delay in delays(found))
-    rank = (late, found.minimum.count, max(passes_of(found), default=0))
-    return Found(found, (*rank, len(found.problem.netlist.fed)))
+    passes = max(passes_of(found), default=0)
+    minimum, fed = found.minimum, len(found.problem.netlist.fed)
+    return Found(found, (late, minimum.count, passes, fed, minimum.cover.links))
 
 
 def _better(one: Found | None, other: Found | None) -> Found | None:
