@@ -98,11 +98,8 @@ class Problem:
         }
 
     def place_of(self, net: Net) -> int | None:
-        """The pin that is decided for an output, or for the input that is read from it."""
-        place = self.places.get(net.name)
-        if place is None and net.reads is not None:
-            place = self.places.get(self.netlist.behaviour.inputs[net.reads].name)
-        return place
+        """The pin that is decided for an output."""
+        return self.places.get(net.name)
 
     def wish_of(self, net: Net, complemented: bool) -> Wish:
         """A net in one polarity, as a cell is asked for it."""
