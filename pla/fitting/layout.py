@@ -144,8 +144,13 @@ def literals_of(
     }
 
 
-def joint_minimum(spots: Spots) -> Minimum | None:
-    """The smallest set of terms for the nets on the shared OR array; ``None`` if they never fit."""
+def joint_minimum(spots: Spots, *, pins: bool = True) -> Minimum | None:
+    """The smallest set of terms for the nets on the shared OR array; ``None`` if they never fit.
+
+    Args:
+        spots: Where the signals could be.
+        pins: Whether the inputs have to find pins besides.
+    """
     problem = spots.problem
     options: Options = {
         net.index: {c: spots.of_net(net, c, {}) for c in problem.polarities(net)}
@@ -157,7 +162,7 @@ def joint_minimum(spots: Spots) -> Minimum | None:
     inputs = [
         set(spots.of_input(i, frozenset()))
         for i in spots.inputs
-        if i in problem.placed_inputs or i in problem.netlist.essential
+        if pins and (i in problem.placed_inputs or i in problem.netlist.essential)
     ]
     feasible = _feasible(spots, options, group, inputs)
     if not feasible((None,) * len(group)):

@@ -67,8 +67,10 @@ class Shortage:
         shared = self._sharing
         parts = []
         if shared:
-            candidates = [joint_minimum(self._spots(s, g)) for s, g in self.ways if g == shared]
-            known = [c for c in candidates if c is not None]
+            spots = [self._spots(s, g) for s, g in self.ways if g == shared]
+            known = [c for own in spots if (c := joint_minimum(own)) is not None]
+            # Where the inputs are too many, what the outputs need is of interest all the same.
+            known = known or [c for s in spots if (c := joint_minimum(s, pins=False)) is not None]
             if known:
                 parts.append(min(known, key=lambda m: m.count))
             elif self._overcrowded:
