@@ -103,15 +103,20 @@ def device(folder: Path, text: str):
 
 
 def design_text(
-    table: Table, low: Sequence[bool] = (), places: Mapping[str, int] | None = None
+    table: Table,
+    low: Sequence[bool] = (),
+    places: Mapping[str, int] | None = None,
+    enables: Mapping[int, str] | None = None,
 ) -> str:
     """Inputs ``x0``, ``x1``, … and outputs ``y0``, ``y1``, … with this truth table."""
     low = low or [False] * table.outputs
     names = [f"x{i}" for i in range(table.inputs)]
     lines = ['name = "Table"', "[inputs]", *(f"{name} = 1" for name in names), "[outputs]"]
-    lines += [
-        f"y{j} = " + ('{ active = "low" }' if is_low else "1") for j, is_low in enumerate(low)
-    ]
+    for j, is_low in enumerate(low):
+        keys = ['active = "low"'] * is_low
+        if j in (enables or {}):
+            keys.append(f'enable = "{enables[j]}"')
+        lines.append(f"y{j} = {{ {', '.join(keys)} }}" if keys else f"y{j} = 1")
     for j, (on, off) in enumerate(zip(table.on, table.off, strict=True)):
         of = ", ".join(f'"{name}"' for name in reversed(names))
         lines += [f"[minterms.y{j}]", f"of = [{of}]", f"on = {_points(table, on)}"]

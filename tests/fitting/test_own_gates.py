@@ -5,6 +5,7 @@ exhaustive search that shares nothing with the program.
 """
 
 import random
+from dataclasses import replace
 from functools import cache
 from itertools import combinations, permutations, product
 
@@ -248,6 +249,68 @@ def test_reserve_is_kept_in_every_gate(tmp_path):
         "y0 needs 2 product terms or 2 product terms as the complement, and the largest cell it "
         "could have holds 1, 2 kept spare: 1 too many"
     )
+
+
+def with_enables(rng, table):
+    """Products that enable some outputs, and the table with what is not seen left open."""
+    enables, on, off = {}, list(table.on), list(table.off)
+    for j in range(table.outputs):
+        if rng.random() < 0.5:
+            chosen = rng.sample(range(table.inputs), rng.choice([1, 1, 2]))
+            literals = [(i, rng.random() < 0.5) for i in chosen]
+            enables[j] = " ".join(f"x{i}" + "'" * (not one) for i, one in literals)
+            seen = sum(
+                1 << p
+                for p in range(1 << table.inputs)
+                if all((p >> i & 1 == 1) == one for i, one in literals)
+            )
+            on[j], off[j] = on[j] & seen, off[j] & seen
+    return enables, Table(table.inputs, tuple(on), tuple(off))
+
+
+def test_enable_rows_and_cells_as_inputs_against_brute_force(tmp_path):
+    """Every input is needed: it has a pin of its own, or that of a cell whose enable row is 0 and
+    whose level runs back.
+    """
+    rng = random.Random(12)
+    fitted = lent = 0
+    for _ in range(80):
+        inputs, outputs = rng.choice([(3, 2), (3, 3), (4, 2)])
+        table = random_table(rng, inputs, outputs, dont_care=0)
+        enables, seen = with_enables(rng, table)
+        if len(needed_inputs(seen, enables)) < inputs:
+            continue
+        low = [rng.random() < 0.4 for _ in range(outputs)]
+        gates = [
+            replace(gate, feedback="pin" if rng.random() < 0.6 else None, enable=rng.random() < 0.7)
+            for gate in [*random_gates(rng, outputs, 4), Gate(2)]
+        ]
+        pins = inputs - rng.choice([0, 1, 1, 2])
+        behaviour = design(tmp_path, design_text(table, low, enables=enables))
+        found = fit(behaviour, device(tmp_path, device_text(pins, gates)))
+        ways = []
+        for terms, at in every_way(seen, low, gates):
+            used = [pin - inputs - 1 for pin in at]
+            lendable = [k for k, g in enumerate(gates) if k not in used and g.feedback and g.enable]
+            if all(gates[used[j]].enable for j in enables) and inputs <= pins + len(lendable):
+                ways.append((terms, at))
+        if checked(found, ways):
+            fitted += 1
+            lent += bool(found.plan.input_cells)
+    assert 10 < fitted < 55
+    assert lent > 5
+
+
+def needed_inputs(table, enables):
+    """Inputs in an enable, and those on which what is seen depends whatever is done."""
+    found = {int(word[1]) for text in enables.values() for word in text.split()}
+    for on, off in zip(table.on, table.off, strict=True):
+        for i in range(table.inputs):
+            for p in range(1 << table.inputs):
+                other = p ^ 1 << i
+                if on >> p & 1 and off >> other & 1:
+                    found.add(i)
+    return found
 
 
 def test_the_device_of_the_catalogue_with_both_kinds(tmp_path):
