@@ -6,9 +6,9 @@ import difflib
 from typing import TYPE_CHECKING, Any
 
 if TYPE_CHECKING:
-    from collections.abc import Iterable
+    from collections.abc import Iterable, Sequence
 
-__all__ = ["did_you_mean", "kind_of", "span_of_numbers"]
+__all__ = ["did_you_mean", "kind_of", "listed", "span_of_numbers", "spans"]
 
 
 def did_you_mean(name: str, valid: Iterable[str]) -> str:
@@ -40,6 +40,30 @@ def kind_of(value: Any) -> str:
     if isinstance(value, dict):
         return "a table"
     return "a date or time"
+
+
+def listed(words: Sequence[str], most: int | None = None) -> str:
+    """``a``, ``a and b``, ``a, b and c``; beyond `most` of them only how many more there are."""
+    shown = list(words[:most])
+    if len(words) > len(shown):
+        shown.append(f"{len(words) - len(shown)} more")
+    if len(shown) < 2:
+        return "".join(shown)
+    return f"{', '.join(shown[:-1])} and {shown[-1]}"
+
+
+def spans(numbers: Iterable[int], most: int | None = None) -> str:
+    """Ascending numbers, neighbours joined, as ``3, 5..7``; no more than `most` such parts."""
+    parts: list[list[int]] = []
+    for number in numbers:
+        if parts and parts[-1][1] == number - 1:
+            parts[-1][1] = number
+        else:
+            parts.append([number, number])
+    texts = [str(a) if a == b else f"{a}..{b}" for a, b in parts[:most]]
+    if len(parts) > len(texts):
+        texts.append(f"and {len(parts) - len(texts)} more ranges")
+    return ", ".join(texts)
 
 
 def span_of_numbers(

@@ -5,6 +5,7 @@ from __future__ import annotations
 import re
 from typing import TYPE_CHECKING
 
+from pla import wording
 from pla.device.model import Column
 
 if TYPE_CHECKING:
@@ -124,18 +125,9 @@ def read_row_numbers(
     return tuple(found) if good else None
 
 
-def spans(numbers: Iterable[int], shown: int = _SHOWN) -> str:
-    """Ascending numbers as ``3, 5..7``; no more than `shown` of them."""
-    parts: list[list[int]] = []
-    for number in numbers:
-        if parts and parts[-1][1] == number - 1:
-            parts[-1][1] = number
-        else:
-            parts.append([number, number])
-    texts = [str(a) if a == b else f"{a}..{b}" for a, b in parts[:shown]]
-    if len(parts) > shown:
-        texts.append(f"and {len(parts) - shown} more ranges")
-    return ", ".join(texts)
+def spans(numbers: Iterable[int]) -> str:
+    """Ascending numbers as ``3, 5..7``; no more than eight such parts."""
+    return wording.spans(numbers, _SHOWN)
 
 
 def rows_in_words(rows: Iterable[int]) -> str:

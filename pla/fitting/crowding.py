@@ -5,6 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, TypeAlias
 
+from pla import wording
 from pla.fitting.matching import deficient
 
 if TYPE_CHECKING:
@@ -91,10 +92,7 @@ def crowd_of(choices: Choices) -> Crowd | None:
 
 def listed(words: Sequence[str]) -> str:
     """``a, b and c``; no more than a dozen of them."""
-    shown = list(words[:_LISTED])
-    if len(words) > _LISTED:
-        shown.append(f"{len(words) - _LISTED} more")
-    return shown[0] if len(shown) == 1 else f"{', '.join(shown[:-1])} and {shown[-1]}"
+    return wording.listed(words, _LISTED)
 
 
 def _order(pin: Resource) -> tuple[bool, int, str]:

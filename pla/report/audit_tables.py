@@ -6,9 +6,10 @@ from typing import TYPE_CHECKING
 
 from pla.logic import algebra
 from pla.report.cases import joined_cases
-from pla.report.notation import groups_of, listed, plural
+from pla.report.notation import groups_of, plural
 from pla.report.table import Strip, Table
 from pla.report.text import one_line
+from pla.wording import listed
 
 if TYPE_CHECKING:
     from collections.abc import Iterator, Sequence

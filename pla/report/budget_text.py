@@ -7,10 +7,11 @@ from typing import TYPE_CHECKING
 from pla.report.budget import own_pin_inputs
 from pla.report.delays import nanoseconds, output_delays, plain_number
 from pla.report.gates import headroom_text
-from pla.report.notation import listed, plural
+from pla.report.notation import plural
 from pla.report.table import Table
 from pla.report.text import filled, table_text
 from pla.report.verdict import sentence, title
+from pla.wording import listed
 
 if TYPE_CHECKING:
     from collections.abc import Collection, Iterator, Sequence

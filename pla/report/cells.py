@@ -4,8 +4,8 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
-from pla.report.notation import spans
 from pla.report.table import Table
+from pla.wording import spans
 
 if TYPE_CHECKING:
     from collections.abc import Iterator

@@ -8,9 +8,10 @@ from typing import TYPE_CHECKING, Any
 from pla.logic.function import Function
 from pla.logic.minimize import Minimum, minimize
 from pla.logic.phases import Polarity
-from pla.report.notation import listed, product
+from pla.report.notation import product
 from pla.report.table import Table
 from pla.report.text import one_line
+from pla.wording import listed
 
 if TYPE_CHECKING:
     from collections.abc import Iterator

@@ -6,11 +6,11 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 if TYPE_CHECKING:
-    from collections.abc import Iterable, Sequence
+    from collections.abc import Sequence
 
     from pla.logic.cubes import Cube
 
-__all__ = ["Group", "groups_of", "listed", "plural", "product", "span", "spans"]
+__all__ = ["Group", "groups_of", "plural", "product", "span"]
 
 _LOWEST_HEXADECIMAL = 7  # buses that reach this bit are bytes and addresses
 
@@ -82,24 +82,6 @@ def span(first: int, last: int, group: Group) -> str:
     return ends[0] if first == last else "..".join(ends)
 
 
-def listed(words: Sequence[str]) -> str:
-    """``a``, ``a and b``, ``a, b and c``."""
-    if len(words) < 2:
-        return "".join(words)
-    return f"{', '.join(words[:-1])} and {words[-1]}"
-
-
 def plural(number: int, word: str, words: str | None = None) -> str:
     """``1 term``, ``2 terms``."""
     return f"{number} {word if number == 1 else words or word + 's'}"
-
-
-def spans(numbers: Iterable[int]) -> str:
-    """Ascending numbers, neighbours joined: ``3, 5..7``."""
-    parts: list[list[int]] = []
-    for number in numbers:
-        if parts and parts[-1][1] == number - 1:
-            parts[-1][1] = number
-        else:
-            parts.append([number, number])
-    return ", ".join(str(a) if a == b else f"{a}..{b}" for a, b in parts)

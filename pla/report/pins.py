@@ -5,9 +5,10 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from pla.report.cells import cell_name, holder_of
-from pla.report.notation import listed, product
+from pla.report.notation import product
 from pla.report.table import Table
 from pla.report.text import kept_together
+from pla.wording import listed
 
 if TYPE_CHECKING:
     from collections.abc import Iterator

@@ -4,8 +4,9 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
-from pla.report.notation import groups_of, listed, spans
+from pla.report.notation import groups_of
 from pla.report.table import Strip, Table
+from pla.wording import listed, spans
 
 if TYPE_CHECKING:
     from collections.abc import Iterator, Sequence

@@ -7,11 +7,12 @@ from typing import TYPE_CHECKING
 from pla.fitting.prices import alone_counts, counts_without
 from pla.logic.phases import Polarity
 from pla.report.budget import budget_table
-from pla.report.notation import listed, plural
+from pla.report.notation import plural
 from pla.report.sharing import shares
 from pla.report.table import Table
 from pla.report.text import filled, table_text
 from pla.report.verdict import sentence, title
+from pla.wording import listed
 
 if TYPE_CHECKING:
     from collections.abc import Mapping, Sequence

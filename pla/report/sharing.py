@@ -6,9 +6,10 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 from pla.report.gates import own_gates
-from pla.report.notation import listed, plural, product
+from pla.report.notation import plural, product
 from pla.report.table import Table
 from pla.report.verdict import connections
+from pla.wording import listed
 
 if TYPE_CHECKING:
     from collections.abc import Iterator, Sequence

@@ -4,8 +4,9 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
-from pla.report.notation import listed, plural
+from pla.report.notation import plural
 from pla.report.text import one_line
+from pla.wording import listed
 
 if TYPE_CHECKING:
     from collections.abc import Iterator, Sequence

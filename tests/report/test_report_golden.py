@@ -17,7 +17,6 @@ from pla.logic.minimize import minimize
 from pla.logic.phases import Polarity
 from pla.report.folder import plan_files
 from pla.report.markdown import escaped
-from pla.report.notation import listed
 from pla.report.pins import pin_list
 from pla.report.plan_text import plan_text
 from pla.report.refusal_text import refusal_text
@@ -25,6 +24,7 @@ from pla.report.rows import ProgrammedRows
 from pla.report.terms_text import terms_text
 from pla.report.text import WIDTH
 from pla.report.verdict import count_sentences, design_sentences, proof_sentence
+from pla.wording import listed
 
 GOLDEN = Path(__file__).parent / "golden"
 DESIGN = str(GOLDEN / "bottle-washer.toml")
