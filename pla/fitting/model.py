@@ -182,7 +182,8 @@ class Fit:
         terms: Product terms.
         inputs: Input pins; of the inputs only those that a term or a place needs.
         outputs: Output cells.
-        lacking: Terms that are missing; with OR gates of their own counted cell by cell.
+        lacking: Terms that are missing, at least: of the shared OR array, and of cells with terms
+            of their own when the outputs are on those where least is missing.
         released: The fewest places whose release would make it fit; empty if there are none.
         warnings: What is doubtful though it fits.
     """

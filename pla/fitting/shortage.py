@@ -6,6 +6,7 @@ from dataclasses import dataclass, replace
 from functools import cached_property
 from typing import TYPE_CHECKING
 
+from pla.fitting.assignment import cheapest_assignment
 from pla.fitting.crowding import choices_of, crowd_of, joined_choices, listed
 from pla.fitting.layout import joint_minimum, literals_of
 from pla.fitting.minima import joined_minimum
@@ -19,6 +20,7 @@ if TYPE_CHECKING:
     from pla.fitting.netlist import Net
     from pla.fitting.problem import Problem
     from pla.fitting.scenario import Scenario
+    from pla.fitting.spots import Resource
     from pla.logic.minimize import Minimum
 
 __all__ = ["Shortage"]
@@ -91,11 +93,34 @@ class Shortage:
         """Terms that are missing in all; 0 if that is not the trouble."""
         if self.minimum is None:
             return 0
-        over = sum(short for _, short, _ in self._short_sums())
-        over += max(0, self._joint_count() - len(self.problem.device.shared_rows))
-        if not over and self._left_over is not None:
-            return self._left_over[0]
-        return over
+        return min(self._short_by(scenario, shared) for scenario, shared in self.ways)[1]
+
+    def _short_by(self, scenario: Scenario, shared: frozenset[int]) -> tuple[bool, int]:
+        """Terms that are missing once these nets share, with the others on the best cells.
+
+        Before it, whether that is no more than a guess, as the others cannot all have cells.
+        """
+        problem, spots = self.problem, self._spots(scenario, shared)
+        over, guessed = 0, False
+        if shared:
+            joint = joint_minimum(spots)
+            guessed = joint is None
+            count = self._joint_count() if joint is None else joint.count
+            over = max(0, count - len(problem.device.shared_rows))
+        costs: list[dict[Resource, int]] = []
+        for net in problem.netlist.nets:
+            short: dict[Resource, int] = {}
+            for c in problem.polarities(net):
+                for resource, spot in spots.of_net(net, c, {}, room=False).items():
+                    has = len(spot.mode.terms) - problem.reserve
+                    shared_or_held = net.index in shared or problem.alone(net, c).count <= has
+                    lacks = 0 if shared_or_held else problem.alone(net, c).count - has
+                    short[resource] = min(lacks, short.get(resource, lacks))
+            costs.append(short)
+        partners = cheapest_assignment(costs)
+        if partners is None:  # too few cells: each net as if it had its choice
+            return True, over + sum(min(short.values(), default=0) for short in costs)
+        return guessed, over + sum(short[r] for short, r in zip(costs, partners, strict=True))
 
     @cached_property
     def needed_inputs(self) -> tuple[int, ...]:
@@ -162,15 +187,19 @@ class Shortage:
         return sum(bool(cube.outputs & mask) for cube in cover)
 
     def _barred(self) -> Iterator[str]:
+        """Outputs without a polarity; those with the same trouble in one sentence."""
         nets = self.problem.netlist.nets
-        barred = [net for net, p in zip(nets, self.polarities, strict=True) if p is None]
+        troubles: dict[str, list[str]] = {}
         plain: list[str] = []
-        for net in barred:
-            reason = self._switching(net)
-            if reason is None:
+        for net, polarity in zip(nets, self.polarities, strict=True):
+            if polarity is not None:
+                continue
+            trouble = self._switching(net)
+            if trouble is None:
                 plain.append(net.name)
             else:
-                yield reason
+                troubles.setdefault(trouble, []).append(net.name)
+        yield from (trouble.format(listed(names)) for trouble, names in troubles.items())
         if not plain:
             return
         which = f"output{'s' if len(plain) > 1 else ''} {', '.join(plain)}"
@@ -187,30 +216,29 @@ class Shortage:
         return any(not free._offered(net) for net in self.problem.netlist.nets if net.name in names)
 
     def _switching(self, net: Net) -> str | None:
-        """Why its enable, or that its pin is read, rules out every cell."""
+        """Why its enable, or that its pin is read, rules out every cell; {} stands for its name."""
         problem = self.problem
         if net.enable is not None and problem.enables[net.index] is None:
             needed = problem.minima.enable(problem.netlist, net.index)
             least = "" if needed.proven else f" (at least {needed.lower_bound} are needed)"
             return (
-                f"the enable of {net.name} needs {needed.count} product terms{least}, and no cell "
-                "has more than one for it"
+                f"the enable of {{}} needs {needed.count} product terms{least}, and no cell has "
+                "more than one for it"
             )
         placed = problem.place_of(net)
         where = "no cell" if placed is None else f"the cell on pin {placed} does not"
         if net.reads is not None and self._would(replace(net, reads=None)):
             verb = "reads" if placed is None else "read"
-            return f"{where} {verb} its pin back, as {net.name} asks for"
+            return f"{where} {verb} its pin back, as is asked for {{}}"
         if net.enable is not None and self._would(replace(net, enable=None, reads=None)):
             pins = problem.device.enable_pins
             if pins and problem.switches[net.index] is None:
-                named = _pins(pins)
                 return (
-                    f"the enable of {net.name} is not one input alone, and cells are enabled by "
-                    f"{named} only"
+                    "the enable of {} is not one input alone, and cells are enabled by "
+                    f"{_pins(pins)} only"
                 )
             verb = "has" if placed is None else "have"
-            return f"{where} {verb} an output enable that {net.name} could use"
+            return f"{where} {verb} an output enable that {{}} could use"
         return None
 
     def _would(self, net: Net) -> bool:

@@ -68,7 +68,8 @@ class Spots:
             net: What has to be held.
             complemented: Whether the sum is the complement.
             needs: Literals that terms have of fed-back signals and of pins that are read.
-            room: Whether an OR gate of the cell's own needs room for the sum.
+            room: Whether an OR gate of the cell's own needs room for the sum; if not, the mode
+                with the most terms serves best.
         """
         problem = self.problem
         if net.enable is not None and problem.enables[net.index] is None:
@@ -82,15 +83,17 @@ class Spots:
                 continue
             if (cell.key in problem.device.or_column) != in_shared:
                 continue
-            for offer in offers(self.scenario, cell, wish, needs):
-                if (
-                    in_shared
-                    or not room
-                    or len(offer.mode.terms) - problem.reserve
-                    >= problem.alone(net, complemented).count
-                ):
-                    found[self._inside(cell)] = Spot(cell, offer.mode, offer.shows)
-                    break
+            possible = [
+                offer
+                for offer in offers(self.scenario, cell, wish, needs)
+                if in_shared
+                or not room
+                or len(offer.mode.terms) - problem.reserve >= problem.alone(net, complemented).count
+            ]
+            if possible:
+                largest = max(possible, key=lambda offer: len(offer.mode.terms))
+                offer = possible[0] if room else largest
+                found[self._inside(cell)] = Spot(cell, offer.mode, offer.shows)
         return found
 
     def of_input(self, index: int, senses: frozenset[bool]) -> dict[Resource, Mode | None]:

@@ -183,7 +183,7 @@ def test_a_pin_that_is_read_needs_a_cell_that_reads_it(tmp_path):
     assert plan.pins["line_in"] == plan.pins["line"]
     placed = design(tmp_path, f"{READ}[place.own-9x5]\nline = 15\n")
     found = fit(placed, find_device("own-9x5"))
-    assert found.reasons == ("the cell on pin 15 does not read its pin back, as line asks for",)
+    assert found.reasons == ("the cell on pin 15 does not read its pin back, as is asked for line",)
     assert [place.signal for place in found.released] == ["line"]
     elsewhere = design(tmp_path, f"{READ}[place.own-9x5]\nline = 13\n")
     assert fitted(elsewhere, "own-9x5").pins["line_in"] == 13
