@@ -220,7 +220,7 @@ def test_check_document(capsys):
     assert set(found["enables"]) == {f"line[{i}]" for i in range(4)}
     assert found["enables"]["line[2]"] == {
         "text": "reading",
-        "line": 17,
+        "line": 19,
         "combinations": {"on": 1024, "off": 7168, "dont_care": 0, "total": 8192},
     }
     assert found["reads"] == {f"line[{i}]": f"line_in[{i}]" for i in range(4)}

@@ -10,7 +10,15 @@ from pla.device.catalogue import catalogue, find_device
 
 ROOT = Path(__file__).parents[2]
 EXAMPLES = sorted((ROOT / "examples").glob("*.toml"))
-LONG = {"cabinet-fans", "clamp-card", "egg-totals", "rotator-readout", "sump-pumps"}
+LONG = {
+    "cabinet-fans",
+    "clamp-card",
+    "egg-totals",
+    "rotator-readout",
+    "silo-valves",
+    "sump-pumps",
+    "tape-reader",
+}
 SHIPPED = len(catalogue())
 SPLITTER = str(ROOT / "examples" / "splitter-interlock.toml")
 DEVICES = ROOT / "devices"

@@ -148,10 +148,18 @@ def test_every_example_is_planned_or_refused(tmp_path, capsys):
         "egg-totals": ("shared-12x32x6", 1),
         "clamp-card": ("varied-11x5-marked", 0),
         "cabinet-fans": ("joint-10x27x6", 0),
+        "silo-valves": ("modal-8x4-plain", 0),
+        "loom-card": ("gate-9x6", 0),
+        "tape-reader": ("shared-10x28x4", 0),
+        "cold-store": ("swap-8x4", 0),
+        "weigher-port": ("own-9x5", 0),
     }
     assert {path.stem for path in EXAMPLES.glob("*.toml")} == set(wanted)
     for name, (device, expected) in wanted.items():
         folder = tmp_path / name
+        command = f"fuseplan plan examples/{name}.toml --device {device} -o out/{name}"
+        head = (EXAMPLES / f"{name}.toml").read_text(encoding="utf-8").split("\nname = ")[0]
+        assert head.endswith(f"\n#   {command}"), name
         design = str(EXAMPLES / f"{name}.toml")
         assert run(["plan", design, "--device", device, "-o", str(folder)]) == expected, name
         assert (folder / f"{name}.jed").exists() == (expected == 0)
