@@ -269,6 +269,7 @@ def test_signals_that_have_too_few_cells_between_them_are_named(tmp_path):
     assert found.reasons == (
         "y0, y1 and y2 have only pin 3 and pin 5 to be on: 3 signals, 2 places",
     )
+    assert found.lacking == 1  # on the best cells, one of them finds one term of the two
     placed = design_text(minterms(2, [1], [2]), places={"y0": 3})
     found = fit(design(tmp_path, placed), device(tmp_path, device_text(2, [Gate(2)] * 2)))
     assert found.plan.pins == {"x0": 1, "x1": 2, "y0": 3, "y1": 4}
