@@ -4,11 +4,9 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING, Literal
 
-import numpy as np
-
-from pla.fuses.evaluate import Outside
+from pla.exercise.words import Word, Words
+from pla.fuses.evaluate import Outside, evaluate
 from pla.fuses.recover import recover
-from pla.fuses.simulate import Signal, simulate
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
@@ -29,22 +27,17 @@ def readings(device: Device, part: Part) -> dict[int, str]:
         ValueError: If the device has another number of fuses.
     """
     realised = recover(device, part.fuses)
-    size = -(-len(part.steps) // 8)
     pins = sorted({pin for step in part.steps for pin in step.levels})
     outside = {pin: Outside(_given(part.steps, pin), "yields") for pin in pins}
-    found = simulate(realised, outside, size)
+    found = evaluate(realised, Words(len(part.steps)), outside)
     shown: dict[int, str] = {}
     for pin in sorted(device.cell_of_pin):
-        driven, level = found.driven[pin], found.shown[pin]
-        on, off, high, low = (
-            np.unpackbits(bits, bitorder="little")[: len(part.steps)].astype(bool)
-            for bits in (driven.high, driven.low, level.high, level.low)
-        )
+        (on, off), (high, low) = found.driven[pin], found.shown[pin]
         shown[pin] = "".join(
             "-" if pin in step.levels
-            else "Z" if off[k]
-            else "H" if on[k] and high[k]
-            else "L" if on[k] and low[k]
+            else "Z" if off >> k & 1
+            else "H" if (on & high) >> k & 1
+            else "L" if (on & low) >> k & 1
             else "?"
             for k, step in enumerate(part.steps)
         )  # fmt: skip
@@ -61,7 +54,10 @@ def differences(expected: dict[int, str], measured: dict[int, str]) -> list[tupl
     ]
 
 
-def _given(steps: Sequence[Step], pin: int) -> Signal:
-    high = np.array([step.levels.get(pin) is True for step in steps], dtype=bool)
-    low = np.array([step.levels.get(pin) is False for step in steps], dtype=bool)
-    return Signal(np.packbits(high, bitorder="little"), np.packbits(low, bitorder="little"))
+def _given(steps: Sequence[Step], pin: int) -> Word:
+    high = low = 0
+    for k, step in enumerate(steps):
+        level = step.levels.get(pin)
+        high |= (level is True) << k
+        low |= (level is False) << k
+    return high, low

@@ -35,7 +35,8 @@ class Row:
 
         It is cut off, or a line and its complement are both connected.
         """
-        return self.dropped or any(line.inverse in self.lines for line in self.lines)
+        # Each line stands here once, so that one with its complement shows in the number.
+        return self.dropped or len({(x.kind, x.of) for x in self.lines}) < len(self.lines)
 
 
 @dataclass(frozen=True, slots=True)
