@@ -65,7 +65,6 @@ class Shortage:
         problem = self.problem
         if None in self.polarities:
             return None
-        nets = problem.netlist.nets
         shared = self._sharing
         parts = []
         if shared:
@@ -80,13 +79,26 @@ class Shortage:
                 polarities = [p for j in group if (p := self.polarities[j]) is not None]
                 parts.append(problem.minima.joint(problem.netlist, group, polarities, None, None))
             else:
-                return None
-        parts += [
-            min((problem.alone(net, c) for c in self._offered(net)), key=lambda m: m.count)
-            for net in nets
+                return self._smallest_of_any_sharing()
+        return joined_minimum(problem.netlist, [*parts, *self._alone(shared)])
+
+    def _alone(self, shared: frozenset[int]) -> list[Minimum]:
+        """The smallest sums of the nets that do not share."""
+        return [
+            min((self.problem.alone(net, c) for c in self._offered(net)), key=lambda m: m.count)
+            for net in self.problem.netlist.nets
             if net.index not in shared
         ]
-        return joined_minimum(problem.netlist, parts)
+
+    def _smallest_of_any_sharing(self) -> Minimum | None:
+        """The smallest sums over all that a device with both kinds of gates could share."""
+        found = []
+        for scenario, shared in self.ways:
+            joint = joint_minimum(self._spots(scenario, shared), pins=False) if shared else None
+            if joint is not None:
+                parts = [joint, *self._alone(shared)]
+                found.append(joined_minimum(self.problem.netlist, parts))
+        return min(found, key=lambda m: m.count) if found else None
 
     @cached_property
     def lacking(self) -> int:
@@ -330,7 +342,7 @@ class Shortage:
         crowd = crowd_of(joined_choices(self._choices(s, g) for s, g in self.ways))
         if crowd is not None:
             yield self._sentence(crowd)
-        elif self.minimum is None:
+        elif self.minimum is None and self._all_shared:
             yield "the cells cannot give all outputs a polarity that they may have together"
 
     def _crowded_somehow(self) -> Iterator[str]:
