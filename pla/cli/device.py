@@ -1,9 +1,10 @@
-"""``fuseplan device``: list, show and check device files."""
+"""``fuseplan device``: list, show, check and exercise device files."""
 
 from __future__ import annotations
 
 import click
 
+from pla.cli.device_exercise import command as exercise
 from pla.cli.options import json_option
 from pla.cli.output import emit_json, emit_text, show_diagnostics
 
@@ -12,7 +13,7 @@ __all__ = ["command"]
 
 @click.group("device")
 def command() -> None:
-    """List, show and check device files.
+    """List, show, check and exercise device files.
 
     A device file says where the fuses of a programmable array are and what they do. Write one
     from the logic diagram in the data sheet, and let it be checked before it costs a part.
@@ -21,7 +22,11 @@ def command() -> None:
       fuseplan device list
       fuseplan device show shared-12x32x6
       fuseplan device check my-array.toml
+      fuseplan device exercise my-array.toml -o scrap/
     """
+
+
+command.add_command(exercise)
 
 
 @command.command("list")

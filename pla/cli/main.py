@@ -30,7 +30,7 @@ COMMANDS = {
     "terms": ("pla.cli.terms", "Find the smallest set of shared product terms; no device."),
     "plan": ("pla.cli.plan", "Minimize, fit, prove, write fuse file, tables and report."),
     "budget": ("pla.cli.budget", "Hold a design against every device, best first."),
-    "device": ("pla.cli.device", "List, show and check device files."),
+    "device": ("pla.cli.device", "List, show, check and exercise device files."),
     "inspect": ("pla.cli.inspect", "Hold a fuse file against the standard."),
 }
 

@@ -16,11 +16,24 @@ if TYPE_CHECKING:
     from pla.exercise.part import Part
     from pla.exercise.slips import Slip
 
-__all__ = ["Exercise", "Exercised", "exercise"]
+__all__ = ["Exercise", "Exercised", "Telling", "exercise"]
 
 _IN_VAIN = 3
 _VARIANTS = 4
 _LARGE = 2_000
+
+
+@dataclass(frozen=True, slots=True)
+class Telling:
+    """A slip that a part shows.
+
+    Attributes:
+        what: In words.
+        where: Steps, from 0, and pins at which the readings differ.
+    """
+
+    what: str
+    where: tuple[tuple[int, int], ...]
 
 
 @dataclass(frozen=True, slots=True)
@@ -30,13 +43,13 @@ class Exercised:
     Attributes:
         part: The part.
         expected: For each cell's pin a `pla.exercise.readings.Reading` a step.
-        told: How many slips show at it and at no part before it.
+        shown: Slips that show at it and at no part before it.
         open: Slips that show neither at it nor at a part before it.
     """
 
     part: Part
     expected: dict[int, str]
-    told: int
+    shown: tuple[Telling, ...]
     open: tuple[str, ...]
 
 
@@ -54,6 +67,11 @@ class Exercise:
     tried: int
     parts: tuple[Exercised, ...]
 
+    @property
+    def told(self) -> int:
+        """How many slips show at one of the parts."""
+        return sum(len(part.shown) for part in self.parts)
+
 
 def exercise(device: Device, most: int | None = None) -> Exercise:
     """Make parts until every slip that can show has shown.
@@ -68,29 +86,37 @@ def exercise(device: Device, most: int | None = None) -> Exercise:
     number = vain = 0
     while (left or not found) and vain < _IN_VAIN and (most is None or len(found) < most):
         number += 1
-        part, expected, hidden = _best(device, number, left)
-        if found and len(hidden) == len(left):
+        part, expected, shown = _best(device, number, left)
+        if found and not shown:
             vain += 1
             continue
         vain = 0
-        told, left = len(left) - len(hidden), hidden
-        found.append(Exercised(part, expected, told, tuple(s.what for s in left)))
+        left = [slip for k, slip in enumerate(left) if k not in shown]
+        tellings = tuple(shown.values())
+        found.append(Exercised(part, expected, tellings, tuple(slip.what for slip in left)))
     return Exercise(device, len(every), tuple(found))
 
 
 def _best(
     device: Device, number: int, left: Sequence[Slip]
-) -> tuple[Part, dict[int, str], list[Slip]]:
-    """The variant of a part at which most slips show; a large device has one only."""
+) -> tuple[Part, dict[int, str], dict[int, Telling]]:
+    """The variant of a part at which most slips show, by their place among `left`.
+
+    A large device has one variant only.
+    """
     links = device.terms * len(device.and_array.columns)
-    found: tuple[Part, dict[int, str], list[Slip]] | None = None
+    found: tuple[Part, dict[int, str], dict[int, Telling]] | None = None
     for variant in range(_VARIANTS if links < _LARGE else 1):
         part = make_part(device, number, variant)
         expected = readings(device, part)
-        hidden = [s for s in left if not differences(expected, readings(s.device, part))]
-        if found is None or len(hidden) < len(found[2]):
-            found = part, expected, hidden
-        if not hidden:
+        shown = {}
+        for place, slip in enumerate(left):
+            where = differences(expected, readings(slip.device, part))
+            if where:
+                shown[place] = Telling(slip.what, tuple(where))
+        if found is None or len(shown) > len(found[2]):
+            found = part, expected, shown
+        if len(shown) == len(left):
             break
     if found is None:  # pragma: no cover - there is one variant at least
         raise AssertionError

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING, Literal
 
-from pla.exercise.words import Word, Words
+from pla.exercise.words import Words
 from pla.fuses.evaluate import Outside, evaluate
 from pla.fuses.recover import recover
 
@@ -13,8 +13,11 @@ if TYPE_CHECKING:
 
     from pla.device.model import Device
     from pla.exercise.part import Part, Step
+    from pla.exercise.words import Word
+    from pla.fuses.evaluate import Evaluated
+    from pla.fuses.recover import Realised
 
-__all__ = ["Reading", "differences", "readings"]
+__all__ = ["Reading", "differences", "readings", "worth"]
 
 Reading = Literal["H", "L", "Z", "?", "-"]
 """High, low, high impedance, not known; ``-`` where the pin is set from outside."""
@@ -26,10 +29,7 @@ def readings(device: Device, part: Part) -> dict[int, str]:
     Raises:
         ValueError: If the device has another number of fuses.
     """
-    realised = recover(device, part.fuses)
-    pins = sorted({pin for step in part.steps for pin in step.levels})
-    outside = {pin: Outside(_given(part.steps, pin), "yields") for pin in pins}
-    found = evaluate(realised, Words(len(part.steps)), outside)
+    _, found = worth(device, part)
     shown: dict[int, str] = {}
     for pin in sorted(device.cell_of_pin):
         (on, off), (high, low) = found.driven[pin], found.shown[pin]
@@ -42,6 +42,14 @@ def readings(device: Device, part: Part) -> dict[int, str]:
             for k, step in enumerate(part.steps)
         )  # fmt: skip
     return shown
+
+
+def worth(device: Device, part: Part) -> tuple[Realised, Evaluated[Word]]:
+    """The array that the part is, and what each of its sums and pins is worth at each step."""
+    realised = recover(device, part.fuses)
+    pins = sorted({pin for step in part.steps for pin in step.levels})
+    outside = {pin: Outside(_given(part.steps, pin), "yields") for pin in pins}
+    return realised, evaluate(realised, Words(len(part.steps)), outside)
 
 
 def differences(expected: dict[int, str], measured: dict[int, str]) -> list[tuple[int, int]]:
