@@ -4,6 +4,7 @@ Marks in the README, invisible when it is rendered, say what the next block is: 
 design with the device to plan it for, what a command prints, or slips with what they lead to.
 """
 
+import csv
 import re
 from pathlib import Path
 
@@ -105,6 +106,32 @@ def test_slips_are_told(name, right, wrong, message, capsys):
     Path("slip.toml").write_text(text.replace(right, wrong), encoding="utf-8")
     assert run(["device", "check", "slip.toml"]) == 2
     assert message in capsys.readouterr().err
+
+
+def test_the_scrap_part_is_made_and_judged_as_told(shelf, capsys):
+    make, judge = re.findall(
+        r"^fuseplan (device exercise sheet-7x3\.toml .*)$", README, re.MULTILINE
+    )
+    assert run(make.split()) == 0
+    files = re.findall(r"^\| `(sheet-7x3-exercise-[^`]+)`", README, re.MULTILINE)
+    assert sorted(files) == sorted(path.name for path in (shelf / "out" / "scrap").iterdir())
+    sheet = shelf / judge.split()[-1]
+    with sheet.open(newline="", encoding="utf-8") as stream:
+        table = csv.DictReader(stream)
+        names, rows = table.fieldnames or [], list(table)
+    pins = [name.removeprefix("expected ") for name in names if name.startswith("expected ")]
+    filled = {(k, pin): rows[k][f"expected {pin}"] for k in range(len(rows)) for pin in pins}
+    first = next(place for place, level in filled.items() if level in "HL")
+    other = {**filled, first: "H" if filled[first] == "L" else "L"}
+    for readings, code in ((filled, 0), (other, 1)):
+        for (k, pin), level in readings.items():
+            rows[k][f"measured {pin}"] = level
+        with sheet.open("w", newline="", encoding="utf-8") as stream:
+            table = csv.DictWriter(stream, names)
+            table.writeheader()
+            table.writerows(rows)
+        capsys.readouterr()
+        assert run(judge.split()) == code
 
 
 def test_an_inner_signal_saves_the_terms_that_are_named(shelf, capsys):
