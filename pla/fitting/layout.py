@@ -119,7 +119,8 @@ def literals_of(
         problem: What is laid out.
         covers: The terms.
         scenario: What is decided.
-        spots: Where the nets are; without it all enables are taken to be rows.
+        spots: Where the nets are; without it an enable that is one input alone is left out, since
+            a pin may carry it.
     """
     rows = Cover.of(len(problem.netlist.behaviour.inputs), [])
     cubes = [

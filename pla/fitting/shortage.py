@@ -2,11 +2,12 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
+from dataclasses import dataclass
 from functools import cached_property
 from typing import TYPE_CHECKING
 
 from pla.fitting.assignment import cheapest_assignment
+from pla.fitting.barred import barred_reasons, offered
 from pla.fitting.crowding import choices_of, crowd_of, joined_choices, listed
 from pla.fitting.layout import joint_minimum, literals_of
 from pla.fitting.minima import joined_minimum
@@ -41,10 +42,14 @@ class Shortage:
     @cached_property
     def reasons(self) -> tuple[str, ...]:
         """One sentence each; never empty."""
-        found = [*self._barred(), *self._shared_terms(), *self._own_terms()]
+        found = [
+            *barred_reasons(self.problem, self.ways),
+            *self._shared_terms(),
+            *self._own_terms(),
+        ]
         found += [*self._too_many_inputs(), *self._too_many_outputs()]
         if not found:
-            found += self._crowded()
+            found += self._carried_in_vain() or self._crowded()
         if not found and self._left_over is not None:
             found.append(self._left_over[1])
         if not found:
@@ -187,74 +192,12 @@ class Shortage:
         return len(self.problem.netlist.design.outputs) > len(device.output_pins)
 
     def _offered(self, net: Net) -> list[bool]:
-        return [
-            c
-            for c in self.problem.polarities(net)
-            if any(self._spots(s, g).of_net(net, c, {}, room=False) for s, g in self.ways)
-        ]
+        return offered(self.problem, self.ways, net)
 
     def _joint_count(self) -> int:
         mask = sum(1 << j for j in self._sharing)
         cover = self.minimum.cover if self.minimum is not None else ()
         return sum(bool(cube.outputs & mask) for cube in cover)
-
-    def _barred(self) -> Iterator[str]:
-        """Outputs without a polarity; those with the same trouble in one sentence."""
-        nets = self.problem.netlist.nets
-        troubles: dict[str, list[str]] = {}
-        plain: list[str] = []
-        for net, polarity in zip(nets, self.polarities, strict=True):
-            if polarity is not None:
-                continue
-            trouble = self._switching(net)
-            if trouble is None:
-                plain.append(net.name)
-            else:
-                troubles.setdefault(trouble, []).append(net.name)
-        yield from (trouble.format(listed(names)) for trouble, names in troubles.items())
-        if not plain:
-            return
-        which = f"output{'s' if len(plain) > 1 else ''} {', '.join(plain)}"
-        if self.problem.wish == "true" and not self._barred_anyway(plain):
-            yield (
-                f"{which} can only be realised by a complemented sum, which --polarity true rules "
-                "out"
-            )
-        else:
-            yield f"no cell can show {which} with the active level that the design asks for"
-
-    def _barred_anyway(self, names: Sequence[str]) -> bool:
-        free = Shortage(replace(self.problem, wish="free"), self.ways)
-        return any(not free._offered(net) for net in self.problem.netlist.nets if net.name in names)
-
-    def _switching(self, net: Net) -> str | None:
-        """Why its enable, or that its pin is read, rules out every cell; {} stands for its name."""
-        problem = self.problem
-        if net.enable is not None and problem.enables[net.index] is None:
-            needed = problem.minima.enable(problem.netlist, net.index)
-            least = "" if needed.proven else f" (at least {needed.lower_bound} are needed)"
-            return (
-                f"the enable of {{}} needs {needed.count} product terms{least}, and no cell has "
-                "more than one for it"
-            )
-        placed = problem.place_of(net)
-        where = "no cell" if placed is None else f"the cell on pin {placed} does not"
-        if net.reads is not None and self._would(replace(net, reads=None)):
-            verb = "reads" if placed is None else "read"
-            return f"{where} {verb} its pin back, as is asked for {{}}"
-        if net.enable is not None and self._would(replace(net, enable=None, reads=None)):
-            pins = problem.device.enable_pins
-            if pins and problem.switches[net.index] is None:
-                return (
-                    "the enable of {} is not one input alone, and cells are enabled by "
-                    f"{_pins(pins)} only"
-                )
-            verb = "has" if placed is None else "have"
-            return f"{where} {verb} an output enable that {{}} could use"
-        return None
-
-    def _would(self, net: Net) -> bool:
-        return bool(self._offered(net))
 
     def _too_many_outputs(self) -> Iterator[str]:
         used, has = (
@@ -337,6 +280,32 @@ class Shortage:
             kept = f", {self.problem.reserve} kept spare" if self.problem.reserve else ""
             yield f"{net.name} needs {words}{kept}: {short} too many"
 
+    def _carried_in_vain(self) -> list[str]:
+        """Inputs that would have to be on an enable pin, where terms cannot read them."""
+        nets, inputs = self.problem.netlist.nets, self.problem.netlist.design.inputs
+        troubles: dict[str, None] = {}
+        for scenario, shared in self.ways:
+            choices, spots = self._choices(scenario, shared), self._spots(scenario, shared)
+            if not all(choices[net.name] for net in nets):
+                continue
+            needs = self._needs
+            deaf = [(i, p) for i, p in spots.carried.items() if not spots.carries(p, i, needs[i])]
+            if not deaf:
+                return []
+            for i, pin in deaf:
+                name = inputs[i].name
+                troubles[
+                    f"{name} would have to be on enable pin {pin}, and terms need {name} too, but "
+                    "that pin has no line for them in the AND array: give them an input of its own "
+                    "that is wired to the same signal"
+                ] = None
+        return list(troubles)
+
+    @cached_property
+    def _needs(self) -> dict[int, frozenset[bool]]:
+        """Literals of each input, as far as the terms are known."""
+        return literals_of(self.problem, [self.minimum.cover] if self.minimum is not None else [])
+
     def _crowded(self) -> Iterator[str]:
         """Signals that have too few pins between them, whatever is decided beforehand."""
         crowd = crowd_of(joined_choices(self._choices(s, g) for s, g in self.ways))
@@ -362,8 +331,7 @@ class Shortage:
         yield where + self._sentence(crowd)
 
     def _choices(self, scenario: Scenario, shared: frozenset[int]) -> Choices:
-        needs = literals_of(self.problem, [self.minimum.cover]) if self.minimum is not None else {}
-        return choices_of(self._spots(scenario, shared), self.needed_inputs, needs)
+        return choices_of(self._spots(scenario, shared), self.needed_inputs, self._needs)
 
     def _sentence(self, crowd: Crowd) -> str:
         nets = {net.name: net for net in self.problem.netlist.nets}
@@ -375,7 +343,3 @@ class Shortage:
             self._spots(s, g).of_net(net, True, {}) for net in outputs for s, g in self.ways
         )
         return crowd.sentence(" with --polarity true" if narrowed else "")
-
-
-def _pins(pins: Sequence[int]) -> str:
-    return f"pin {pins[0]}" if len(pins) == 1 else f"pins {listed([str(p) for p in pins])}"
