@@ -150,6 +150,11 @@ class Plan:
         return pins | {out.name: out.pin for out in self.outputs if out.pin is not None}
 
     @property
+    def fed_back(self) -> tuple[str, ...]:
+        """Names of the signals that are fed back through the array."""
+        return tuple(signal.name for signal in self.inputs if signal.fed_by is not None)
+
+    @property
     def lines(self) -> tuple[Line | None, ...]:
         """What every column of the AND array carries."""
         return self.device.lines(self.modes)

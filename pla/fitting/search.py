@@ -6,11 +6,13 @@ from dataclasses import dataclass, replace
 from itertools import product
 from typing import TYPE_CHECKING
 
+from pla.fitting.barred import offered
 from pla.fitting.layout import layout
 from pla.fitting.netlist import choices, restrictions
 from pla.fitting.placing import delays, passes_of
 from pla.fitting.scenario import has_single_lines, scenarios, taken_apart
 from pla.fitting.spots import Spots
+from pla.logic.phases import Polarity
 
 if TYPE_CHECKING:
     from collections.abc import Iterator
@@ -44,11 +46,14 @@ def best_layout(problem: Problem) -> Found | None:
         return None
     best: Found | None = None
     for chosen in choices(design):
-        found = _of(problem, minima.netlist(design, chosen), best)
-        if found is None and has_single_lines(device):
-            for restriction in restrictions(chosen) if chosen else ():
+        nets = minima.netlist(design, chosen)
+        found = _of(problem, nets, best)
+        if found is None and nets is not None and chosen and has_single_lines(device):
+            for restriction in restrictions(chosen):
                 tried = _of(problem, minima.netlist(design, chosen, restriction), best)
                 found = _better(found, tried)
+            if found is not None:
+                found = replace(found, layout=_with_honest_bound(found.layout, nets))
         best = _better(best, found)
     return best
 
@@ -84,6 +89,34 @@ def _of(problem: Problem, nets: Netlist | None, known: Found | None) -> Found | 
             for apart in taken_apart(scenario, inner):
                 best = _better(best, _judged(layout(own, apart, shared)))
     return best
+
+
+def _with_honest_bound(found: Layout, netlist: Netlist) -> Layout:
+    """A layout whose nets read signals in one sense only, with the bound of all layouts.
+
+    Its own bound holds for the polarities that go with that sense.
+
+    Args:
+        found: The layout.
+        netlist: The same signals fed back, in both senses.
+    """
+    problem = replace(found.problem, netlist=netlist)
+    every = list(ways(problem))
+    allowed = [offered(problem, every, n) or problem.polarities(n) for n in netlist.nets]
+    bound = 0
+    for net, own in zip(netlist.nets, allowed, strict=True):
+        if net.index not in found.shared:
+            bound += min(problem.alone(net, c).lower_bound for c in own)
+    if found.shared:
+        group = sorted(found.shared)
+        polarities = [Polarity(False in allowed[j], True in allowed[j]) for j in group]
+        bound += problem.minima.joint(netlist, group, polarities, None, None).lower_bound
+    minimum = found.minimum
+    if bound >= minimum.lower_bound:
+        return found
+    return replace(
+        found, minimum=replace(minimum, lower_bound=bound, proven_by=None, connections=None)
+    )
 
 
 def _hopeless(problem: Problem, shared: frozenset[int], known: Found | None) -> bool:

@@ -32,7 +32,7 @@ def plan_text(fit: Fit, proven: ProvenFile, paths: Sequence[str]) -> str:
         raise ValueError("a design that does not fit has no plan")
     own = own_gates(plan)
     sentences = [
-        " ".join(count_sentences(plan.minimum, own)),
+        " ".join(count_sentences(plan.minimum, own, plan.fed_back)),
         *design_sentences(plan.behaviour, plan.minimum, own),
         *([f"Terms of each output, and of its cell: {headroom_text(plan)}."] if any(own) else []),
     ]

@@ -58,7 +58,7 @@ def _front(plan: Plan, proven: ProvenFile, doubts: Sequence[Diagnostic]) -> Iter
     yield "## Verdict"
     yield bullets(
         [
-            *count_sentences(minimum, own),
+            *count_sentences(minimum, own, plan.fed_back),
             *design_sentences(plan.behaviour, minimum, own),
             proof_sentence(proven.proof, design),
             links_sentence(device, fuses),

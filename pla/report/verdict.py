@@ -38,14 +38,18 @@ def sentence(reason: str, behaviour: Behaviour) -> str:
     return f"{reason if first in signals else reason[:1].upper() + reason[1:]}."
 
 
-def count_sentences(minimum: Minimum, own: Sequence[bool] = ()) -> Iterator[str]:
+def count_sentences(
+    minimum: Minimum, own: Sequence[bool] = (), fed: Sequence[str] = ()
+) -> Iterator[str]:
     """Number of terms, lower bound, and by what the two are known to meet.
 
     Args:
         minimum: The terms.
         own: For each output whether its OR gate has terms of its own; by default none has.
+        fed: Names of the signals that are fed back through the array.
     """
     count, bound = plural(minimum.count, "product term"), minimum.lower_bound
+    count = f"With {listed(fed)} fed back: {count}" if fed else count
     alone, shared = any(own), not all(own) or not own
     if minimum.proven:
         smaller = (
@@ -69,6 +73,8 @@ def count_sentences(minimum: Minimum, own: Sequence[bool] = ()) -> Iterator[str]
             + ("some sums have" if shared else "each sum has")
             + " an OR gate with terms of its own."
         )
+    if fed:
+        yield "No other choice of signals to feed back that was tried fits with fewer terms."
     if minimum.proven_by == "certificate":
         yield "The bound was checked in exact arithmetic (proven by certificate)."
     elif minimum.proven_by == "solver":
