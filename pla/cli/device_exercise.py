@@ -27,9 +27,9 @@ class _Parts(click.ParamType[int]):
         text = str(value).strip().lower()
         if text == "all":
             return 0
-        if text.isascii() and text.isdecimal() and len(text) < 4:
-            return int(text)
-        self.fail(f"{value!r} is no number of parts, expected 1 to 999, or all", param, ctx)
+        if not (text.isascii() and text.isdecimal() and len(text) < 4):
+            self.fail(f"{value!r} is no number of parts, expected 1 to 999, or all", param, ctx)
+        return int(text)
 
 
 @click.command("exercise")

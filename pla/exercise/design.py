@@ -1,23 +1,24 @@
 """The behaviour of an exercised part as a design file.
 
-Each output is the sum of its rows. What a row reads of feedback is not said: a row is 1 at one
-step only, at which the feedback has one value; so the row stands there without it, or not at all.
-Hence no output names another, and there is no ring even where the array has one that never closes
-at once.
+Each output is the sum of its rows. What a row reads of feedback is folded in: mostly the row is 1
+at one step only, at which the feedback has one value, so that the row stands there without it, or
+not at all; a row of which this cannot be said is written as the steps at which it is 1. Hence no
+output names another, and there is no ring even where the array has one that never closes at once.
 """
 
 from __future__ import annotations
 
 import json
-from typing import TYPE_CHECKING
+from dataclasses import dataclass
+from typing import TYPE_CHECKING, TypeAlias
 
+from pla.errors import Diagnostic, InternalError
 from pla.exercise.readings import worth
-from pla.fuses.recover import recover
 
 if TYPE_CHECKING:
-    from collections.abc import Iterable
+    from collections.abc import Mapping
 
-    from pla.device.model import Line
+    from pla.device.model import Enable, Line
     from pla.exercise.program import Exercised
     from pla.exercise.words import Word
     from pla.fuses.evaluate import Evaluated
@@ -27,7 +28,7 @@ __all__ = ["exercise_design"]
 
 _WIDTH = 96
 
-Product = frozenset[tuple[int, bool]]
+Product: TypeAlias = "frozenset[tuple[int, bool]]"
 """Pins and the levels at which it is 1."""
 
 
@@ -39,96 +40,97 @@ def exercise_design(exercised: Exercised, number: int) -> str | None:
         number: Which part of the exercise it is, from 1.
 
     Returns:
-        The file; ``None`` if no output is free of feedback in this way, so that sums of products
-        of inputs cannot say what is expected at every step.
+        The file; ``None`` if no pin is ever driven.
+
+    Raises:
+        InternalError: If it is not what is expected at every step.
     """
-    part = exercised.part
-    outside = set.intersection(*(set(step.levels) for step in part.steps))
-    folding = _Folding(exercised, outside)
+    folding = _Folding(exercised)
     outputs = {}
-    for sum_ in recover(part.device, part.fuses).sums:
+    for sum_ in folding.realised.sums:
         pin, mode = sum_.cell.pin, sum_.mode
-        if pin is None or pin in outside or mode is None:
+        if pin is None or mode is None or mode.pin == "none":
             continue
-        products = folding.sum(sum_)
-        enable = folding.enable(sum_)
-        if products is None or enable is False:
-            return None
-        inverted = mode.pin == "sum'"
-        if not folding.agrees(pin, products, enable, inverted=inverted):
-            return None
-        outputs[pin] = (products, enable, inverted)
-    if not outputs:
-        return None
-    return _written(exercised, number, outputs)
+        own = _Output(folding.sum(sum_), folding.enable(mode.enable), mode.pin == "sum'")
+        if own.enable != ():
+            outputs[pin] = own
+    for pin, own in outputs.items():
+        for k, step in enumerate(exercised.part.steps):
+            sign = exercised.expected[pin][k]
+            if sign in "HLZ" and sign != own.reading(step.levels):
+                message = (
+                    f"the design of the exercise is not what step {k + 1} expects at pin {pin}"
+                )
+                raise InternalError([Diagnostic("NOT-EQUAL", message)])
+    return _written(exercised, number, outputs) if outputs else None
+
+
+@dataclass(frozen=True, slots=True)
+class _Output:
+    """What a pin shows: a sum or its complement, while its enable is 1 (``None``: always)."""
+
+    products: tuple[Product, ...]
+    enable: tuple[Product, ...] | None
+    inverted: bool
+
+    def reading(self, levels: Mapping[int, bool]) -> str:
+        if self.enable is not None and not _is_one(self.enable, levels):
+            return "Z"
+        return "H" if _is_one(self.products, levels) != self.inverted else "L"
+
+
+def _is_one(products: tuple[Product, ...], levels: Mapping[int, bool]) -> bool:
+    return any(all(levels[pin] == level for pin, level in product) for product in products)
 
 
 class _Folding:
-    def __init__(self, exercised: Exercised, outside: set[int]) -> None:
-        self.exercised, self.outside = exercised, outside
-        self.steps = exercised.part.steps
-        self.realised, self.found = worth(exercised.part.device, exercised.part)
+    """Rows as products of the pins that are set at every step."""
 
-    def sum(self, sum_: Sum) -> list[Product] | None:
-        found = [self.product(self.realised.rows[number]) for number in sum_.rows or ()]
-        return (
-            None if None in found else list(dict.fromkeys(p for own in found if own for p in own))
-        )
+    def __init__(self, exercised: Exercised) -> None:
+        part = exercised.part
+        self.steps = part.steps
+        self.outside = set.intersection(*(set(step.levels) for step in part.steps))
+        self.realised, self.found = worth(part.device, part)
 
-    def product(self, row: Row) -> list[Product] | None:
-        """What is left of a row, as no product or one; ``None`` if that depends on the step."""
-        if row.dead:
-            return []
-        own = frozenset(
-            (int(line.of), not line.complement)
-            for line in row.lines
-            if line.kind == "pin" and line.of in self.outside
-        )
-        rest = [line for line in row.lines if line.kind != "pin" or line.of not in self.outside]
-        if not rest:
-            return [own]
-        high = low = -1 if not row.floating else 0
-        low = 0
-        for line in rest:
-            one, zero = _carried(self.found, self.exercised, line)
-            high &= one
-            low |= zero
-        asked = [k for k in range(len(self.steps)) if self.is_one(own, k)]
-        if all(low >> k & 1 for k in asked):
-            return []
-        return [own] if all(high >> k & 1 for k in asked) else None
+    def sum(self, sum_: Sum) -> tuple[Product, ...]:
+        rows = [self.realised.rows[number] for number in sum_.rows or ()]
+        return tuple(dict.fromkeys(product for row in rows for product in self.row(row)))
 
-    def is_one(self, product: Product, step: int) -> bool:
-        return all(self.steps[step].levels[pin] == level for pin, level in product)
-
-    def enable(self, sum_: Sum) -> Product | bool | None:
-        """When a pin is driven: ``None`` always, ``False`` if no product of inputs says it."""
-        if sum_.mode is None:
-            return False
-        enable = sum_.mode.enable
+    def enable(self, enable: Enable) -> tuple[Product, ...] | None:
         if enable.row is not None:
-            row = self.realised.rows[enable.row]
-            found = None if row.dead else self.product(row)
-            return found[0] if found else False
+            return self.row(self.realised.rows[enable.row])
         if enable.pin is not None:
-            return frozenset([(enable.pin, not enable.active_low)])
+            return (frozenset([(enable.pin, not enable.active_low)]),)
         return None
 
-    def agrees(
-        self, pin: int, products: list[Product], enable: Product | bool | None, *, inverted: bool
-    ) -> bool:
-        """Whether this is what is expected at every step."""
-        for k in range(len(self.steps)):
-            on = not isinstance(enable, frozenset) or self.is_one(enable, k)
-            value = any(self.is_one(product, k) for product in products) != inverted
-            sign = "Z" if not on else "H" if value else "L"
-            expected = self.exercised.expected[pin][k]
-            if expected in "HLZ" and expected != sign:
-                return False
-        return True
+    def row(self, row: Row) -> tuple[Product, ...]:
+        """What is left of a row: no product, one, or one for each step at which it is 1."""
+        if row.dead or row.floating:
+            return ()
+        own, rest = set(), []
+        for line in row.lines:
+            if line.kind == "pin" and line.of in self.outside:
+                own.add((int(line.of), not line.complement))
+            else:
+                rest.append(line)
+        product = frozenset(own)
+        if not rest:
+            return (product,)
+        high, low = -1, 0
+        for line in rest:
+            one, zero = _carried(self.found, line)
+            high &= one
+            low |= zero
+        asked = [k for k, s in enumerate(self.steps) if _is_one((product,), s.levels)]
+        ones = [k for k in asked if high >> k & 1]
+        if ones and not any(low >> k & 1 for k in asked):
+            return (product,)
+        return tuple(
+            frozenset((pin, self.steps[k].levels[pin]) for pin in self.outside) for k in ones
+        )
 
 
-def _carried(found: Evaluated[Word], exercised: Exercised, line: Line) -> Word:
+def _carried(found: Evaluated[Word], line: Line) -> Word:
     if line.kind == "sum":
         high, low = found.sums[line.of]
     else:
@@ -136,20 +138,17 @@ def _carried(found: Evaluated[Word], exercised: Exercised, line: Line) -> Word:
     return (low, high) if line.complement else (high, low)
 
 
-def _written(
-    exercised: Exercised,
-    number: int,
-    outputs: dict[int, tuple[list[Product], Product | bool | None, bool]],
-) -> str:
+def _written(exercised: Exercised, number: int, outputs: Mapping[int, _Output]) -> str:
     device = exercised.part.device
-    used: set[int] = set()
-    for products, enable, _ in outputs.values():
-        used.update(pin for product in products for pin, _ in product)
-        if isinstance(enable, frozenset):
-            used.update(pin for pin, _ in enable)
+    used = {
+        pin
+        for own in outputs.values()
+        for product in (*own.products, *(own.enable or ()))
+        for pin, _ in product
+    }
     lines = [
-        f"# What part {number} of the exercise of {device.name} does, pin by pin, at the steps of",
-        "# its table. Feedback is folded in.",
+        f"# What part {number} of the exercise of {device.name} does at the steps of its table,",
+        "# pin by pin. Feedback is folded in.",
         f"name = {json.dumps(f'Exercise of {device.name}, part {number}', ensure_ascii=False)}",
         "",
         "[inputs]",
@@ -157,20 +156,20 @@ def _written(
         "",
         "[outputs]",
     ]
-    for pin, (_, enable, _) in sorted(outputs.items()):
-        if isinstance(enable, frozenset):
-            lines.append(f'pin{pin} = {{ enable = "{_literals(enable)}" }}')
-        else:
+    for pin, own in sorted(outputs.items()):
+        if own.enable is None:
             lines.append(f"pin{pin} = 1")
+        else:
+            lines.append(f'pin{pin} = {{ enable = "{" + ".join(map(_literals, own.enable))}" }}')
     lines += ["", "[logic]"]
-    for pin, (products, _, inverted) in sorted(outputs.items()):
-        lines += _equation(pin, list(map(_literals, products)), inverted=inverted)
+    for pin, own in sorted(outputs.items()):
+        lines += _equation(pin, list(map(_literals, own.products)), inverted=own.inverted)
     lines += ["", f"[place.{json.dumps(device.name, ensure_ascii=False)}]"]
     lines += [f"pin{pin} = {pin}" for pin in sorted({*used, *outputs})]
     return "\n".join(lines) + "\n"
 
 
-def _literals(product: Iterable[tuple[int, bool]]) -> str:
+def _literals(product: Product) -> str:
     return " ".join(f"pin{pin}" + ("" if level else "'") for pin, level in sorted(product)) or "1"
 
 

@@ -66,10 +66,7 @@ def _on_files(files: Sequence[str], *, has_design: bool) -> Iterator[str]:
         if ending in what:
             yield f"{name}: {what[ending]}"
     if not has_design:
-        yield (
-            "There is no design file: what the outputs do depends on feedback in a way that sums "
-            "of products of the inputs do not say."
-        )
+        yield ("There is no design file, since no pin is ever driven.")
 
 
 def _setting_up(exercised: Exercised) -> Iterator[str]:
@@ -115,12 +112,11 @@ def _step_table(exercised: Exercised) -> Table:
         )
         for k, step in enumerate(steps)
     ]
-    remarks = [
-        (
-            "H high, L low, Z high impedance; - the pin is set from outside at this step; ? the level "
-            "is not known, do not compare it."
-        )
-    ]
+    signs = (
+        "H high, L low, Z high impedance; - the pin is set from outside at this step; ? the level "
+        "is not known, do not compare it."
+    )
+    remarks = [signs]
     neighbours = [k + 1 for k, step in enumerate(steps) if step.neighbour is not None]
     if neighbours:
         remarks.append(
@@ -137,23 +133,19 @@ def _step_table(exercised: Exercised) -> Table:
 
 
 def _telling_table(exercised: Exercised, tried: int) -> Table:
-    lead = [
-        (
-            f"{tried} slips in the device file were tried, one at a time: "
-            f"{len(exercised.shown)} show at this part and at none before it. The table says where: "
-            "look up the places at which your readings differ, and suspect those slips first. Where "
-            "several are in the file at once, readings differ in more places."
-        )
-    ]
+    lead = (
+        f"{tried} slips in the device file were tried, one at a time: {len(exercised.shown)} show "
+        "at this part and at none before it. The table says where: look up the places at which "
+        "your readings differ, and suspect those slips first. Where several are in the file at "
+        "once, readings differ in more places."
+    )
     remarks = []
     if exercised.open:
-        remarks = [
-            (
-                "These do not show, neither at this part nor at one before it; either the part would "
-                "behave the same, or another part is needed (--parts all):"
-            ),
-            *(f"- {what}" for what in exercised.open),
-        ]
+        left = (
+            "These do not show, neither at this part nor at one before it; either the part would "
+            "behave the same, or another part is needed (--parts all):"
+        )
+        remarks = [left, *(f"- {what}" for what in exercised.open)]
     return Table(
         "If a reading differs",
         ("what may be wrong in the device file", "readings that differ", "where"),
@@ -161,7 +153,7 @@ def _telling_table(exercised: Exercised, tried: int) -> Table:
             (telling.what, str(len(telling.where)), _where(telling)) for telling in exercised.shown
         ),
         "lrl",
-        lead=tuple(lead),
+        lead=(lead,),
         remarks=tuple(remarks),
     )
 
