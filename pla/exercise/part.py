@@ -293,7 +293,8 @@ class _Maker:
             if not steps:
                 break
             at = steps.pop()
-            taken = _targets(dealt[at])
+            # A sum that another row makes 1 would hide a row that must be 0.
+            taken = {key for row in dealt[at] for key in row.sums}
             free = [key for key in array.sums if key not in taken]
             sums = frozenset(key for key in free if self.bits.word() % _ROWS_AT_ONCE == 0)
             sums = sums or frozenset(self.bits.shuffled(free)[:1])
@@ -305,7 +306,7 @@ class _Maker:
         return drop is not None and number in drop.terms and self.bits.word() % 5 == 0
 
     def _blocks(self) -> bool:
-        return self.bits.word() % 3 == 0
+        return self.bits.word() % 5 < 2
 
     def _levels(self, pattern: Mapping[int, bool]) -> dict[int, bool]:
         """What is set from outside, with some of the pins that the part lets go of."""
@@ -358,7 +359,11 @@ class _Maker:
         if not silent:
             return set(range(len(self.device.and_array.columns)))
         fed = [line for line in silent if line.kind == "sum" or line.of not in self.asked]
-        chosen = min(fed or silent, key=lambda line: self.turns.get(line, 0))
+        # One without an inverse shows in no other way that it is there.
+        chosen = min(
+            fed or silent,
+            key=lambda line: (self.turns.get(line, 0), line.inverse in self.column_of),
+        )
         self.turns[chosen] = self.turns.get(chosen, 0) + 1
         kept = {c for c in columns if line_of[c] != chosen.inverse}
         return kept | {self.column_of[chosen]}

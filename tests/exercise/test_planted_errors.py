@@ -4,6 +4,8 @@ The part is simulated by the oracle from the true device file. Every slip in the
 show at the pins, at a step for which the wrong description expects something else.
 """
 
+# ruff: noqa: E501 - edits quote whole lines of device files
+
 import shutil
 from pathlib import Path
 
@@ -40,7 +42,6 @@ SLIPS = [
     slip("modal-8x4-gated", "true-and-complement-blocks",
          ("1 2 3 4 5 6 8 9 10 11 12 13 1' 2' 3' 4' 5' 6' 8' 9' 10' 11' 12' 13'",
           "1' 2' 3' 4' 5' 6' 8' 9' 10' 11' 12' 13' 1 2 3 4 5 6 8 9 10 11 12 13")),
-    slip("swap-8x4", "neighbouring-columns", ("4 4' 11 11'", "4 11 4' 11'")),
     slip("shared-10x28x4", "empty-column-and-complement-line", (". c'", "c' .")),
     slip("shared-10x28x4", "true-line-for-complement-line", ("c'\"", 'c"')),
     slip("joint-10x27x6", "pin-and-sum-of-a-cell", ("12 12' u u'", "u u' 12 12'")),
@@ -51,9 +52,6 @@ SLIPS = [
     slip("own-9x5", "active-low-for-active-high",
          ('{ set = "", pin = "sum\'" }', '{ set = "", pin = "sum" }')),
     slip("shared-10x24x6", "sense-of-every-output", ('pin = "sum\'"', 'pin = "sum"')),
-    slip("swap-8x4", "polarity-of-one-mode",
-         ('{ set = "01", pin = "sum",  columns = "8 8\'"', '{ set = "01", pin = "sum\'",  columns = "8 8\'"'),
-         ('{ set = "11", pin = "sum\'", columns = "8 8\'"', '{ set = "11", pin = "sum", columns = "8 8\'"')),
     # feedback
     slip("shared-10x28x4", "feedback-of-buried-sums", ('set = "", feedback = "sum"', 'set = "", feedback = "sum\'"')),
     slip("modal-8x4-plain", "feedback-sense",
@@ -63,9 +61,6 @@ SLIPS = [
          ('set = "0", pin = "sum\'", feedback = "sum"', 'set = "0", pin = "sum\'", feedback = "sum\'"')),
     slip("joint-10x27x6", "feedback-sense", ('"sum",  feedback = "sum"', '"sum",  feedback = "sum\'"'),
          ('pin = "sum\'", feedback = "sum"', 'pin = "sum\'", feedback = "sum\'"')),
-    slip("modal-8x4-gated", "feedback-from-the-sum",
-         ('pin = "sum\'", feedback = "pin"', 'pin = "sum\'", feedback = "sum\'"'),
-         ('pin = "sum",  feedback = "pin"', 'pin = "sum",  feedback = "sum"')),
     # rows and steps
     slip("modal-8x4-plain", "rows-of-two-cells",
          ('{ pin = 13, rows = "0..5",', '{ pin = 13, rows = "18..23",'),
@@ -97,12 +92,10 @@ SLIPS = [
     # links
     slip("gate-9x6", "joining-state", ("connected = 0", "connected = 1")),
     slip("shared-10x24x6", "joining-state", ("connected = 0", "connected = 1")),
-    slip("own-9x5", "joining-state", ("connected = 0 ", "connected = 1 ")),
     slip("modal-8x4-plain", "dropping-state", ("dropped = 0", "dropped = 1")),
     # cells
     slip("gate-9x6", "polarity-links-of-two-cells",
          ("links = [437]", "links = [436]"), ('"4..7",  links = [436]', '"4..7",  links = [437]')),
-    slip("swap-8x4", "links-of-a-cell", ("links = [120, 121]", "links = [121, 120]")),
     slip("shared-10x28x4", "polarity-links-of-two-cells",
          ("links = [1195]", "links = [1192]"), ("28, links = [1192]", "28, links = [1195]")),
     slip("shared-8x16x4", "or-columns", ('"13 12 11 10"', '"10 11 12 13"')),
@@ -121,6 +114,18 @@ SLIPS = [
     slip("shared-10x28x4", "enable-rows-of-two-cells",
          ("pin = 12, enable = 31", "pin = 12, enable = 30"),
          ("pin = 13, enable = 30", "pin = 13, enable = 31")),
+]  # fmt: skip
+
+# The cells of the first part are not set in a way in which these would show.
+SLIPS_OF_LATER_PARTS = [
+    slip("swap-8x4", "links-of-a-cell", ("links = [120, 121]", "links = [121, 120]")),
+    slip("swap-8x4", "neighbouring-columns", ("4 4' 11 11'", "4 11 4' 11'")),
+    slip("swap-8x4", "polarity-of-one-mode",
+         ('{ set = "01", pin = "sum",  columns = "8 8\'"', '{ set = "01", pin = "sum\'",  columns = "8 8\'"'),
+         ('{ set = "11", pin = "sum\'", columns = "8 8\'"', '{ set = "11", pin = "sum", columns = "8 8\'"')),
+    slip("modal-8x4-gated", "feedback-from-the-sum",
+         ('pin = "sum\'", feedback = "pin"', 'pin = "sum\'", feedback = "sum\'"'),
+         ('pin = "sum",  feedback = "pin"', 'pin = "sum",  feedback = "sum"')),
 ]  # fmt: skip
 
 
@@ -157,6 +162,16 @@ def test_a_slip_shows_at_the_pins(device, edits, tmp_path):
     assert surely_differ(expected, measured(truth, states, steps))
 
 
+@pytest.mark.parametrize(("device", "edits"), SLIPS_OF_LATER_PARTS)
+def test_a_slip_shows_at_one_of_some_parts(device, edits, tmp_path):
+    path = wrong_file(tmp_path, device, edits)
+    truth = read_device_file(DEVICES / f"{device}.toml")
+    assert any(
+        surely_differ(expected, measured(truth, states, steps))
+        for expected, steps, states in exercised(path, most=4)
+    )
+
+
 @pytest.mark.parametrize("device", sorted({param.values[0] for param in SLIPS}))
 def test_nothing_shows_where_the_description_is_true(device):
     path = DEVICES / f"{device}.toml"
@@ -165,6 +180,7 @@ def test_nothing_shows_where_the_description_is_true(device):
 
 
 REFUSED = [
+    slip("own-9x5", "joining-state", ("connected = 0 ", "connected = 1 ")),
     slip("shared-8x16x4", "row-step-one-off", ("term_step = 20 ", "term_step = 21 ")),
     slip("shared-10x24x6", "or-step-one-off", ("term_step = 6", "term_step = 5")),
     slip("own-9x5", "first-fuse-one-off", ("first_fuse = 0", "first_fuse = 1")),
