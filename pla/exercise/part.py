@@ -30,6 +30,7 @@ _TEXT = "EXERCISE"
 _ROWS_AT_ONCE = 3
 _LEAST_STEPS = 16
 _BASES = 2
+_PAIR = 2  # a row that makes a sum 1, and one that its line keeps at 0
 
 
 @dataclass(frozen=True, slots=True)
@@ -125,6 +126,7 @@ class _Row:
         owner: What it is, in words.
         dropped: Its drop link cuts it off.
         blocked: One of its lines is 0 at the step, so that the row is 0 because of it.
+        watched: The sum whose line that shall be, if it matters.
     """
 
     number: int
@@ -132,6 +134,7 @@ class _Row:
     owner: str
     dropped: bool = False
     blocked: bool = False
+    watched: Source | None = None
 
     @property
     def targets(self) -> frozenset[Source]:
@@ -193,7 +196,7 @@ class _Maker:
         return found
 
     def part(self) -> Part:
-        patterns = self._patterns()
+        patterns = self.patterns
         rows = self._dealt(patterns)
         levels = [self._levels(pattern) for pattern in patterns]
         links: dict[int, int] = {**dict(self.device.mode_fuses)}
@@ -209,7 +212,7 @@ class _Maker:
                 settled = _targets(own[:place])
                 columns = self._columns(levels[step], settled, later)
                 if row.blocked:
-                    columns = self._blocked(columns, levels[step], settled, later)
+                    columns = self._blocked(row, columns, levels[step], settled, later)
                 links.update(live_row(self.device, row.number, columns))
                 if row.dropped and self.device.drop is not None:
                     links[self.device.drop.fuses[self.device.drop.terms.index(row.number)]] = (
@@ -240,7 +243,8 @@ class _Maker:
         senses = [level for level in (False, True) if Line("pin", pin, not level) in self.column_of]
         return senses[self.bits.word() % len(senses)]
 
-    def _patterns(self) -> list[dict[int, bool]]:
+    @cached_property
+    def patterns(self) -> list[dict[int, bool]]:
         """Levels of the outside pins at each step; no two alike in what rows depend on."""
         most_own = max((len(cell.rows) for cell in self.device.cells), default=0)
         shared = -(-len(self.device.shared_rows) // _ROWS_AT_ONCE)
@@ -289,7 +293,17 @@ class _Maker:
         if array is None:
             return
         steps = self.bits.shuffled(list(range(len(dealt))) * _ROWS_AT_ONCE)
-        for number in array.terms:
+        numbers = list(array.terms)
+        for key in self._lone_sums():
+            at = next((k for k in steps if self._watched(k, dealt, key)), None)
+            if at is None or len(numbers) < _PAIR:
+                continue
+            steps = [k for k in steps if k != at]
+            watched = frozenset(self._watched(at, dealt, key)[:1])
+            dealt[at].append(_Row(numbers.pop(), frozenset([key]), "shared term"))
+            blocked = _Row(numbers.pop(), watched, "shared term", blocked=True, watched=key)
+            dealt[at].append(blocked)
+        for number in numbers:
             if not steps:
                 break
             at = steps.pop()
@@ -300,6 +314,26 @@ class _Maker:
             sums = sums or frozenset(self.bits.shuffled(free)[:1])
             dropped = self._drops(number)
             dealt[at].append(_Row(number, sums, "shared term", dropped, self._blocks()))
+
+    def _lone_sums(self) -> list[Source]:
+        """Shared sums of which one sense only runs back: a line that is 0 tells them best."""
+        lines = [line for line in self.column_of if line.kind == "sum"]
+        return [
+            line.of
+            for line in lines
+            if line.inverse not in self.column_of and line.of in self.device.or_column
+        ]
+
+    def _watched(self, step: int, dealt: Sequence[Sequence[_Row]], key: Source) -> list[Source]:
+        """Other shared sums that are seen at a step and that nothing makes 1 there."""
+        taken = {own for row in dealt[step] for own in row.sums} | {key}
+        return [
+            other
+            for other in self.device.or_column
+            if other not in taken
+            and self.device.cell_of[other].pin is not None
+            and self._drives(other, self.patterns[step])
+        ]
 
     def _drops(self, number: int) -> bool:
         drop = self.device.drop
@@ -344,6 +378,7 @@ class _Maker:
 
     def _blocked(
         self,
+        row: _Row,
         columns: set[int],
         levels: Mapping[int, bool],
         ones: frozenset[Source],
@@ -358,7 +393,8 @@ class _Maker:
         silent += [line_of[column] for column in sorted(alone) if line_of[column] not in silent]
         if not silent:
             return set(range(len(self.device.and_array.columns)))
-        fed = [line for line in silent if line.kind == "sum" or line.of not in self.asked]
+        fed = [line for line in silent if line.kind == "sum" and line.of == row.watched]
+        fed = fed or [line for line in silent if line.kind == "sum" or line.of not in self.asked]
         # One without an inverse shows in no other way that it is there.
         chosen = min(
             fed or silent,
