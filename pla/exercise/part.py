@@ -208,7 +208,8 @@ class _Maker:
             words[number] = what
         for step, own in enumerate(rows):
             for place, row in enumerate(own):
-                later = _targets(own[place:])
+                # Blocked rows too: nothing that a row reads may depend on it.
+                later = frozenset(key for r in own[place:] if not r.dropped for key in r.sums)
                 settled = _targets(own[:place])
                 columns = self._columns(levels[step], settled, later)
                 if row.blocked:

@@ -46,7 +46,9 @@ def test_few_readings_are_unknown(path):
 
 
 @pytest.mark.parametrize("which", CLASSES)
-@pytest.mark.parametrize("seed", range(12))
+@pytest.mark.parametrize(
+    "seed", [*range(4), *(pytest.param(n, marks=pytest.mark.slow) for n in range(4, 20))]
+)
 def test_random_devices(which, seed, tmp_path):
     path = random_class_device(random.Random(f"exercise {which} {seed}"), which).write(tmp_path)
     for number in (1, 2):
