@@ -66,7 +66,7 @@ def _on_files(files: Sequence[str], *, has_design: bool) -> Iterator[str]:
         if ending in what:
             yield f"{name}: {what[ending]}"
     if not has_design:
-        yield ("There is no design file, since no pin is ever driven.")
+        yield ("There is no design file: no pin is ever driven, or it would be too large.")
 
 
 def _setting_up(exercised: Exercised) -> Iterator[str]:
