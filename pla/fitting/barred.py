@@ -11,9 +11,10 @@ from pla.fitting.spots import Spots
 if TYPE_CHECKING:
     from collections.abc import Iterator, Sequence
 
+    from pla.device.model import Enable
     from pla.fitting.netlist import Net
     from pla.fitting.problem import Problem
-    from pla.fitting.scenario import Scenario
+    from pla.fitting.scenario import Scenario, Switch
 
 __all__ = ["Ways", "barred_reasons", "offered"]
 
@@ -59,6 +60,8 @@ def _trouble(problem: Problem, ways: Ways, net: Net) -> str | None:
     if net.enable is not None and problem.enables[net.index] is None:
         needed = problem.minima.enable(problem.netlist, net.index)
         least = "" if needed.proven else f" (at least {needed.lower_bound} are needed)"
+        if not _has_enables(problem):
+            return "no cell has an output enable, which {} would need"
         return (
             f"the enable of {{}} needs {needed.count} product terms{least}, and no cell has more "
             "than one for it"
@@ -69,12 +72,42 @@ def _trouble(problem: Problem, ways: Ways, net: Net) -> str | None:
         verb = "reads" if placed is None else "read"
         return f"{where} {verb} its pin back, as is asked for {{}}"
     if net.enable is not None and offered(problem, ways, replace(net, enable=None, reads=None)):
-        pins = problem.device.enable_pins
-        if pins and problem.switches[net.index] is None:
+        pins, switch = problem.device.enable_pins, problem.switches[net.index]
+        if not _has_enables(problem):
+            return "no cell has an output enable, which {} would need"
+        if pins and switch is None:
             named = f"pin {pins[0]}" if len(pins) == 1 else f"pins {listed(list(map(str, pins)))}"
             return (
                 f"the enable of {{}} is not one input alone, and cells are enabled by {named} only"
             )
+        if switch is not None and _wrong_level(problem, switch):
+            name = problem.netlist.design.inputs[switch.index].name
+            high = switch.value != problem.netlist.design.inputs[switch.index].active_low
+            level, other = ("high", "low") if high else ("low", "high")
+            return (
+                f"{{}} drives while the pin of {name} is {level}, and cells are enabled only while "
+                f"their enable pin is {other}"
+            )
         verb = "has" if placed is None else "have"
         return f"{where} {verb} an output enable that {{}} could use"
     return None
+
+
+def _enables(problem: Problem) -> list[Enable]:
+    return [
+        mode.enable
+        for cell in problem.device.cells
+        for mode in cell.modes
+        if mode.pin != "none" and mode.enable.kind != "always"
+    ]
+
+
+def _has_enables(problem: Problem) -> bool:
+    return bool(_enables(problem))
+
+
+def _wrong_level(problem: Problem, switch: Switch) -> bool:
+    """Whether an input would enable at the other level only than every enable pin."""
+    enables = _enables(problem)
+    active_low = switch.value == problem.netlist.design.inputs[switch.index].active_low
+    return all(e.kind == "pin" and e.active_low != active_low for e in enables)

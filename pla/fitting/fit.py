@@ -7,10 +7,13 @@ from itertools import combinations, islice
 from typing import TYPE_CHECKING
 
 from pla.errors import Diagnostic
+from pla.fitting.crowding import listed
+from pla.fitting.delays import late_outputs
 from pla.fitting.minima import Minima
 from pla.fitting.model import Fit, Usage
+from pla.fitting.netlist import choices
 from pla.fitting.places import settled_places
-from pla.fitting.placing import delays, plan_of
+from pla.fitting.placing import plan_of
 from pla.fitting.problem import Problem
 from pla.fitting.search import best_layout, ways
 from pla.fitting.shortage import Shortage
@@ -64,9 +67,12 @@ def fit(
     reasons = list(_too_long(behaviour, device))
     found = best_layout(problem)
     if found is None:
-        reasons = [*shortage.reasons, *reasons]
-    else:
-        reasons += _late(found)
+        reasons = [*shortage.reasons, *_fed_back(problem, shortage), *reasons]
+    elif found.rank[0]:
+        fed = found.layout.problem.netlist.fed
+        # What is late with signals fed back does not fit with none of them.
+        folded_in = [f"with nothing fed back, {r}" for r in shortage.reasons] if fed else []
+        reasons = [*_late(found), *folded_in, *reasons]
     if found is None or reasons:
         released = _released(problem, behaviour.places.get(device.name, ())) if places else ()
         return _fit(shortage, None, tuple(reasons), released)
@@ -83,7 +89,12 @@ def _fit(
     count = 0 if minimum is None else minimum.count
     inputs = len(shortage.needed_inputs)
     if plan is not None:
-        inputs = sum((p.used and p.fed_by is None) or p.name in problem.places for p in plan.inputs)
+        own = [
+            p
+            for p in plan.inputs
+            if p.fed_by is None and plan.behaviour.inputs[p.index].read_from is None
+        ]
+        inputs = sum(p.used or p.name in problem.places for p in own)
     capacity = sum(cell.capacity for cell in device.cells)
     return Fit(
         behaviour,
@@ -121,13 +132,30 @@ def _fits_with(problem: Problem, places: tuple[Place, ...]) -> bool:
 
 
 def _late(found: Found) -> list[str]:
-    design = found.layout.problem.netlist.design
+    fed = found.layout.problem.netlist.fed
+    how = f"with {listed(fed)} fed back, " if fed else ""
     return [
-        f"{design.output_names[delay.output]} may take {float(delay.worst):g} ns, and "
-        f"{float(delay.allowed):g} ns are allowed"
-        for delay in delays(found.layout)
-        if delay.late and delay.worst is not None and delay.allowed is not None
+        f"{how}{name} may take {float(worst):g} ns, and {float(allowed):g} ns are allowed"
+        for name, worst, allowed in late_outputs(plan_of(found.layout))
     ]
+
+
+def _fed_back(problem: Problem, shortage: Shortage) -> list[str]:
+    """What stands in the way of the most promising choice of signals to feed back."""
+    design = problem.netlist.design
+    if len(design.outputs) > len(problem.device.output_pins):
+        return []
+    tried: list[tuple[int, int, list[str]]] = []
+    for chosen in choices(design):
+        nets = problem.minima.netlist(design, chosen) if chosen else None
+        if nets is None:
+            continue
+        own = replace(problem, netlist=nets)
+        other = Shortage(own, list(ways(own)))
+        if other.minimum is not None or shortage.minimum is None:
+            reasons = [f"with {listed(chosen)} fed back, {reason}" for reason in other.reasons]
+            tried.append((other.minimum is None, other.lacking, reasons))
+    return min(tried, key=lambda t: t[:2])[2] if tried else []
 
 
 def _too_long(behaviour: Behaviour, device: Device) -> list[str]:
@@ -138,7 +166,16 @@ def _too_long(behaviour: Behaviour, device: Device) -> list[str]:
 
 
 def _doubts(behaviour: Behaviour, device: Device) -> list[Diagnostic]:
-    if behaviour.signature is None or device.signature is not None:
-        return []
-    message = f"{device.name} has no signature fuses: the signature is left out"
-    return [Diagnostic("SIGNATURE-NONE", message, device.location, None, "warning")]
+    found = []
+    if behaviour.signature is not None and device.signature is None:
+        message = f"{device.name} has no signature fuses: the signature is left out"
+        found.append(Diagnostic("SIGNATURE-NONE", message, device.location, None, "warning"))
+    asked = [o for o in behaviour.outputs if o.max_delay or behaviour.max_delay]
+    if asked and device.timing.tpd is None:
+        message = (
+            f"{device.name} gives no delays, so that the max_delay of "
+            f"{listed([output.name for output in asked])} is not checked"
+        )
+        hint = "add [timing] with tpd from the data sheet to the device file"
+        found.append(Diagnostic("DELAY-UNKNOWN", message, asked[0].location, hint, "warning"))
+    return found

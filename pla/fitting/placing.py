@@ -2,51 +2,23 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import replace
 from typing import TYPE_CHECKING, Literal
 
 from pla.device.model import Line
+from pla.fitting.delays import Ways
 from pla.fitting.model import PlacedEnable, PlacedInput, PlacedOutput, Plan
 from pla.fitting.offers import column_pair, fed_lines
 from pla.fitting.scenario import Switch
 
 if TYPE_CHECKING:
     from collections.abc import Iterable, Iterator, Mapping
-    from fractions import Fraction
 
     from pla.device.model import Mode, Source
     from pla.fitting.layout import Layout
     from pla.logic.cubes import Cube
 
-__all__ = ["Delay", "delays", "passes_of", "plan_of"]
-
-
-@dataclass(frozen=True, slots=True)
-class Delay:
-    """The longest delay of an output, in ns, and what the design allows.
-
-    Attributes:
-        output: Which output of the design.
-        worst: From any input; ``None`` where the device gives no figure.
-        allowed: ``None`` where nothing is asked.
-    """
-
-    output: int
-    worst: Fraction | None
-    allowed: Fraction | None
-
-    @property
-    def late(self) -> bool:
-        return self.worst is not None and self.allowed is not None and self.worst > self.allowed
-
-
-def delays(layout: Layout) -> list[Delay]:
-    """The delay of each output of the design."""
-    design, timing = layout.problem.netlist.design, layout.problem.device.timing
-    return [
-        Delay(j, timing.delay(passes), output.max_delay or design.max_delay)
-        for j, (output, passes) in enumerate(zip(design.outputs, passes_of(layout), strict=False))
-    ]
+__all__ = ["plan_of"]
 
 
 def plan_of(layout: Layout) -> Plan:
@@ -54,7 +26,7 @@ def plan_of(layout: Layout) -> Plan:
     problem = layout.problem
     netlist, device = problem.netlist, problem.device
     modes = _modes(layout)
-    return Plan(
+    plan = Plan(
         netlist.design,
         netlist.behaviour,
         device,
@@ -64,30 +36,8 @@ def plan_of(layout: Layout) -> Plan:
         tuple(_rows(layout)),
         modes,
         tuple(_tied(layout)),
-        passes_of(layout),
     )
-
-
-def passes_of(layout: Layout) -> tuple[int, ...]:
-    """For each net the passes through the array on the longest way to it."""
-    netlist = layout.problem.netlist
-    holder = {net.fed: net.index for net in netlist.nets if net.fed is not None}
-    found: dict[int, int] = {}
-
-    def visit(j: int) -> int:
-        if j not in found:
-            used = _literals(_cubes_of(layout, j))
-            found[j] = 1 + max((visit(holder[i]) for i in holder if used >> i & 1), default=0)
-        return found[j]
-
-    return tuple(visit(net.index) for net in netlist.nets)
-
-
-def _cubes_of(layout: Layout, j: int) -> Iterator[Cube]:
-    yield from layout.minimum.cover.of_output(j)
-    enable = layout.problem.enables[j]
-    if enable is not None:
-        yield enable
+    return replace(plan, passes=Ways(plan).passes)
 
 
 def _modes(layout: Layout) -> dict[Source, Mode]:

@@ -7,9 +7,10 @@ from itertools import product
 from typing import TYPE_CHECKING
 
 from pla.fitting.barred import offered
+from pla.fitting.delays import late_outputs
 from pla.fitting.layout import layout
 from pla.fitting.netlist import choices, restrictions
-from pla.fitting.placing import delays, passes_of
+from pla.fitting.placing import plan_of
 from pla.fitting.scenario import has_single_lines, scenarios, taken_apart
 from pla.fitting.spots import Spots
 from pla.logic.phases import Polarity
@@ -136,8 +137,8 @@ def _hopeless(problem: Problem, shared: frozenset[int], known: Found | None) -> 
 def _judged(found: Layout | None) -> Found | None:
     if found is None:
         return None
-    late = sum(delay.late for delay in delays(found))
-    passes = max(passes_of(found), default=0)
+    plan = plan_of(found)
+    late, passes = len(late_outputs(plan)), max(plan.passes, default=0)
     minimum, fed = found.minimum, len(found.problem.netlist.fed)
     return Found(found, (late, minimum.count, passes, fed, minimum.cover.links))
 

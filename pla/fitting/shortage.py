@@ -255,14 +255,15 @@ class Shortage:
                 has = max(self._rooms(net, c))
                 found = problem.alone(net, c)
                 bound = "" if found.proven else f" (at least {found.lower_bound})"
-                sizes.append(
-                    f"{found.count} product terms{bound}{' as the complement' if c else ''}"
-                )
+                noun = "product term" if found.count == 1 else "product terms"
+                sizes.append(f"{found.count} {noun}{bound}{' as the complement' if c else ''}")
                 short = found.count - has
                 if best is None or short < best[0]:
-                    best = short, str(has)
+                    best = short, str(has + problem.reserve)
             if best is not None and best[0] > 0:
                 words = f"{' or '.join(sizes)}, and the largest cell it could have holds {best[1]}"
+                if problem.reserve:
+                    words += f", {problem.reserve} of them to be kept spare"
                 yield net, best[0], words
 
     def _rooms(self, net: Net, complemented: bool) -> Iterator[int]:
@@ -277,8 +278,7 @@ class Shortage:
         if self.minimum is None:
             return
         for net, short, words in self._short_sums():
-            kept = f", {self.problem.reserve} kept spare" if self.problem.reserve else ""
-            yield f"{net.name} needs {words}{kept}: {short} too many"
+            yield f"{net.name} needs {words}: {short} too many"
 
     def _carried_in_vain(self) -> list[str]:
         """Inputs that would have to be on an enable pin, where terms cannot read them."""

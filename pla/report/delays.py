@@ -5,6 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
+from pla.fitting.delays import Ways
 from pla.report.table import Table
 
 if TYPE_CHECKING:
@@ -50,35 +51,18 @@ def output_delays(plan: Plan) -> tuple[OutputDelay, ...]:
 def _delay_of(plan: Plan, placed: PlacedOutput) -> OutputDelay:
     design, timing = plan.design, plan.device.timing
     output = design.outputs[placed.index]
-    passes = _passes(plan, placed)
+    passes, ways = _passes(plan, placed), Ways(plan)
     asked = output.max_delay if output.max_delay is not None else design.max_delay
     enabled = disabled = None
     if placed.enable is not None:
         enabled, disabled = (
-            _switched(plan, placed, figure) for figure in (timing.ten, timing.tdis)
+            ways.switched(placed.index, figure) for figure in (timing.ten, timing.tdis)
         )
-    return OutputDelay(output.name, passes, timing.delay(passes), asked, enabled, disabled)
+    return OutputDelay(output.name, passes, ways.worst[placed.index], asked, enabled, disabled)
 
 
 def _passes(plan: Plan, placed: PlacedOutput) -> int:
     return plan.passes[placed.index] if plan.passes else 1
-
-
-def _switched(plan: Plan, placed: PlacedOutput, figure: Fraction | None) -> Fraction | None:
-    """The figure, and the ways to the fed-back signals that the enable depends on."""
-    timing, enable = plan.device.timing, placed.enable
-    if figure is None or enable is None:
-        return None
-    before = 0
-    for signal in plan.inputs:
-        literals = enable.cube.ones | enable.cube.zeros
-        if signal.fed_by is not None and literals >> signal.index & 1:
-            source = next(p for p in plan.outputs if p.cell.key == signal.fed_by)
-            before = max(before, _passes(plan, source))
-    further = timing.tfb if timing.tfb is not None else timing.tpd
-    if not before:
-        return figure
-    return None if further is None else figure + before * further
 
 
 def delay_table(delays: Sequence[OutputDelay]) -> Table | None:

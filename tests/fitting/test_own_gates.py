@@ -287,7 +287,7 @@ def test_reserve_is_kept_in_every_gate(tmp_path):
     (reason,) = refused.reasons
     assert reason == (
         "y0 needs 2 product terms or 2 product terms as the complement, and the largest cell it "
-        "could have holds 1, 2 kept spare: 1 too many"
+        "could have holds 3, 2 of them to be kept spare: 1 too many"
     )
 
 

@@ -99,8 +99,10 @@ def test_an_enabling_signal_that_terms_need_too(tmp_path):
     high = written(tmp_path, inputs, {"f": '{ enable = "oe" }', "p": 1}, logic)
     found = fit(high, find_device("gate-9x6"))
     assert found.reasons == (
-        "oe would have to be on enable pin 11, and terms need oe too, but that pin has no line for "
-        "them in the AND array: give them an input of its own that is wired to the same signal",
+        (
+            "oe would have to be on enable pin 11, and terms need oe too, but that pin has no line for "
+            "them in the AND array: give them an input of its own that is wired to the same signal"
+        ),
     )
 
 
@@ -114,7 +116,7 @@ def test_an_enabling_signal_that_terms_need_too(tmp_path):
             id="by pin only",
         ),
         pytest.param(
-            "shared-12x32x6", "a", "no cell has an output enable that f could use", id="none"
+            "shared-12x32x6", "a", "no cell has an output enable, which f would need", id="none"
         ),
         pytest.param(
             "own-9x5",

@@ -198,10 +198,11 @@ def test_folded_inner_signals_say_so(planned):
 @pytest.mark.parametrize(
     ("timing", "motor", "horn_on"),
     [
-        pytest.param({}, Fraction(45, 2), 18, id="as given"),
-        pytest.param({"tfb": None}, 30, 18, id="a second pass takes as long as the first"),
+        # From an input to the pin of line, 15; in again to stuck, 15; fed back to motor, 7.5.
+        pytest.param({}, Fraction(75, 2), 18, id="as given"),
+        pytest.param({"tfb": None}, 45, 18, id="a second pass takes as long as the first"),
         pytest.param({"tpd": None}, None, 18, id="no delay"),
-        pytest.param({"ten": None}, Fraction(45, 2), None, id="no enable time"),
+        pytest.param({"ten": None}, Fraction(75, 2), None, id="no enable time"),
     ],
 )
 def test_delays(hopper, timing, motor, horn_on):
@@ -209,13 +210,13 @@ def test_delays(hopper, timing, motor, horn_on):
     device = replace(outcome.device, timing=replace(outcome.device.timing, **timing))
     delays = {d.output: d for d in output_delays(replace(outcome.plan, device=device))}
     assert list(delays) == ["line", "horn", "motor", "lamp"]
-    assert [d.passes for d in delays.values()] == [1, 1, 2, 2]
+    assert [d.passes for d in delays.values()] == [1, 1, 3, 3]
     assert (delays["motor"].worst, delays["horn"].enabled) == (motor, horn_on)
     assert delays["lamp"].enabled is None
-    assert {d.asked for d in delays.values()} == {25}
+    assert {d.asked for d in delays.values()} == {40}
     text = " ".join(delay_table(tuple(delays.values())).remarks)
     assert ("delays are not known" in text) == (motor is None)
-    assert ("TOO SLOW: motor, lamp." in text) == (motor is not None and motor > 25)
+    assert ("TOO SLOW: motor, lamp." in text) == (motor is not None and motor > 40)
 
 
 def test_an_enable_that_waits_for_a_fed_back_signal(hopper):
@@ -373,8 +374,8 @@ def test_document(tmp_path, capsys):
     }
     assert found["cells"]["b1"]["terms"] == {"used": 2, "available": 3}
     assert found["cells"]["11"]["signal"] is None
-    assert found["passes"] == {"line": 1, "horn": 1, "motor": 2, "lamp": 2}
-    assert found["delay"] == {"line": 15, "horn": 15, "motor": 22.5, "lamp": 22.5}
+    assert found["passes"] == {"line": 1, "horn": 1, "motor": 3, "lamp": 3}
+    assert found["delay"] == {"line": 15, "horn": 15, "motor": 37.5, "lamp": 37.5}
     assert found["tied"] == {}
     assert found["signature"] == "H1"
     assert found["label"][0] == "Hopper card"
@@ -422,13 +423,13 @@ def test_budget_shows_headroom_and_delays():
     found = budgets(behaviour, [find_device(str(GATES))])
     text = budgets_text(behaviour, found)
     told = "horn 2 of 3, motor 2 of 3, stuck 2 of 3, line 1 of 3,"
-    pattern = rf"^gates-5x4 +{told} +2 +22\.5 ns  25 ns\n +lamp 2 of 4$"
+    pattern = rf"^gates-5x4 +{told} +3 +37\.5 ns  40 ns\n +lamp 2 of 4$"
     assert re.search(pattern, text, re.MULTILINE)
     (entry,) = budgets_document(behaviour, found, "free", 0)["devices"]
     assert entry["family"] == "gates-5x4"
     assert entry["cells"]["motor"] == {"used": 2, "available": 3, "spare": 1}
-    assert entry["delay"]["motor"] == 22.5
-    assert set(entry["max_delay"].values()) == {25}
+    assert entry["delay"]["motor"] == 37.5
+    assert set(entry["max_delay"].values()) == {40}
 
 
 def test_modes_of_a_family_stand_together():
