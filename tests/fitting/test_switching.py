@@ -100,8 +100,9 @@ def test_an_enabling_signal_that_terms_need_too(tmp_path):
     found = fit(high, find_device("gate-9x6"))
     assert found.reasons == (
         (
-            "oe would have to be on enable pin 11, and terms need oe too, but that pin has no line for "
-            "them in the AND array: give them an input of its own that is wired to the same signal"
+            "oe would have to be on enable pin 11, and terms need oe too, but that pin has no line "
+            "for them in the AND array: give them an input of its own that is wired to the same "
+            "signal"
         ),
     )
 
