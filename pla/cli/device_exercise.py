@@ -150,6 +150,10 @@ def _judge(device: str, readings: str, *, as_json: bool) -> int:
         raise InputError([Diagnostic("SHEET-OTHER", message, Location(readings))])
     own = made.parts[sheet.part - 1]
     found = find_slips(sheet, own)
+    if not found.count:
+        hint = "fill in the columns that begin with 'measured': H, L or Z"
+        empty = Diagnostic("SHEET-EMPTY", "no reading is filled in", Location(readings), hint)
+        raise InputError([empty])
     if as_json:
         emit_json(findings_document(found, own, sheet.part))
     else:

@@ -91,6 +91,14 @@ def test_a_sheet_that_is_none(folder, capsys):
     assert "expected H, L, Z or nothing" in err
 
 
+def test_an_empty_sheet_is_no_agreement(folder, capsys):
+    assert run([*GATE, "-o", str(folder)]) == 0
+    sheet = filled(folder, lambda _, __: "")
+    capsys.readouterr()
+    assert run([*GATE, "--readings", sheet]) == 2
+    assert "no reading is filled in [SHEET-EMPTY]" in capsys.readouterr().err
+
+
 def test_a_sheet_of_another_device(folder, capsys):
     assert run([*GATE, "-o", str(folder)]) == 0
     sheet = filled(folder, lambda sign, _: sign)
