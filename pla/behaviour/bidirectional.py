@@ -5,10 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
-import numpy as np
-
-from pla.logic import algebra
-from pla.logic.cubes import Cover
+from pla.behaviour.rings import where_it_matters
 
 if TYPE_CHECKING:
     from collections.abc import Iterator, Mapping
@@ -17,6 +14,7 @@ if TYPE_CHECKING:
     from pla.behaviour.model import Enabling
     from pla.behaviour.signals import Signals
     from pla.errors import Diagnostics, Location
+    from pla.logic.cubes import Cover
     from pla.logic.function import Function
 
 __all__ = ["report_holding"]
@@ -47,7 +45,7 @@ def report_holding(
     signals: Signals,
     claims: Claims,
     diagnostics: Diagnostics,
-) -> None:
+) -> frozenset[str]:
     """Report every bidirectional bit whose value or enable depends on its own pin.
 
     Args:
@@ -56,6 +54,9 @@ def report_holding(
         signals: What is declared.
         claims: Where each output is described.
         diagnostics: Takes one error for the bits that are described at one place.
+
+    Returns:
+        The names of these bits.
     """
     groups: dict[tuple[str, Location], list[_Holding]] = {}
     for holding in _holding(function, enables, signals, claims):
@@ -74,6 +75,7 @@ def report_holding(
             "an output may depend on what other pins read, and on its own pin only while it does "
             "not drive it",
         )
+    return frozenset(holding.output for group in groups.values() for holding in group)
 
 
 def _holding(
@@ -105,19 +107,6 @@ def _holding(
 
 def _change(on: Cover, off: Cover, position: int) -> tuple[int, int] | None:
     """A combination of the other inputs at which one input alone turns 1 into 0: point and mask."""
-    for value in (0, 1):
-        ones, zeros = _cofactor(on, position, value), _cofactor(off, position, 1 - value)
-        found = algebra.find_common(ones, zeros)
-        if found is not None:
-            one, zero = list(ones)[found[0]], list(zeros)[found[1]]
-            point = one.ones | zero.ones
-            return point, point | one.zeros | zero.zeros
+    for cube in where_it_matters(on, off, position):
+        return cube.ones, cube.ones | cube.zeros
     return None
-
-
-def _cofactor(cover: Cover, position: int, value: int) -> Cover:
-    """The cover as a function of the other inputs while one input has this value."""
-    bit = np.uint64(1 << position)
-    other = cover.zeros if value else cover.ones
-    held = cover.take(other & bit == 0)
-    return Cover(cover.n_inputs, held.ones & ~bit, held.zeros & ~bit, held.outputs)

@@ -148,6 +148,7 @@ class Behaviour:
             others (outputs and inner signals, not inputs), in order of declaration. There is no
             ring among them: what an enable names in a ring is left out here, and folded in.
         signature: Text for the device's signature fuses; ``None`` if not given.
+        signature_at: Where it stands; ``None`` if the design file does not give it.
         max_delay: The longest delay of any output, in ns; ``None`` where nothing is asked.
     """
 
@@ -165,6 +166,7 @@ class Behaviour:
     inner_function: Function | None = None
     named: Mapping[str, tuple[str, ...]] = field(default_factory=lambda: MappingProxyType({}))
     signature: str | None = None
+    signature_at: Location | None = None
     max_delay: Fraction | None = None
 
     @property

@@ -18,6 +18,7 @@ from pla.behaviour.minterms import read_minterms
 from pla.behaviour.model import Behaviour, Inner, Input, Output
 from pla.behaviour.naming import named_by
 from pla.behaviour.places import read_places
+from pla.behaviour.rings import report_rings
 from pla.behaviour.unsupported import refuse_unsupported
 from pla.errors import Diagnostics, by_place
 from pla.logic import algebra
@@ -105,7 +106,8 @@ def behaviour_of(file: TomlFile) -> Behaviour:
         solved = solver.run()
         enablings = solve_enables(enables, never, solver, signals, diagnostics)
         whole = assemble(solved, enablings, never, signals)
-        report_holding(whole.outputs, enablings, signals, claims, diagnostics)
+        known = report_holding(whole.outputs, enablings, signals, claims, diagnostics)
+        report_rings(whole.outputs, enablings, never, signals, claims, known, diagnostics)
         if maps:
             from pla.behaviour.overlaps import warn_of_contention  # noqa: PLC0415 - likewise
 
@@ -132,6 +134,7 @@ def behaviour_of(file: TomlFile) -> Behaviour:
         inner_function=whole.inner,
         named=MappingProxyType(named_by(needs, enable_needs, signals)),
         signature=signature,
+        signature_at=None if signature is None else top.at("signature"),
         max_delay=max_delay,
     )
 

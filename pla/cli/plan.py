@@ -67,7 +67,7 @@ def command(
     refuse_existing(folder, force=force)
     behaviour = read_behaviour(design)
     if signature is not None:
-        behaviour = replace(behaviour, signature=_checked(signature) or None)
+        behaviour = replace(behaviour, signature=_checked(signature) or None, signature_at=None)
     array = find_device(device)
     elsewhere = places_elsewhere(behaviour, array)
     show_diagnostics((*behaviour.warnings, *array.warnings, *elsewhere))

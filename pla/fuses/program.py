@@ -7,7 +7,7 @@ from pathlib import Path
 from typing import TYPE_CHECKING
 
 from pla import __version__
-from pla.errors import Diagnostic, InternalError, RefusalError
+from pla.errors import Diagnostic, InputError, InternalError
 from pla.fuses.jesd3 import read_fuse_file, write_fuse_file
 from pla.fuses.link import link
 from pla.fuses.proof import prove
@@ -40,7 +40,7 @@ def fuse_file(plan: Plan, name: str) -> ProvenFile:
         name: Name of the file, for messages.
 
     Raises:
-        RefusalError: If the design's bidirectional outputs drive each other in a ring, so that
+        InputError: If the design's bidirectional outputs drive each other in a ring, so that
             they would hold whatever value they have.
         InternalError: If the bytes do not read back as written, or the array that they describe is
             not what the design asks for. Nothing has been written to the disk then.
@@ -57,7 +57,7 @@ def fuse_file(plan: Plan, name: str) -> ProvenFile:
     proof = prove(plan, back.fuses)
     found = proof.counterexample
     if found is not None and found.fault == "held":
-        raise RefusalError([_held(plan, found)])
+        raise InputError([_held(plan, found)])
     if found is not None:
         message = f"the fuse file is not equal to the design: {found.text}"
         raise InternalError([Diagnostic("NOT-EQUAL", message)])

@@ -281,4 +281,5 @@ def test_outputs_that_hold_themselves(seed):
         assert [diagnostic.code for diagnostic in found] == ["ENABLE-NEVER"]
         return
     assert {diagnostic.code for diagnostic in found} <= {"HOLDS-ITSELF"}
-    assert {diagnostic.location.line for diagnostic in found} == expected
+    own = [diagnostic for diagnostic in found if "hold each other" not in diagnostic.message]
+    assert {diagnostic.location.line for diagnostic in own} == expected

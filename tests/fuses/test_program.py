@@ -7,7 +7,7 @@ from hand_plans import minimum
 from small_array import small_array
 from test_faults import passing
 
-from pla.errors import InternalError, RefusalError
+from pla.errors import InputError, InternalError
 from pla.fitting.model import PlacedEnable, PlacedOutput
 from pla.fuses.jesd3 import read_fuse_file
 from pla.fuses.program import fuse_file
@@ -73,7 +73,7 @@ def test_notes(device):
 
 def test_a_design_that_holds_itself_is_refused(device):
     made = passing_plan(device, {1, 3}, {2, 3}, ("1---", "-1--"))
-    with pytest.raises(RefusalError, match="up depends on itself by way of") as caught:
+    with pytest.raises(InputError, match="up depends on itself by way of") as caught:
         fuse_file(made, "panel.jed")
     (found,) = caught.value.diagnostics
     assert found.code == "HOLDS-ITSELF"
