@@ -56,13 +56,15 @@ def command(design: str, folder: str | None, reserve: int, polarity: str, as_jso
     devices = [*shipped, *own]
     doubts = [warning for device in devices for warning in device.warnings]
     nowhere = places_nowhere(behaviour, devices)
-    show_diagnostics((*behaviour.warnings, *left_out, *doubts, *nowhere))
+    warnings = (*behaviour.warnings, *left_out, *doubts, *nowhere)
+    show_diagnostics(warnings)
     wish = cast("Any", polarity)
     found = budgets(behaviour, devices, wish, reserve)
     if as_json:
         from pla.report.budget_json import budgets_document
 
-        emit_json(budgets_document(behaviour, found, wish, reserve, catalogue(), left_out))
+        shown = budgets_document(behaviour, found, wish, reserve, catalogue(), left_out, warnings)
+        emit_json(shown)
     else:
         from pla.report.budget_text import budgets_text
 

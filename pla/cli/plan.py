@@ -135,13 +135,14 @@ def _refuse(outcome: Fit, polarity: str, known: Minima, *, as_json: bool) -> int
 
 def _unproven(outcome: Fit, *, as_json: bool) -> int:
     from pla.report.cover_json import fit_document
+    from pla.report.notation import plural
 
     minimum = outcome.minimum
     if as_json:
         emit_json(fit_document(outcome, None, ()))
     if minimum is not None:
         note(
-            f"not proven: the best set found has {minimum.count} product terms, at least "
+            f"not proven: the best set found has {plural(minimum.count, 'product term')}, at least "
             f"{minimum.lower_bound} are needed; nothing was written"
         )
     return 1

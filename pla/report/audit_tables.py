@@ -92,7 +92,7 @@ def _remarks(
     if not found:
         yield "No output is left open anywhere: all that the part does is demanded by the design."
     yield from _while_disabled(behaviour)
-    for price in prices:
+    for price in prices if len(behaviour.never) else ():
         yield _price(behaviour.output_names, price)
 
 

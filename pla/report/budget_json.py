@@ -26,6 +26,7 @@ def budgets_document(
     reserve: int,
     catalogue: Collection[str] = (),
     left_out: Sequence[Diagnostic] = (),
+    warnings: Sequence[Diagnostic] = (),
 ) -> dict[str, Any]:
     """What ``budget --json`` prints; all that is unknown is null, a negative ``spare`` is lacking.
 
@@ -36,6 +37,7 @@ def budgets_document(
         reserve: Product terms that have to stay spare.
         catalogue: Names of devices that ship with the program; the others name their file.
         left_out: Why files of a folder were left out.
+        warnings: What is doubtful about the design and the device files; these among them.
     """
     return {
         "name": behaviour.name,
@@ -43,6 +45,7 @@ def budgets_document(
         "reserve": reserve,
         "devices": [_device(budget, catalogue) for budget in found],
         "left_out": [diagnostic.as_json() for diagnostic in left_out],
+        "warnings": [diagnostic.as_json() for diagnostic in warnings],
     }
 
 

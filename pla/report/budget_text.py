@@ -188,10 +188,23 @@ def _remarks(
     ]
     if silent:
         yield f"No signature fuses, so that the design's text is left out: {listed(silent)}."
+    yield from _doubts(found)
     own = [b.device for b in found if b.device.name not in catalogue]
     if own:
         files = listed([f"{device.name} in {device.location.file}" for device in own])
         yield f"Not of the catalogue: {files}."
+
+
+def _doubts(found: Sequence[DeviceBudget]) -> Iterator[str]:
+    """What else is doubtful on devices that hold it: for each kind of doubt the first in full."""
+    alike: dict[str, list[tuple[str, str]]] = {}
+    for budget in found:
+        for doubt in budget.fit.warnings if budget.fits else ():
+            if doubt.code != "SIGNATURE-NONE":
+                alike.setdefault(doubt.code, []).append((doubt.message, budget.device.name))
+    for (message, _), *others in alike.values():
+        likewise = f"; likewise {listed([name for _, name in others])}" if others else ""
+        yield f"{message}{likewise}."
 
 
 def _families(found: Sequence[DeviceBudget]) -> Iterator[str]:

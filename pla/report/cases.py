@@ -131,14 +131,19 @@ def _joined(place: int, cases: list[Case]) -> Iterator[Case]:
 
 
 def _lines(parts: Iterable[Spans], most: int) -> list[Spans]:
-    """Ranges in order, neighbours joined, not more than `most` side by side."""
+    """Ranges in order, neighbours joined, not many more than `most` side by side.
+
+    Half as many more are put up with where a line less will do then; lines are filled evenly.
+    """
     joined: list[tuple[int, int]] = []
     for first, last in sorted(chain.from_iterable(parts)):
         if joined and joined[-1][1] == first - 1:
             joined[-1] = (joined[-1][0], last)
         else:
             joined.append((first, last))
-    return [tuple(joined[at : at + most]) for at in range(0, len(joined), most)]
+    lines = max(1, -(-len(joined) // (most + most // 2)))
+    each = max(1, -(-len(joined) // lines))
+    return [tuple(joined[at : at + each]) for at in range(0, len(joined), each)]
 
 
 def _pieces(bits: str) -> int:

@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING, Any
 from pla.report.cautions import label
 from pla.report.cells import holder_of, link_states
 from pla.report.delays import output_delays, plain_number
+from pla.report.verdict import signature_of
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
@@ -92,7 +93,7 @@ def fit_document(
             }
             if proven
             else None,
-            "signature": fit.behaviour.signature,
+            "signature": signature_of(fit.behaviour, fit.device),
             "label": list(label(plan, proven.fuses)) if plan and proven else None,
             "files": list(files),
             "would_fit": None if holders is None else list(holders),

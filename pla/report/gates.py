@@ -12,6 +12,7 @@ from pla.logic.cubes import Cover
 from pla.logic.function import Function
 from pla.logic.phases import Polarity
 from pla.report.text import kept_together
+from pla.wording import listed
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
@@ -64,9 +65,20 @@ def headroom(plan: Plan) -> dict[str, tuple[int, int]]:
 
 
 def headroom_text(plan: Plan) -> str:
-    """``fan 3 of 8, burner 8 of 8``: what has least to spare first, of equals in order."""
+    """``fan 3 of 8, burner 8 of 8``: what has least to spare first, of equals in order.
+
+    Behind them those on shared OR gates together; empty if all are.
+    """
     found = sorted(headroom(plan).items(), key=lambda entry: entry[1][1] - entry[1][0])
-    return ", ".join(kept_together(f"{name} {used} of {has}") for name, (used, has) in found)
+    alone = ", ".join(kept_together(f"{name} {used} of {has}") for name, (used, has) in found)
+    shared = [p for p, own in zip(plan.outputs, own_gates(plan), strict=True) if not own]
+    if not alone or not shared:
+        return alone
+    mask = np.uint64(sum(1 << placed.index for placed in shared))
+    used = int(np.count_nonzero(plan.minimum.cover.outputs & mask))
+    terms = kept_together(f"{used} of {len(plan.device.shared_rows)}")
+    share = f"share{'s' if len(shared) == 1 else ''}"
+    return f"{alone}; {listed([placed.name for placed in shared])} {share} {terms}"
 
 
 def allowed_polarities(fit: Fit, plan: Plan) -> list[Polarity]:

@@ -172,7 +172,8 @@ def _unused(programmed: ProgrammedRows, pin: int) -> tuple[str, str, str, str]:
     if cell is None:
         kind = "input" if pin in device.input_pins else "enable"
         return "", kind, "", "unused: tie to ground or power"
-    return "", "output", "", _idle(programmed, cell)
+    direction = "none" if programmed.drive_of(cell) == "never" else "output"
+    return "", direction, "", _idle(programmed, cell)
 
 
 def _tie(plan: Plan, pin: int, level: int) -> str:
@@ -196,24 +197,37 @@ def _idle(programmed: ProgrammedRows, cell: Cell) -> str:
         what = f"inner signal {placed.name} {verb}"
     drive = programmed.drive_of(cell)
     if drive == "never":
-        if _is_read(programmed, cell):
-            return f"{what}, tie to ground or power: the part does not drive it"
+        if _floats(programmed, cell):
+            # Common practice, no source.
+            return (
+                f"{what}, not driven by the programmed part: tie it through a resistor, since a "
+                "blank part may drive it"
+            )
         return f"{what}, leave open: the part does not drive it"
     level = programmed.level_of(cell)
     shown = "" if level is None else f" {_LEVELS[level]}"
     return f"{what}, leave open: the part drives it{shown}{' at times' * (drive == 'at times')}"
 
 
-def _is_read(programmed: ProgrammedRows, cell: Cell) -> bool:
-    """Whether a line of the array carries the level at the pin, so that it must not float."""
+def _idle_cells(plan: Plan) -> list[Cell]:
+    """Cells whose pins carry no signal."""
+    carrying = set(plan.pins.values())
+    return [cell for cell in plan.device.cells if cell.pin and cell.pin not in carrying]
+
+
+def _floats(programmed: ProgrammedRows, cell: Cell) -> bool:
+    """Whether a line of the array carries the level at a pin that the part does not drive."""
     lines = programmed.plan.lines
-    return any(line is not None and line.kind == "pin" and line.of == cell.pin for line in lines)
+    return programmed.drive_of(cell) == "never" and any(
+        line is not None and line.kind == "pin" and line.of == cell.pin for line in lines
+    )
 
 
 def _remarks(programmed: ProgrammedRows) -> Iterator[str]:
     plan = programmed.plan
     taken = {placed.pin for placed in plan.inputs} | {pin for pin, _ in plan.tied}
-    if any(pin not in taken for pin in (*plan.device.input_pins, *plan.device.enable_pins)):
+    free = [p for p in (*plan.device.input_pins, *plan.device.enable_pins) if p not in taken]
+    if free or any(_floats(programmed, cell) for cell in _idle_cells(plan)):
         # Common practice, no source.
         yield (
             "No input may float: an open input picks up noise, and many parts draw more current "
@@ -239,9 +253,7 @@ def _remarks(programmed: ProgrammedRows) -> Iterator[str]:
 def _driving_idly(programmed: ProgrammedRows) -> Iterator[str]:
     """Pins that carry no signal and are driven all the same."""
     plan = programmed.plan
-    carrying = set(plan.pins.values())
-    idle = [cell for cell in plan.device.cells if cell.pin and cell.pin not in carrying]
-    driving = [str(c.pin) for c in idle if programmed.drive_of(c) != "never"]
+    driving = [str(c.pin) for c in _idle_cells(plan) if programmed.drive_of(c) != "never"]
     if driving:
         # Common practice, no source.
         yield (

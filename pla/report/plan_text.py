@@ -9,8 +9,14 @@ from pla.report.cautions import label
 from pla.report.delays import delay_table, output_delays
 from pla.report.gates import headroom_text, own_gates
 from pla.report.pins import pin_summary
-from pla.report.text import filled, table_text
-from pla.report.verdict import count_sentences, design_sentences, proof_sentence, title
+from pla.report.text import filled, kept_together, table_text
+from pla.report.verdict import (
+    count_sentences,
+    design_sentences,
+    proof_sentence,
+    signature_of,
+    title,
+)
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
@@ -37,7 +43,8 @@ def plan_text(fit: Fit, proven: ProvenFile, paths: Sequence[str]) -> str:
         *([f"Terms of each output, and of its cell: {headroom_text(plan)}."] if any(own) else []),
     ]
     delays = delay_table(output_delays(plan))
-    signature = f" Signature: {design.signature}." if design.signature is not None else ""
+    text = signature_of(design, fit.device)
+    signature = "" if text is None else " " + kept_together(f'Signature: "{text}".')
     return "\n\n".join(
         [
             f"{title(design)}: fits {fit.device.name}",

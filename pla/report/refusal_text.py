@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING
 from pla.fitting.prices import alone_counts, counts_without
 from pla.logic.phases import Polarity
 from pla.report.budget import budget_table
+from pla.report.inner_hints import inner_hints
 from pla.report.notation import plural
 from pla.report.sharing import shares
 from pla.report.table import Table
@@ -34,7 +35,9 @@ def refusal_text(fit: Fit, holders: Sequence[Fit]) -> str:
     """
     tables = [budget_table(fit)]
     own = fit.device.or_array is None
-    if fit.minimum is not None and own and (fit.lacking or not fit.outputs.over):
+    if not _about_layout(fit):
+        pass  # terms and inputs have nothing to do with it
+    elif fit.minimum is not None and own and (fit.lacking or not fit.outputs.over):
         tables.append(_gates(fit))
     elif fit.minimum is not None and len(fit.behaviour.outputs) > 1:
         if fit.terms.over:
@@ -46,10 +49,19 @@ def refusal_text(fit: Fit, holders: Sequence[Fit]) -> str:
             f"{title(fit.behaviour)}: does not fit {fit.device.name}",
             "\n".join(filled(sentence(reason, fit.behaviour)) for reason in fit.reasons),
             *([filled(_released(fit))] if fit.released else []),
+            *map(filled, inner_hints(fit)),
             *map(table_text, tables),
             _on_holders(holders),
         ]
     )
+
+
+def _about_layout(fit: Fit) -> bool:
+    """Whether any reason is about terms, pins or cells, not the signature or a delay."""
+    region, text = fit.device.signature, fit.behaviour.signature
+    long = region is not None and text is not None and len(text) > region.length
+    late = sum(reason.endswith(" ns are allowed") for reason in fit.reasons)
+    return len(fit.reasons) > late + long
 
 
 def _released(fit: Fit) -> str:

@@ -11,7 +11,13 @@ from pla.report.cautions import CAUTIONS, label
 from pla.report.gates import own_gates
 from pla.report.markdown import bullets, escaped, table_markdown
 from pla.report.text import one_line
-from pla.report.verdict import count_sentences, design_sentences, proof_sentence, title
+from pla.report.verdict import (
+    count_sentences,
+    design_sentences,
+    proof_sentence,
+    signature_of,
+    title,
+)
 
 if TYPE_CHECKING:
     from collections.abc import Iterator, Sequence
@@ -42,6 +48,7 @@ def _front(plan: Plan, proven: ProvenFile, doubts: Sequence[Diagnostic]) -> Iter
     design, device, minimum, fuses = plan.design, plan.device, plan.minimum, proven.fuses
     own = own_gates(plan)
     yield f"# {escaped(title(design))}"
+    signature = signature_of(design, device)
     summary = f": {one_line(device.summary)}" if device.summary else ""
     yield bullets(
         [
@@ -50,7 +57,7 @@ def _front(plan: Plan, proven: ProvenFile, doubts: Sequence[Diagnostic]) -> Iter
             f"Device: {device.name}{summary}",
             f"Fuse file: {one_line(fuse_file_name(design))}",
             f"Fuse checksum: {fuses.checksum:04X}",
-            *([f"Signature: {design.signature}"] if design.signature is not None else []),
+            *([] if signature is None else [f'Signature: "{signature}"']),
         ]
     )
     yield "Label for the part:"

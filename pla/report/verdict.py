@@ -12,6 +12,7 @@ if TYPE_CHECKING:
     from collections.abc import Iterator, Sequence
 
     from pla.behaviour.model import Behaviour
+    from pla.device.model import Device
     from pla.fuses.proof import Proof
     from pla.logic.minimize import Minimum
 
@@ -21,6 +22,7 @@ __all__ = [
     "design_sentences",
     "proof_sentence",
     "sentence",
+    "signature_of",
     "title",
 ]
 
@@ -36,6 +38,11 @@ def sentence(reason: str, behaviour: Behaviour) -> str:
     first = reason.partition(" ")[0].rstrip(",")
     signals = (*behaviour.input_names, *behaviour.output_names, *(i.name for i in behaviour.inner))
     return f"{reason if first in signals else reason[:1].upper() + reason[1:]}."
+
+
+def signature_of(behaviour: Behaviour, device: Device) -> str | None:
+    """The text that the part carries; ``None`` if there is none, or no fuses for it."""
+    return None if device.signature is None else behaviour.signature
 
 
 def count_sentences(

@@ -77,13 +77,14 @@ def test_agrees_with_plan(design, tmp_path, capsys):
 def test_document(capsys):
     code, found, err = document(capsys, SPLITTER, "--reserve", "6", "--polarity", "true")
     assert (code, err) == (0, "")
-    assert sorted(found) == ["devices", "left_out", "name", "polarity", "reserve", "schema_version"]
+    keys = ["devices", "left_out", "name", "polarity", "reserve", "schema_version", "warnings"]
+    assert sorted(found) == keys
     assert (found["name"], found["polarity"], found["reserve"]) == (
         "Log splitter interlock",
         "true",
         6,
     )
-    assert found["left_out"] == []
+    assert (found["left_out"], found["warnings"]) == ([], [])
     for entry in found["devices"]:
         device = find_device(entry["device"])
         assert (entry["pins"], entry["fuses"]) == (device.pins, device.fuses)

@@ -7,7 +7,7 @@ from point_by_point import Point, Wiring
 
 from pla.behaviour.reader import read_behaviour
 from pla.device.reader import read_device
-from pla.errors import RefusalError
+from pla.errors import InputError
 from pla.fitting.fit import fit
 from pla.fuses.program import fuse_file
 from pla.fuses.proof import prove
@@ -128,7 +128,9 @@ def level(plan, fuses, found):
     return point.shown(plan.device.cell_of_pin[pin])
 
 
-def test_a_wide_design_that_holds_itself(tmp_path):
+def test_a_wide_design_that_holds_itself(tmp_path, monkeypatch):
+    """The reader refuses such a design; the proof finds it without its help."""
+    monkeypatch.setattr("pla.behaviour.reader.report_rings", lambda *_: None)
     plan = planned(tmp_path, passing("on dir", "on"))
-    with pytest.raises(RefusalError, match="a0 depends on itself by way of the cells on pins"):
+    with pytest.raises(InputError, match="a0 depends on itself by way of the cells on pins"):
         fuse_file(plan, "design.jed")
