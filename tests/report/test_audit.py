@@ -235,6 +235,15 @@ def test_the_price_of_safety_is_told(tmp_path, freed, proven, words):
     assert table.rows == (("fan", "impossible, demanded 0", "1", "0", "1"),)
 
 
+def test_no_price_where_no_input_is_impossible(tmp_path):
+    text = 'name = "Sure"\n[inputs]\na = 1\n[outputs]\nf = { impossible = 0 }\n[logic]\nf = "a"\n'
+    behaviour = behaviour_of(tmp_path, text)
+    minimum = minimize(behaviour.function)
+    price = GroupPrice(SafetyPrice(0, 0, Count(1, True)), minimum.count, minimum.proven)
+    table = summary_table(behaviour, audit(behaviour, outcomes_of_minimum(minimum)), [price])
+    assert not any("impossible" in remark for remark in table.remarks)
+
+
 def test_a_design_without_freedom_says_so(tmp_path):
     text = 'name = "Plain"\n[inputs]\na = 1\n[outputs]\nf = 1\n[logic]\nf = "a"\n'
     behaviour = behaviour_of(tmp_path, text)

@@ -288,7 +288,9 @@ def test_own_and_shared_gates_in_one_device(tmp_path):
     assert "Here 1 row repeats a product that another row has." in said
     summary = " ".join(plan_text(outcome, proven, []).split())
     assert "since some sums have an OR gate with terms of its own" in summary
-    assert "Terms of each output, and of its cell: own 1 of 5; one and two share 3 of 15." in summary
+    assert (
+        "Terms of each output, and of its cell: own 1 of 5; one and two share 3 of 15." in summary
+    )
     prices = {p.price.output: p for p in group_prices(outcome.plan, [Polarity(True, False)] * 3)}
     # Alone `own` has a b; `one` and `two` share a b beside c and a' c'.
     assert (prices[0].terms, prices[0].alone) == (1, True)
