@@ -169,7 +169,7 @@ def _doubts(behaviour: Behaviour, device: Device) -> list[Diagnostic]:
     found = []
     if behaviour.signature is not None and device.signature is None:
         message = f"{device.name} has no signature fuses: the signature is left out"
-        found.append(Diagnostic("SIGNATURE-NONE", message, device.location, None, "warning"))
+        found.append(Diagnostic("SIGNATURE-NONE", message, behaviour.signature_at, None, "warning"))
     asked = [o for o in behaviour.outputs if o.max_delay or behaviour.max_delay]
     if asked and device.timing.tpd is None:
         message = (
