@@ -19,26 +19,45 @@ _LEVEL = {"sum": "low", "sum'": "high"}
 
 
 def on_outputs(device: Device) -> Iterator[str]:
-    """A paragraph for each kind of cell; sentences that belong to one above are indented."""
+    """A paragraph for cells of a kind of which the same is said; what belongs to it is indented."""
     for kind in dict.fromkeys(cell.kind for cell in device.cells):
-        yield from _on_kind(device, [cell for cell in device.cells if cell.kind == kind])
+        cells = [cell for cell in device.cells if cell.kind == kind]
+        always = all(m.enable.kind == "always" for cell in cells for m in cell.modes)
+        alike: dict[tuple[str, ...], list[Cell]] = {}
+        for cell in cells:
+            alike.setdefault(_key(device, cell, always=always), []).append(cell)
+        for same in alike.values():
+            yield from _on_alike(device, same, always=always)
 
 
-def _on_kind(device: Device, cells: Sequence[Cell]) -> Iterator[str]:
+def _key(device: Device, cell: Cell, *, always: bool) -> tuple[str, ...]:
+    """All that is said of a cell beside its own numbers."""
+    modes = [_in_mode(device, cell, mode, always=always) for mode in cell.modes]
+    carried = [_handed_over([cell], mode, numbered=False) for mode in cell.modes]
+    return (*modes, *carried, *_on_idle(device, cell))
+
+
+def _on_alike(device: Device, cells: Sequence[Cell], *, always: bool) -> Iterator[str]:
     model = cells[0]
+    done = [
+        "; ".join(
+            filter(None, [_in_mode(device, model, mode, always=always), _handed_over(cells, mode)])
+        )
+        or "no pin, and nothing is fed back"
+        for mode in model.modes
+    ]
     some = f"{_cells(cells)} (kind {model.kind!r})"
     if not model.links:
-        done = _in_mode(device, cells, model.modes[0])
-        yield f"{some}: nothing to set. {done[:1].upper()}{done[1:]}."
+        yield f"{some}: nothing to set. {done[0][:1].upper()}{done[0][1:]}."
     else:
         names = ", ".join(model.bits)
         number = "one link" if len(model.links) == 1 else f"{len(model.links)} links"
         yield f"{some}: {number} to set, {names}."
-        for mode in model.modes:
+        for mode, said in zip(model.modes, done, strict=True):
             mark = " (blank)" if mode is device.blank_mode(model) else ""
-            yield f"  {mode.set}{mark}: {_in_mode(device, cells, mode)}."
+            yield f"  {mode.set}{mark}: {said}."
         yield from _on_unlisted(device, model)
-    yield from _on_idle(device, cells)
+    yield from _on_idle(device, model)
 
 
 def _cells(cells: Sequence[Cell]) -> str:
@@ -53,22 +72,16 @@ def _cells(cells: Sequence[Cell]) -> str:
     return " and ".join(parts)
 
 
-def _in_mode(device: Device, cells: Sequence[Cell], mode: Mode) -> str:
-    """What cells of a kind do in a mode; `mode` is that of the first of them."""
+def _in_mode(device: Device, cell: Cell, mode: Mode, *, always: bool) -> str:
+    """What a cell does in a mode; `always` if all cells of its kind are driven in every mode."""
     said = []
-    if any(cell.pin is not None for cell in cells):
-        pinned = next(cell for cell in cells if cell.pin is not None)
-        of_pinned = _likewise(pinned, mode)
-        said.append(_shows(device, pinned, of_pinned))
-        if of_pinned.pin != "none":
-            said += _when_driven(cells, of_pinned)
-    said += _fed_back(device, cells, mode)
-    return "; ".join(said) or "no pin, and nothing is fed back"
-
-
-def _likewise(cell: Cell, mode: Mode) -> Mode:
-    """The mode with the same setting of another cell of the kind."""
-    return cell.mode_of(mode.set) or cell.modes[0]
+    if cell.pin is not None:
+        said.append(_shows(device, cell, mode))
+        if mode.pin != "none" and not always:
+            driven = enable_words(mode.enable)
+            said.append("always driven" if driven == "always" else f"driven {driven}")
+    said += _fed_back(device, mode)
+    return "; ".join(said)
 
 
 def _shows(device: Device, cell: Cell, mode: Mode) -> str:
@@ -80,14 +93,6 @@ def _shows(device: Device, cell: Cell, mode: Mode) -> str:
     }[mode.pin]
 
 
-def _when_driven(cells: Sequence[Cell], mode: Mode) -> Iterator[str]:
-    """When the pin is driven, where that is not always so."""
-    always = all(m.enable.kind == "always" for cell in cells for m in cell.modes)
-    if not always:
-        always_driven = mode.enable.kind == "always"
-        yield "always driven" if always_driven else f"driven {enable_words(mode.enable)}"
-
-
 def enable_words(enable: Enable) -> str:
     """When a pin is driven, as the end of a sentence."""
     if enable.kind == "row":
@@ -97,30 +102,37 @@ def enable_words(enable: Enable) -> str:
     return "always"
 
 
-def _fed_back(device: Device, cells: Sequence[Cell], mode: Mode) -> Iterator[str]:
-    fed = [cell for cell in cells if cell.modes[0].lines]
-    if not fed:
+def _fed_back(device: Device, mode: Mode) -> Iterator[str]:
+    """What the columns of a cell carry, where that is not handed over to another pin."""
+    if not mode.lines:
         return
-    senses = {_is_primed(device, column) for cell in fed for column, _ in cell.modes[0].lines}
-    model = _likewise(fed[0], mode)
-    some = "" if len(fed) == len(cells) else f" ({_cells(fed).lower()} only)"
-    if model.feedback == "none" or all(line is None for _, line in model.lines):
-        yield f"its columns in the AND array carry nothing{some}"
-    elif model.feedback is None:
-        listed = [
-            f"column {column} carries {line if line is not None else 'nothing'}"
-            for column, line in model.lines
-        ]
-        yield ", ".join(listed)
-    else:
-        plain, primed = _CARRIED[model.feedback]
-        alone = _PRIMED_ALONE[model.feedback]
-        both = senses == {False, True}
-        if both:
-            yield f"its unprimed column carries {plain}, the primed {primed}{some}"
+    if mode.feedback == "none" or all(line is None for _, line in mode.lines):
+        yield "its columns in the AND array carry nothing"
+    elif mode.feedback is not None:
+        plain, primed = _CARRIED[mode.feedback]
+        senses = {_is_primed(device, column) for column, _ in mode.lines}
+        if senses == {False, True}:
+            yield f"its unprimed column carries {plain}, the primed {primed}"
+        elif senses == {False}:
+            yield f"its unprimed column carries {plain}"
         else:
-            which, what = ("unprimed", plain) if False in senses else ("primed", alone)
-            yield f"its {which} column carries {what}{some}"
+            yield f"its primed column carries {_PRIMED_ALONE[mode.feedback]}"
+
+
+def _handed_over(cells: Sequence[Cell], mode: Mode, *, numbered: bool = True) -> str:
+    """What columns that a mode hands over carry: one for each of the cells, of which `mode` is."""
+    if mode.feedback is not None or all(line is None for _, line in mode.lines):
+        return ""
+    listed = []
+    for place, (_, line) in enumerate(mode.lines):
+        carried = str(line) if line is not None else "nothing"
+        if not numbered:
+            listed.append(carried)
+            continue
+        columns = sorted(cell.modes[0].lines[place][0] for cell in cells)
+        noun, verb = ("column", "carries") if len(columns) == 1 else ("columns", "carry")
+        listed.append(f"{noun} {spans(columns)} {verb} {carried}")
+    return ", ".join(listed)
 
 
 _CARRIED = {
@@ -152,12 +164,10 @@ def _on_unlisted(device: Device, cell: Cell) -> Iterator[str]:
         yield f"  A cell that nothing uses is set to {device.idle_mode(cell).set}."
 
 
-def _on_idle(device: Device, cells: Sequence[Cell]) -> Iterator[str]:
-    """What the pins do on a blank part, and where a design does not use them."""
-    pinned = [cell for cell in cells if cell.pin is not None]
-    if not any(mode.pin != "none" for cell in pinned for mode in cell.modes):
+def _on_idle(device: Device, model: Cell) -> Iterator[str]:
+    """What the pin of a cell does on a blank part, and where a design does not use it."""
+    if model.pin is None or all(mode.pin == "none" for mode in model.modes):
         return
-    model = pinned[0]
     shared = model.key in device.or_column
     blank, idle = device.blank_mode(model), device.idle_mode(model)
     first = ""
@@ -165,7 +175,8 @@ def _on_idle(device: Device, cells: Sequence[Cell]) -> Iterator[str]:
         worth = _blank_sum(device, model, blank)
         level = _pin_level(blank, worth)
         driven = _driven(device, blank, filled=False)
-        every = f"every sum is {worth}" if shared else f"the sum is {worth}"
+        all_shared = len(device.or_column) == len(device.cells)
+        every = f"every sum is {worth}" if all_shared else f"the sum is {worth}"
         if worth is None:
             every = "the sum follows the lines"
         first = f"On a blank part {every}, and the pin {_is(level, driven)}. "

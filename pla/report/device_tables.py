@@ -7,6 +7,7 @@ from itertools import pairwise
 from typing import TYPE_CHECKING
 
 from pla.device.consistency import spans
+from pla.device.model import Line
 from pla.report.device_words import rows_text
 
 if TYPE_CHECKING:
@@ -34,7 +35,8 @@ def pin_table(device: Device) -> list[tuple[str, str, str]]:
             role = "input" if pin in device.input_pins else "enable"
             if role == "input" and pin in device.enable_pins:
                 role = "input, enable"
-            rows.append((str(pin), role, _columns(device, pin) or _by_mode(device, pin)))
+            lines = filter(None, (_columns(device, pin), _by_mode(device, pin)))
+            rows.append((str(pin), role, ", ".join(lines)))
     return rows
 
 
@@ -55,18 +57,25 @@ def _columns(device: Device, source: Source, *, fed_back: bool = False) -> str:
 
 
 def _by_mode(device: Device, pin: int) -> str:
-    """Where a pin is whose columns depend on the mode of a cell."""
-    found = {
-        column: mode.set
-        for cell in device.cells
-        for mode in cell.modes
-        for column, line in mode.lines
-        if line is not None and line.kind == "pin" and line.of == pin
-    }
-    if not found:
-        return ""
-    noun = "column" if len(found) == 1 else "columns"
-    return f"{noun} {spans(sorted(found))} in some modes"
+    """Where a pin is that has its lines in the columns of cells, and in how many of their modes."""
+    always: dict[bool, set[int]] = {False: set(), True: set()}
+    partly: dict[bool, set[int]] = {False: set(), True: set()}
+    for cell in device.cells:
+        for place, (column, _) in enumerate(cell.modes[0].lines):
+            carried = [mode.lines[place][1] for mode in cell.modes]
+            for prime in (False, True):
+                number = carried.count(Line("pin", pin, prime))
+                if number:
+                    (always if number == len(carried) else partly)[prime].add(column)
+    parts = []
+    for found, when in ((always, ""), (partly, "in some modes ")):
+        said = [
+            f"{word} in column{'' if len(found[prime]) == 1 else 's'} {spans(sorted(found[prime]))}"
+            for prime, word in ((False, "true"), (True, "complement"))
+            if found[prime]
+        ]
+        parts += [when + ", ".join(said)] if said else []
+    return "; ".join(parts)
 
 
 def _place_of_cell(device: Device, cell: Cell) -> str:

@@ -172,13 +172,18 @@ def _on_unused_enable(device: Device, enables: list[int]) -> str:
         return f"{head} made 0: its pin is not driven (high impedance)."
     if how == "on":
         return f"{head} joined to no line, always 1: its pin is driven."
-    worth = device.blank_row_at(enables[0])
     then = {
         "true": "always 1, so its pin is driven",
         "dead": "always 0, so its pin is not driven (high impedance)",
         "live": "its pin is driven while all lines are 1",
-    }[worth]
-    return f"{head} left blank: {then}."
+    }
+    alike: dict[str, list[int]] = {}
+    for row in enables:
+        alike.setdefault(then[device.blank_row_at(row)], []).append(row)
+    if len(alike) == 1:
+        return f"{head} left blank: {next(iter(alike))}."
+    said = "; ".join(f"{rows_text(rows)} {what}" for what, rows in alike.items())
+    return f"{head} left blank: {said}."
 
 
 def on_mode(device: Device) -> Iterator[str]:

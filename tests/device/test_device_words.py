@@ -129,6 +129,93 @@ def test_in_words(edits, expected):
         assert sentence in text, text
 
 
+CELLS = """\
+name = "mixed"
+technology = "erasable"
+pins = 9
+fuses = 36
+ground = 4
+power = 8
+unconnected = [9]
+
+[links]
+blank = 1
+connected = 0
+unused_term = "dead"
+
+[and]
+columns = "1 1' 2 2' 5 5' 6 6' 7 3' 3 ."
+terms = 3
+first_fuse = 0
+term_step = 12
+
+[kind.out]
+modes = [ { pin = "sum", feedback = "pin" } ]
+cells = [
+  { pin = 5, terms = "0" },
+  { pin = 6, terms = "1" },
+  { pin = 7, terms = "2" },
+]
+"""
+GATED = '{{ pin = {}, terms = "{}", enable = {{ pin = 3 }} }}'
+
+
+@pytest.mark.parametrize("driven", [5, 6, 7])
+def test_cells_of_a_kind_that_are_driven_in_different_ways(driven):
+    edits = [
+        (f'{{ pin = {pin}, terms = "{row}" }}', GATED.format(pin, row))
+        for row, pin in enumerate((5, 6, 7))
+        if pin != driven
+    ]
+    found = device(*edits, ("7 3' 3 .", "7 7' 3 ."), text=CELLS)
+    text = sentences(found)
+    gated = {5: "6..7", 6: "5, 7", 7: "5..6"}[driven]
+    shows = "nothing to set. The pin shows the sum: high when one of its terms is 1, else low;"
+    fed_back = (
+        "its unprimed column carries the level of the pin, the primed the complement of that level."
+    )
+    idle = "An output that a design does not use has a sum of 0: its pin is low"
+    assert (
+        f"Pin {driven} (kind 'out'): {shows} always driven; {fed_back} "
+        f"On a blank part the sum is 1, and the pin is high. {idle}."
+    ) in " ".join(text.split())
+    assert (
+        f"Pins {gated} (kind 'out'): {shows} driven while pin 3 is high; {fed_back} "
+        "On a blank part the sum is 1, and the pin is high while pin 3 is high, else high "
+        f"impedance. {idle} while pin 3 is high, else high impedance."
+    ) in " ".join(text.split())
+
+
+def test_cells_of_a_kind_of_which_some_are_not_fed_back():
+    found = device(("7 3' 3 .", ". 3' 3 ."), text=CELLS)
+    text = " ".join(explain(found).split())
+    assert (
+        "Pins 5..6 (kind 'out'): nothing to set. The pin shows the sum: high when one of its terms is 1, else low; its unprimed"
+        in text
+    )
+    assert (
+        "Pin 7 (kind 'out'): nothing to set. The pin shows the sum: high when one of its terms is 1, else low. On a"
+        in text
+    )
+
+
+def test_columns_that_cells_of_a_kind_hand_over():
+    found = device(
+        ('{ pin = "sum", feedback = "pin" }', """{ pin = "sum", columns = "9 9'" }"""),
+        ("7 3' 3 .", ". 3' 3 ."),
+        ("unconnected = [9]", "unconnected = []"),
+        text=CELLS,
+    )
+    text = " ".join(explain(found).split())
+    assert "Pins 5..6 (kind 'out'): nothing to set." in text
+    assert (
+        "else low; columns 4, 6 carry pin 9, columns 5, 7 carry the complement of pin 9. On a"
+        in text
+    )
+    assert "Pin 7 (kind 'out'): nothing to set." in text
+    assert pin_table(found)[8] == ("9", "input", "true in columns 4, 6, complement in columns 5, 7")
+
+
 def test_nothing_is_said_of_what_a_device_has_not():
     text = explain(find_device("shared-8x16x4"))
     for word in ("enable", "Signature", "Timing", "Device-wide", "family", "feed", "Cells without"):
@@ -172,7 +259,7 @@ def test_pins():
         "primed in column 10, sense is fuse 158",
     )
     by_mode = device(('columns = "3\' ."', 'columns = "10 ."'), ("[10, 11]", "[11]"))
-    assert pin_table(by_mode)[9] == ("10", "input", "column 6 in some modes")
+    assert pin_table(by_mode)[9] == ("10", "input", "in some modes true in column 6")
 
 
 def test_fuses():
