@@ -125,7 +125,7 @@ def test_the_scrap_part_is_made_and_judged_as_told(shelf, capsys):
     other = {**filled, first: "H" if filled[first] == "L" else "L"}
     for readings, code in ((filled, 0), (other, 1)):
         for (k, pin), level in readings.items():
-            rows[k][f"measured {pin}"] = level
+            rows[k][f"measured {pin}"] = level.strip("?")
         with sheet.open("w", newline="", encoding="utf-8") as stream:
             table = csv.DictWriter(stream, names)
             table.writeheader()

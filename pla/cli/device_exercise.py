@@ -11,13 +11,13 @@ from pla.cli.options import json_option
 from pla.cli.output import emit_json, emit_text, show_diagnostics
 
 if TYPE_CHECKING:
-    from pla.exercise.program import Exercised
+    from pla.exercise.program import Exercise, Exercised
 
 __all__ = ["command"]
 
 
 class _Parts(click.ParamType[int]):
-    """A number of parts; ``all`` and 0 are as many as tell something new."""
+    """A number of parts; ``all``, which is 0, are as many as tell something new."""
 
     name = "number"
 
@@ -27,7 +27,7 @@ class _Parts(click.ParamType[int]):
         text = str(value).strip().lower()
         if text == "all":
             return 0
-        if not (text.isascii() and text.isdecimal() and len(text) < 4):
+        if not (text.isascii() and text.isdecimal() and 0 < int(text) < 1000):
             self.fail(f"{value!r} is no number of parts, expected 1 to 999, or all", param, ctx)
         return int(text)
 
@@ -69,8 +69,8 @@ def command(
     sense inverted, a row shifted. So a wrong description is caught before real parts are burnt.
 
     With --readings, the sheet NAME-exercise-1.csv with measured levels filled in (H, L, Z) is held
-    against the device file from which it was made: exit code 1 if a reading differs, with the slips
-    that explain it.
+    against the device file from which the part was made, not a corrected one: exit code 1 if a
+    reading differs, with the slips that explain it.
 
     \b
       fuseplan device exercise my-array.toml -o scrap/
@@ -100,7 +100,7 @@ def _make(
     stem = PurePath(device).stem if device.lower().endswith(".toml") else array.name
     files: dict[str, bytes] = {}
     for number, own in enumerate(made.parts, 1):
-        files |= _files(own, number, made.tried, stem, with_vectors=with_vectors)
+        files |= _files(own, number, made, stem, with_vectors=with_vectors)
     last = next(reversed([name for name in files if name.endswith(".jed")]))
     paths = write_folder(folder, files, last=last, force=force)
     if js:
@@ -111,7 +111,7 @@ def _make(
 
 
 def _files(
-    own: Exercised, number: int, tried: int, stem: str, *, with_vectors: bool
+    own: Exercised, number: int, made: Exercise, stem: str, *, with_vectors: bool
 ) -> dict[str, bytes]:
     from pla.exercise.design import exercise_design
     from pla.exercise.fuse_file import exercise_file
@@ -127,7 +127,7 @@ def _files(
     design = exercise_design(own, number)
     if design is not None:
         found[f"{name}.toml"] = design.encode()
-    report = exercise_markdown(own, number, tried, sorted(found), has_design=design is not None)
+    report = exercise_markdown(own, number, made, sorted(found), has_design=design is not None)
     return {f"{name}.md": report.encode(), **found}
 
 

@@ -30,6 +30,7 @@ _TEXT = "EXERCISE"
 _ROWS_AT_ONCE = 3
 _LEAST_STEPS = 16
 _BASES = 2
+_BLOCKED_EACH, _DROPPED_EACH = 3, 5
 _PAIR = 2  # a row that makes a sum 1, and one that its line keeps at 0
 
 
@@ -274,14 +275,16 @@ class _Maker:
             seen = [
                 k for k in everything if cell.pin is None or self._drives(cell.key, patterns[k])
             ]
-            for number in mode.terms:
-                dropped = self._drops(number)
+            for place, number in enumerate(mode.terms):
+                # By place and not by chance: some row of every cell makes its sum 1.
+                dropped = place % _DROPPED_EACH == 1 and self._can_drop(number)
+                blocked = place % _BLOCKED_EACH == _BLOCKED_EACH - 1
                 if not seen:
                     break
                 at = seen.pop()
                 everything.remove(at)
                 own = frozenset([cell.key])
-                dealt[at].append(_Row(number, own, f"term of {cell}", dropped, self._blocks()))
+                dealt[at].append(_Row(number, own, f"term of {cell}", dropped, blocked))
             idle = [r for r in cell.rows if r not in mode.terms and r != mode.enable.row]
             for spare, at in zip(idle, everything, strict=False):
                 dealt[at].append(_Row(spare, frozenset(), f"{cell}, no use in this mode"))
@@ -313,8 +316,9 @@ class _Maker:
             free = [key for key in array.sums if key not in taken]
             sums = frozenset(key for key in free if self.bits.word() % _ROWS_AT_ONCE == 0)
             sums = sums or frozenset(self.bits.shuffled(free)[:1])
-            dropped = self._drops(number)
-            dealt[at].append(_Row(number, sums, "shared term", dropped, self._blocks()))
+            dropped = self._can_drop(number) and self.bits.word() % _DROPPED_EACH == 0
+            stopped = self.bits.word() % 5 < 2
+            dealt[at].append(_Row(number, sums, "shared term", dropped, stopped))
 
     def _lone_sums(self) -> list[Source]:
         """Shared sums of which one sense only runs back: a line that is 0 tells them best."""
@@ -336,12 +340,8 @@ class _Maker:
             and self._drives(other, self.patterns[step])
         ]
 
-    def _drops(self, number: int) -> bool:
-        drop = self.device.drop
-        return drop is not None and number in drop.terms and self.bits.word() % 5 == 0
-
-    def _blocks(self) -> bool:
-        return self.bits.word() % 5 < 2
+    def _can_drop(self, number: int) -> bool:
+        return self.device.drop is not None and number in self.device.drop.terms
 
     def _levels(self, pattern: Mapping[int, bool]) -> dict[int, bool]:
         """What is set from outside, with some of the pins that the part lets go of."""

@@ -60,11 +60,13 @@ class Exercise:
     Attributes:
         device: What they are described as.
         tried: How many slips were tried.
+        kinds: Of which kinds they are, in words.
         parts: The parts.
     """
 
     device: Device
     tried: int
+    kinds: tuple[str, ...]
     parts: tuple[Exercised, ...]
 
     @property
@@ -94,7 +96,8 @@ def exercise(device: Device, most: int | None = None) -> Exercise:
         left = [slip for k, slip in enumerate(left) if k not in shown]
         tellings = tuple(shown.values())
         found.append(Exercised(part, expected, tellings, tuple(slip.what for slip in left)))
-    return Exercise(device, len(every), tuple(found))
+    kinds = tuple(dict.fromkeys(slip.kind for slip in every))
+    return Exercise(device, len(every), kinds, tuple(found))
 
 
 def _best(

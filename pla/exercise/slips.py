@@ -6,51 +6,57 @@ exercise cannot tell from the description, it cannot warn of.
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
+from dataclasses import replace
 from itertools import combinations, pairwise
 from typing import TYPE_CHECKING, Literal, cast
 
-from pla.device.model import Line
+from pla.exercise.cell_slips import cell_slips, enable_slips, mode_slips
+from pla.exercise.slip import Slip
 
 if TYPE_CHECKING:
-    from collections.abc import Callable, Iterator, Sequence
+    from collections.abc import Iterator, Sequence
 
-    from pla.device.model import Cell, Column, Device, Mode, OrArray, Shows, Source
+    from pla.device.model import Column, Device, Line, Mode, OrArray, Source
 
 __all__ = ["Slip", "slips"]
 
 _NEAR = 4
-_FLIPPED = {"sum": "sum'", "sum'": "sum", "none": "none"}
-
-
-@dataclass(frozen=True, slots=True)
-class Slip:
-    """Something that may be wrong in a description.
-
-    Attributes:
-        what: In words.
-        device: What the part would really be then.
-    """
-
-    what: str
-    device: Device
+# Up to so many sources every pair of them is tried.
+_FEW = 16
 
 
 def slips(device: Device) -> Iterator[Slip]:
     """All single slips of the usual kinds that leave every fuse number within the device."""
-    for slip in _all(device):
-        if _within(slip.device):
-            yield slip
+    for kind, found in _all(device):
+        for slip in found:
+            if _within(slip.device):
+                yield replace(slip, kind=kind)
 
 
-def _all(device: Device) -> Iterator[Slip]:
-    yield from _columns(device)
-    yield from _rows(device)
+def _all(device: Device) -> Iterator[tuple[str, Iterator[Slip]]]:
+    reach = "any two sources" if _few(device) else f"two sources at most {_NEAR} places apart"
+    yield (
+        f"columns beside each other, true and complement lines, or columns of {reach} exchanged",
+        _columns(device),
+    )
+    yield "AND rows that start or step one off, or are shifted or exchanged", _rows(device)
     if device.or_array is not None:
-        yield from _sums(device, device.or_array)
-    yield from _links(device)
-    yield from _cells(device)
-    yield from _modes(device)
+        yield (
+            "OR rows that start or step one off or are shifted, or OR columns exchanged",
+            _sums(device, device.or_array),
+        )
+    drop = ", drop links inverted or shifted" if device.drop is not None else ""
+    yield f"the state that joins the other one{drop}", _links(device)
+    yield "links, rows, or the cells of a kind as a whole exchanged", cell_slips(device)
+    yield "the sense of a pin or of feedback, its source, or settings exchanged", mode_slips(device)
+    yield (
+        "enable pins of the other active level, cells that always drive or are switched after all",
+        enable_slips(device),
+    )
+
+
+def _few(device: Device) -> bool:
+    return len({source for source, _ in device.column_of}) <= _FEW
 
 
 def _within(device: Device) -> bool:
@@ -84,18 +90,22 @@ def _columns(device: Device) -> Iterator[Slip]:
         if column not in empty:
             pairs.setdefault(source, {})[complement] = column
     both = {source: own for source, own in pairs.items() if len(own) == 2}
+    few = _few(device)
     for source, own in both.items():
         moves = {own[False]: own[True], own[True]: own[False]}
         if abs(own[False] - own[True]) != 1:
             yield Slip(f"true and complement line of {source} exchanged", _exchanged(device, moves))
-    order = list(both)
-    for one, other in combinations(both, 2):
-        if abs(order.index(one) - order.index(other)) > _NEAR:
+    order = {source: place for place, source in enumerate(pairs)}
+    for one, other in combinations(pairs, 2):
+        mine, others = pairs[one], pairs[other]
+        if mine.keys() != others.keys() or not (few or order[other] - order[one] <= _NEAR):
             continue
+        if len(mine) == 1 and all(abs(mine[sense] - others[sense]) == 1 for sense in mine):
+            continue  # it stands among the columns beside each other
         moves = {}
-        for complement in (False, True):
-            moves[both[one][complement]] = both[other][complement]
-            moves[both[other][complement]] = both[one][complement]
+        for complement in mine:
+            moves[mine[complement]] = others[complement]
+            moves[others[complement]] = mine[complement]
         yield Slip(f"the columns of {one} and of {other} exchanged", _exchanged(device, moves))
     flipped = {own[c]: own[not c] for own in both.values() for c in (False, True)}
     if flipped:
@@ -211,137 +221,3 @@ def _links(device: Device) -> Iterator[Slip]:
         yield Slip(
             "all drop links shifted by one", replace(device, drop=replace(drop, fuses=shifted))
         )
-
-
-def _cells(device: Device) -> Iterator[Slip]:
-    for one, other in combinations(device.cells, 2):
-        if len(one.links) == len(other.links) > 0:
-            pair = (replace(one, links=other.links), replace(other, links=one.links))
-            yield Slip(
-                f"the configuration links of {one} and {other} exchanged",
-                _with_cells(device, pair),
-            )
-        if len(one.rows) == len(other.rows) > 0 and one.kind == other.kind:
-            moves = dict(zip((*one.rows, *other.rows), (*other.rows, *one.rows), strict=True))
-            pair = (_moved(one, moves), _moved(other, moves))
-            yield Slip(f"the rows of {one} and {other} exchanged", _with_cells(device, pair))
-    for cell in device.cells:
-        for a, b in pairwise(range(len(cell.links))):
-            links = list(cell.links)
-            links[a], links[b] = links[b], links[a]
-            yield Slip(
-                f"links {cell.bits[a]!r} and {cell.bits[b]!r} of {cell} exchanged",
-                _with_cells(device, (replace(cell, links=tuple(links)),)),
-            )
-        for row in cell.enable_rows:
-            term = next((t for m in cell.modes if m.enable.row == row for t in m.terms), None)
-            if term is not None:
-                moves = {row: term, term: row}
-                yield Slip(
-                    f"the enable row {row} and row {term} of {cell} exchanged",
-                    _with_cells(device, (_moved(cell, moves),)),
-                )
-
-
-def _moved(cell: Cell, moves: dict[int, int]) -> Cell:
-    """A cell with other rows."""
-
-    def mode(own: Mode) -> Mode:
-        enable = own.enable
-        if enable.row is not None:
-            enable = replace(enable, row=moves.get(enable.row, enable.row))
-        return replace(own, terms=tuple(sorted(moves.get(r, r) for r in own.terms)), enable=enable)
-
-    rows = tuple(sorted(moves.get(row, row) for row in cell.rows))
-    return replace(cell, rows=rows, modes=tuple(mode(own) for own in cell.modes))
-
-
-def _with_cells(device: Device, changed: Sequence[Cell]) -> Device:
-    new = {cell.key: cell for cell in changed}
-    return replace(device, cells=tuple(new.get(cell.key, cell) for cell in device.cells))
-
-
-def _modes(device: Device) -> Iterator[Slip]:
-    """Slips in what a mode is said to do; modes are shared by the cells of a kind."""
-    kinds: dict[str, list[Cell]] = {}
-    for cell in device.cells:
-        kinds.setdefault(cell.kind, []).append(cell)
-    for kind, cells in kinds.items():
-        modes = cells[0].modes
-        for index, mode in enumerate(modes):
-            name = f'mode "{mode.set}" of kind {kind}' if mode.set else f"kind {kind}"
-            for what, change in _changes(cells, index):
-                yield Slip(
-                    f"{what} in {name}",
-                    _with_cells(device, [_with_mode(cell, index, change) for cell in cells]),
-                )
-        for a, b in combinations(range(len(modes)), 2):
-            yield Slip(
-                f'the settings "{modes[a].set}" and "{modes[b].set}" of kind {kind} exchanged',
-                _with_cells(device, [_reset(cell, a, b) for cell in cells]),
-            )
-
-
-def _with_mode(cell: Cell, index: int, change: Callable[[Cell, Mode], Mode]) -> Cell:
-    modes = list(cell.modes)
-    modes[index] = change(cell, modes[index])
-    return replace(cell, modes=tuple(modes))
-
-
-def _reset(cell: Cell, a: int, b: int) -> Cell:
-    modes = list(cell.modes)
-    modes[a], modes[b] = (
-        replace(modes[a], set=modes[b].set),
-        replace(modes[b], set=modes[a].set),
-    )
-    return replace(cell, modes=tuple(modes))
-
-
-def _changes(
-    cells: Sequence[Cell], index: int
-) -> Iterator[tuple[str, Callable[[Cell, Mode], Mode]]]:
-    modes = [cell.modes[index] for cell in cells]
-    mode = modes[0]
-    if mode.pin != "none":
-        yield (
-            "the sense of the pin is the other one",
-            lambda _, own: replace(own, pin=cast("Shows", _FLIPPED[own.pin])),
-        )
-    if any(line is not None for own in modes for _, line in own.lines):
-        yield (
-            "the sense of the feedback is the other one",
-            lambda _, own: _relined(own, lambda line: line.inverse),
-        )
-    carried = {line.kind for own in modes for _, line in own.lines if line is not None}
-    # A pin that is always driven carries the sum anyway.
-    differ = mode.pin == "none" or mode.enable.kind != "always"
-    if "pin" in carried and mode.feedback is not None and differ:
-        yield (
-            "the feedback carries the sum and not the pin",
-            lambda cell, own: _relined(
-                own, lambda line: Line("sum", cell.key, line.complement != (own.pin == "sum'"))
-            ),
-        )
-    if "sum" in carried and all(cell.pin is not None for cell in cells) and differ:
-        yield (
-            "the feedback carries the pin and not the sum",
-            lambda cell, own: _relined(
-                own,
-                lambda line: Line(
-                    "pin", cast("int", cell.pin), line.complement != (own.pin == "sum'")
-                ),
-            ),
-        )
-    if mode.enable.pin is not None:
-        yield (
-            "the active level of the enable pin is the other one",
-            lambda _, own: replace(
-                own, enable=replace(own.enable, active_low=not own.enable.active_low)
-            ),
-        )
-
-
-def _relined(mode: Mode, change: Callable[[Line], Line]) -> Mode:
-    return replace(
-        mode, lines=tuple((c, None if line is None else change(line)) for c, line in mode.lines)
-    )

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
+from pla.report.exercise_text import counted, kinds_tried
 from pla.report.markdown import bullets, escaped, table_markdown
 from pla.report.table import Table
 from pla.wording import listed, spans
@@ -12,7 +13,7 @@ if TYPE_CHECKING:
     from collections.abc import Iterator, Sequence
 
     from pla.device.model import Cell, Mode
-    from pla.exercise.program import Exercised, Telling
+    from pla.exercise.program import Exercise, Exercised, Telling
 
 __all__ = ["exercise_markdown"]
 
@@ -20,14 +21,14 @@ _PLACES = 3
 
 
 def exercise_markdown(
-    exercised: Exercised, number: int, tried: int, files: Sequence[str], *, has_design: bool
+    exercised: Exercised, number: int, made: Exercise, files: Sequence[str], *, has_design: bool
 ) -> str:
     """The instructions for one part.
 
     Args:
         exercised: The part.
         number: Which part of the exercise it is, from 1.
-        tried: How many slips were tried in all.
+        made: The exercise that it belongs to.
         files: Names of the files of this part.
         has_design: Whether there is a design file among them.
     """
@@ -38,7 +39,8 @@ def exercise_markdown(
             "This part does nothing useful. It is made so that its pins tell whether the device "
             f"file of {device.name} describes it. Program the fuse file into one part that you can "
             "spare, take the steps below, and compare. If every reading is as expected, none of "
-            f"the {len(exercised.shown)} slips that this part shows is in the device file."
+            f"the {counted(len(exercised.shown), 'slip')} that this part shows is in the device "
+            "file."
         ),
     ]
     if device.technology == "one-time":
@@ -47,7 +49,7 @@ def exercise_markdown(
     parts += ["## Setting up", bullets(_setting_up(exercised))]
     tables = (
         _step_table(exercised),
-        _telling_table(exercised, tried),
+        _telling_table(exercised, number, made),
         _cell_table(exercised),
         _row_table(exercised),
     )
@@ -58,7 +60,7 @@ def exercise_markdown(
 def _on_files(files: Sequence[str], *, has_design: bool) -> Iterator[str]:
     what = {
         ".jed": "the fuse file",
-        ".csv": "the steps as a sheet to fill in; `device exercise --readings` tells what it means",
+        ".csv": "the steps as a sheet to fill in; device exercise --readings tells what it means",
         ".toml": "the same behaviour as a design file, one signal for each pin",
     }
     for name in files:
@@ -83,7 +85,9 @@ def _setting_up(exercised: Exercised) -> Iterator[str]:
         yield (
             f"Set {_pins(both)} through a resistor of some kΩ each: the part drives "
             f"{'it' if len(both) == 1 else 'them'} at other steps, or would if the description "
-            "were wrong. (Common practice, no source.)"
+            "were wrong. (Common practice, no source.) A programmer that runs the test vectors of "
+            "the fuse file drives these pins hard, with no such resistor: if in doubt, have the "
+            "fuse file made with --no-vectors and set the pins yourself."
         )
     others = sorted(set_pins.difference(both))
     if others:
@@ -132,18 +136,21 @@ def _step_table(exercised: Exercised) -> Table:
     )
 
 
-def _telling_table(exercised: Exercised, tried: int) -> Table:
+def _telling_table(exercised: Exercised, number: int, made: Exercise) -> Table:
+    count = len(exercised.shown)
+    before = "" if number == 1 else " and at none before it"
     lead = (
-        f"{tried} slips in the device file were tried, one at a time: {len(exercised.shown)} show "
-        "at this part and at none before it. The table says where: look up the places at which "
-        "your readings differ, and suspect those slips first. Where several are in the file at "
-        "once, readings differ in more places."
+        f"{counted(made.tried, 'slip')} in the device file {'was' if made.tried == 1 else 'were'} "
+        f"tried, one at a time: {count} {'shows' if count == 1 else 'show'} at this part{before}. "
+        "A single odd reading is measured again first. The table says where slips show: look up "
+        "the places at which your readings differ, and suspect those slips first. Where "
+        "several are in the file at once, readings differ in more places."
     )
     remarks = []
     if exercised.open:
         left = (
-            "These do not show, neither at this part nor at one before it; either the part would "
-            "behave the same, or another part is needed (--parts all):"
+            f"These do not show at this part{'' if number == 1 else ' or one before it'}; "
+            "either the part would behave the same, or another part is needed (--parts all):"
         )
         remarks = [left, *(f"- {what}" for what in exercised.open)]
     return Table(
@@ -153,7 +160,7 @@ def _telling_table(exercised: Exercised, tried: int) -> Table:
             (telling.what, str(len(telling.where)), _where(telling)) for telling in exercised.shown
         ),
         "lrl",
-        lead=(lead,),
+        lead=(lead, kinds_tried(made)),
         remarks=tuple(remarks),
     )
 
