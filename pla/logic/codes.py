@@ -144,8 +144,9 @@ def search(
         hunt.limit = min((h.limit for h in hunts), default=hunt.limit)
         if not hunts:
             hunt.settle(space.admitted(counting(machine)), _COUNTING)
-        hunt.descend()
-        whole = _all_can_be_looked_at(space) and hunt.exhaust() and whole
+        few = _all_can_be_looked_at(space)
+        hunt.descend(0 if few else MAX_KICKS)
+        whole = few and hunt.exhaust() and whole
         hunts.append(hunt)
         _charge(budget, part, given)
     best = min(hunts, key=lambda h: (h.limit, h.space.bits))
@@ -165,18 +166,19 @@ def _outcome(
         exact, trusted = (
             min(terms, *bounds) for bounds in ([n.exact for n in every], [n.trusted for n in every])
         )
+    proven = terms == trusted
     return CodeSearch(
         codes,
         best.space.bits,
         terms,
         trusted,
-        "certificate" if terms == exact else "solver" if terms == trusted else None,
+        ("certificate" if terms == exact else "solver") if proven else None,
         best.needs[best.winner].trusted == terms,
         counted.terms,
         sum(len(hunt.seen) for hunt in hunts),
         sum(len(hunt.needs) for hunt in hunts),
         "exhaustion" if whole else "local search",
-        any(hunt.exhausted for hunt in hunts),
+        not proven and any(hunt.exhausted for hunt in hunts),
         any(hunt.effort.clock for hunt in hunts),
     )
 
@@ -223,7 +225,7 @@ class _Hunt:
         self._given = effort.work
         self._guessing = effort
         self._guesses: dict[Assignment, tuple[int, int]] = {}
-        self._guessed: dict[Codes, int] = {}
+        self._guessed: dict[Codes, tuple[int, int]] = {}
 
     def settle(self, codes: Codes, share: float = _ONE) -> Need:
         """Minimize with these codes, or show that they need no fewer terms than the best so far."""
@@ -244,14 +246,19 @@ class _Hunt:
         _charge(self.effort, part, given)
         self.exhausted = self.exhausted or part.exhausted
         # A guess is a cover, too, and may be the better one where the effort was not enough.
-        need = replace(need, terms=min(need.terms, self._guessed.get(codes, need.terms)))
+        guessed, _ = self._guessed.get(codes, (need.terms, 0))
+        need = replace(need, terms=min(need.terms, guessed))
         self.needs[codes] = need
         if need.terms < self.limit:
             self.limit, self.winner = need.terms, codes
         return need
 
-    def descend(self) -> None:
-        """Descents from several beginnings and from near where they ended, then minimize."""
+    def descend(self, kicks: int) -> None:
+        """Descents from several beginnings and from near the best end; then minimize.
+
+        Args:
+            kicks: How often to begin anew a few random moves off the best end so far.
+        """
         self._guessing = _part(self.effort, _GUESSING)
         given = self._guessing.work
         complemented = tuple(not p.true for p in self.space.output_polarities)
@@ -259,7 +266,7 @@ class _Hunt:
         ends = [self._descent(at) for at in sorted(begun, key=self._guess)]
         best = min(ends, key=self._guess)
         chance = random.Random(_SEED)  # noqa: S311 - the same moves at every run
-        for _ in range(MAX_KICKS):
+        for _ in range(kicks):
             if self._guessing.exhausted:
                 break
             end = self._descent(self._kicked(best, chance))
@@ -267,9 +274,8 @@ class _Hunt:
                 best = end
         self.exhausted = self.exhausted or self._guessing.exhausted
         _charge(self.effort, self._guessing, given)
-        ranked = sorted(self._guesses, key=lambda a: self._guesses[a])
-        chosen = dict.fromkeys(self.space.representative(a.codes) for a in ranked)
-        for _, codes in zip(range(_SETTLED), chosen, strict=False):
+        ranked = sorted(self._guessed, key=lambda codes: self._guessed[codes])
+        for codes in ranked[:_SETTLED]:
             self.settle(codes)
 
     def exhaust(self) -> bool:
@@ -306,8 +312,8 @@ class _Hunt:
                     for part, c in zip(alone(function), complemented, strict=True)
                 ]
                 self._guesses[key] = (sum(t for t, _ in parts), sum(k for _, k in parts))
-            terms, _ = self._guesses[key]
-            self._guessed[alike] = min(terms, self._guessed.get(alike, terms))
+            guess = self._guesses[key]
+            self._guessed[alike] = min(guess, self._guessed.get(alike, guess))
         return self._guesses[key]
 
     def _descent(self, at: Assignment) -> Assignment:
