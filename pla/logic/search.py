@@ -85,7 +85,11 @@ class Selection:
 
 
 def search_polarities(
-    program: Program, n_outputs: int, allowed: Decisions, feasible: Feasible
+    program: Program,
+    n_outputs: int,
+    allowed: Decisions,
+    feasible: Feasible,
+    limit: int | None = None,
 ) -> Selection:
     """The smallest cover over all allowed polarities, or the best found within the budget.
 
@@ -94,16 +98,18 @@ def search_polarities(
         n_outputs: How many outputs there are.
         allowed: Outputs that have a single polarity have it here; ``None`` for the others.
         feasible: Cuts polarities that the device cannot give together.
+        limit: Only covers of fewer terms than this are looked for; the bounds then say no more than
+            whether there can be one.
     """
     root = program.relax(allowed)
     best = _first_guess(program, allowed, root, feasible)
     answered = False
-    exact_floor = trusted_floor = len(best.columns)
+    exact_floor = trusted_floor = _worth(best, limit)
     order = count()
     queue: list[_Node] = [(root.bound, 0, 0.0, next(order), allowed, root)]
     while queue:
         bound, depth, lean, number, decisions, relaxed = heapq.heappop(queue)
-        if bound >= len(best.columns):
+        if bound >= _worth(best, limit):
             break
         if program.exhausted:
             exact_floor, trusted_floor = min(exact_floor, bound), min(trusted_floor, bound)
@@ -139,6 +145,11 @@ def search_polarities(
     return Selection(
         best.columns, best.complemented, min(size, exact_floor), min(size, trusted_floor)
     )
+
+
+def _worth(best: Selection, limit: int | None) -> int:
+    """From how many terms on a cover is of no use."""
+    return len(best.columns) if limit is None else min(limit, len(best.columns))
 
 
 def _first_guess(
