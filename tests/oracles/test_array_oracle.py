@@ -136,7 +136,7 @@ def test_other_size():
         pytest.param(
             (
                 'modes = [ { set = "0",',
-                'register = { clock = { pin = 1 }, power_up = 0 }\nmodes = [ { d = "sum", set = "0",',
+                'register = { clock = { pin = 1 }, power_up = 0 }\nmodes = [ {d="sum", set = "0",',
             ),
             id="registers",
         ),
