@@ -35,7 +35,11 @@ class Snapshot:
 
 
 def run(
-    device: Description, states: list[int], sequences: Sequence[Drivers], cases: int
+    device: Description,
+    states: list[int],
+    sequences: Sequence[Drivers],
+    cases: int,
+    power_up: Mapping[Source, int] | None = None,
 ) -> list[Snapshot]:
     """Levels after every step of `cases` independent sequences, from power-up on.
 
@@ -47,12 +51,14 @@ def run(
             stays as it was, at first driven by nobody. The first step is there at power-up: it
             makes no edges.
         cases: How many sequences.
+        power_up: Of cells whose registers come up with nobody knows what: the cases in which that
+            happens to be 1; in the others it is 0. Without it, it is unknown.
 
     Raises:
         UnreadableError: The states are not those of this device in this mode.
         LoopError: A sum depends on itself without a register between.
     """
-    part = _Part(configured(device, states), (1 << cases) - 1)
+    part = _Part(configured(device, states), (1 << cases) - 1, power_up or {})
     return [part.step(drivers) for drivers in sequences]
 
 
@@ -80,7 +86,7 @@ def pulsed(clock: int, steps: Sequence[Drivers], cases: int, rest: int = 0) -> l
 class _Part:
     """What the registers hold and what the pins are driven with, from step to step."""
 
-    def __init__(self, array: Configured, everywhere: int):
+    def __init__(self, array: Configured, everywhere: int, power_up: Mapping[Source, int]):
         self.array, self.everywhere = array, everywhere
         self.registers: dict[Source, Register] = {
             key: mode.register for key, mode in array.modes.items() if mode.register is not None
@@ -89,6 +95,9 @@ class _Part:
         self.drivers: dict[int, tuple[int, int]] = {}
         known = {0: Logic(0, everywhere), 1: Logic(everywhere, 0), None: Logic(0, 0)}
         self.q = {key: known[register.power_up] for key, register in self.registers.items()}
+        for key, ones in power_up.items():
+            if key in self.q and self.registers[key].power_up is None:
+                self.q[key] = Logic(everywhere & ones, everywhere & ~ones)
         self.powered = False
         self.last: _Run | None = None
 

@@ -142,6 +142,7 @@ class _Run:
         self.array, self.drivers, self.everywhere = array, drivers, everywhere
         self.state: Mapping[Source, Logic] = state or {}
         self.known: dict[Line, Logic] = {}
+        self.rows: dict[int, Logic] = {}
         self.levels: dict[int, Level] = {}
         self.way: list[Line] = []
         device = array.device
@@ -172,6 +173,11 @@ class _Run:
         return found.inverse if line.complement else found
 
     def row(self, row: int) -> Logic:
+        if row not in self.rows:
+            self.rows[row] = self.product(row)
+        return self.rows[row]
+
+    def product(self, row: int) -> Logic:
         if self.array.rows[row] is None:
             return Logic(0, self.everywhere)
         high, low = self.everywhere, 0

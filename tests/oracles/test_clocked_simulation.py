@@ -143,6 +143,21 @@ def test_what_registers_take(changes, links, a, b, shown):
     assert pulses(changed(ONE, *changes), links, {2: a, 3: b}) == shown
 
 
+@pytest.mark.parametrize(
+    ("change", "shown"),
+    [
+        pytest.param(UNKNOWN, [("1", "0"), ("0", "1")], id="unknown"),
+        pytest.param(UP_1, [("1", "1"), ("0", "0")], id="known"),
+    ],
+)
+def test_power_up_as_it_happens(change, shown):
+    device = read_device(changed(ONE, change))
+    states = [int(state) for state in "".join(rows(NOT_Q))]
+    sequence = [held({1: "0", 2: "0", 3: "0"}, 2), held({1: "1"}, 2)]
+    found = run(device, states, sequence, 2, {5: 0b01})
+    assert [tuple(snapshot.pins[5].text(2)) for snapshot in found] == shown
+
+
 FALLING = ("{ pin = 1 }", '{ pin = 1, edge = "falling" }')
 
 

@@ -1,0 +1,310 @@
+"""Random clocked designs against the oracle: a part with a row for every point does what they ask.
+
+Nothing is planned here. The part is made for the design: each row is one combination of all inputs
+and states, and the links to the sums are the truth table. So what the designs say of themselves and
+what the oracle says of a part are held against each other.
+"""
+
+import random
+from dataclasses import dataclass
+
+import pytest
+from oracles.clocked_simulation import run
+from oracles.device_description import read_device
+from random_clocked_designs import FREE, ClockedShape, Follower, Z, random_clocked_design
+
+SEQUENCES, CLOCKS = 10, 30
+
+
+@dataclass
+class Cell:
+    """A cell of the part: `register` is ``None`` for a sum that is shown as it is."""
+
+    name: str
+    key: int | str
+    register: str | None
+    stored_low: bool
+    turned: tuple[bool, ...] = ()
+    values: dict[str, list[int]] = None
+
+    @property
+    def gates(self):
+        return {"jk": "jk", "sr": "sr"}.get(self.register, "")
+
+
+class Part:
+    """A device file and links for one design."""
+
+    def __init__(self, rng, design, shape):
+        self.rng, self.design, self.shape = rng, design, shape
+        machine = design.machine
+        self.state_bits = (
+            [f"stage[{i}]" for i in range((len(machine.states) - 1).bit_length())]
+            if machine
+            else []
+        )
+        self.order = [*design.input_names, *design.registered_names, *self.state_bits]
+        self.points = 1 << len(self.order)
+        self.pin = {name: i for i, name in enumerate([*design.input_names, "clk"], 1)}
+        for name in design.output_names:
+            self.pin[name] = len(self.pin) + 1
+        self.cells = []
+        for name in [*design.registered_names, *self.state_bits]:
+            kind = rng.choice(["d", "t", "jk", "sr"])
+            key = self.pin.get(name, f"n{len(self.cells)}")
+            turned = tuple(rng.random() < 0.3 for _ in kind)
+            self.cells.append(Cell(name, key, kind, rng.random() < 0.5, turned))
+        for name in design.output_names:
+            if name not in design.registered_names:
+                self.cells.append(Cell(name, self.pin[name], None, rng.random() < 0.5))
+        for cell in self.cells:
+            cell.values = self.sums(cell)
+
+    def state_at(self, point):
+        return point >> len(self.order) - len(self.state_bits)
+
+    def wanted(self, name, point):
+        """Asserted next value or value; what is left open is anything."""
+        design, found = self.design, FREE
+        inputs = point % design.input_points
+        if name in self.state_bits or (design.machine and name in design.machine.outputs):
+            machine, state = design.machine, self.state_at(point)
+            if state < len(machine.states) and name in self.state_bits:
+                found = machine.then[state][inputs] >> self.state_bits.index(name) & 1
+            elif state < len(machine.states):
+                found = machine.outputs[name][state][inputs]
+        else:
+            found = design.table[name][point % design.points]
+        return self.rng.randint(0, 1) if found is FREE else found
+
+    def sums(self, cell):
+        """Of each sum of a cell its value at every point."""
+        gates = cell.gates or ("" if cell.register is None else cell.register)
+        found = {gate: [] for gate in gates or [""]}
+        for point in range(self.points):
+            value = self.wanted(cell.name, point) ^ cell.stored_low
+            if cell.register is None:
+                found[""].append(value)
+                continue
+            q = (point >> self.order.index(cell.name) & 1) ^ cell.stored_low
+            any_ = self.rng.randint(0, 1)
+            taken = {
+                "d": [value],
+                "t": [value ^ q],
+                "jk": [value, any_] if q == 0 else [any_, 1 - value],
+                "sr": [value & (1 - q | any_), (1 - value) & (q | any_)],
+            }[cell.register]
+            for gate, level, turned in zip(gates, taken, cell.turned, strict=True):
+                found[gate].append(level ^ turned)
+        return found
+
+    def literals(self, where):
+        """The product that is 1 there, as lines of the inputs."""
+        bits = range(len(self.design.input_names))
+        points = [p for p, on in enumerate(where) if on]
+        same = {b: {p >> b & 1 for p in points} for b in bits}
+        fixed = {b: values.pop() for b, values in same.items() if len(values) == 1}
+        assert len(points) == 1 << len(bits) - len(fixed)
+        return {self.line(self.design.input_names[b], value) for b, value in fixed.items()}
+
+    def line(self, name, value):
+        """The line that is 1 when an input or a state is so asserted."""
+        if name in self.design.input_names:
+            return f"{self.pin[name]}" + "'" * (value == self.design.active_low[name])
+        cell = next(c for c in self.cells if c.name == name)
+        return f"{cell.key}" + "'" * (value == cell.stored_low)
+
+    def build(self):
+        """Device file and the state of each fuse; a link that reads 1 joins."""
+        design = self.design
+        columns = [
+            f"{line}{prime}"
+            for name in self.order
+            for line in [self.line(name, 1).removesuffix("'")]
+            for prime in ("", "'")
+        ]
+        entries = [(c, gate) for c in self.cells for gate in (c.gates or [""])]
+        words = [f"{c.key}.{gate}" if gate else str(c.key) for c, gate in entries]
+        width = len(columns) + len(entries)
+        rows = []
+        for point in range(self.points):
+            joined = {self.line(name, point >> i & 1) for i, name in enumerate(self.order)}
+            links = [int(column in joined) for column in columns]
+            links += [c.values[gate or c.register or ""][point] for c, gate in entries]
+            rows.append(links)
+        control_rows = []
+        kinds = []
+        for index, cell in enumerate(self.cells):
+            kinds += self.kind(index, cell, control_rows)
+        fuses = [state for row in rows for state in row]
+        for joined in control_rows:
+            fuses += [int(column in joined) for column in columns] + [0] * len(entries)
+        spare = [
+            (self.points + i) * width + len(columns) + j
+            for i in range(len(control_rows))
+            for j in range(len(entries))
+        ]
+        pins = max(self.pin.values()) + 2
+        text = f"""
+name = "made"
+technology = "erasable"
+pins = {pins}
+ground = {pins - 1}
+power = {pins}
+fuses = {len(fuses)}
+spare = {spare}
+[links]
+blank = 0
+connected = 1
+unused_term = "dead"
+unused_control = "off"
+[and]
+columns = "{" ".join(columns)}"
+terms = {self.points + len(control_rows)}
+first_fuse = 0
+term_step = {width}
+[or]
+columns = "{" ".join(words)}"
+terms = "0..{self.points - 1}"
+first_fuse = {len(columns)}
+term_step = {width}
+[register]
+clock = {{ pin = {self.pin["clk"]}, edge = "{"falling" if self.shape.falling else "rising"}" }}
+power_up = "unknown"
+"""
+        assert design.clock.name == "clk"
+        return text + "\n".join(kinds) + "\n", fuses
+
+    def kind(self, index, cell, control_rows):
+        design = self.design
+        shown = "sum" if cell.register is None else "q"
+        mode = ['set = ""']
+        if isinstance(cell.key, int):
+            prime = cell.stored_low != design.active_low[cell.name]
+            mode.append(f'pin = "{shown}' + "'" * prime + '"')
+        lines = [f"[kind.k{index}]"]
+        place = f"pin = {cell.key}" if isinstance(cell.key, int) else f'name = "{cell.key}"'
+        keys = [place, "links = []"]
+        if cell.register is not None:
+            for name, turned in zip(cell.register, cell.turned, strict=True):
+                mode.append(f'{name} = "sum' + "'" * turned + '"')
+            mode.append('feedback = "q"')
+            start, acting = self.start_and_controls(cell)
+            if start is not None:
+                lines.append(f"register = {{ power_up = {start ^ cell.stored_low} }}")
+            for value, when in acting:
+                what = "preset" if value ^ cell.stored_low else "reset"
+                said = "asynchronous" if when.asynchronous else "clock"
+                keys.append(
+                    f'{what} = {{ term = {self.points + len(control_rows)}, when = "{said}" }}'
+                )
+                control_rows.append(self.literals(when.where))
+        if cell.name in design.drives:
+            (line,) = self.literals(design.drives[cell.name])
+            pin = line.removesuffix("'")
+            level = "high" if line == pin else "low"
+            lines.append(f'enable = {{ pin = {pin}, active = "{level}" }}')
+        lines += [
+            "bits = []",
+            "modes = [ { " + ", ".join(mode) + " } ]",
+            "cells = [ { " + ", ".join(keys) + " } ]",
+        ]
+        return lines
+
+    def start_and_controls(self, cell):
+        """What the register holds at power-up; (value, when) of what resets and presets it."""
+        design = self.design
+        if cell.name in self.state_bits:
+            bit = design.machine.start >> self.state_bits.index(cell.name) & 1
+            return bit, [(bit, design.machine.reset)] * (design.machine.reset is not None)
+        acting = [(0, design.resets.get(cell.name)), (1, design.presets.get(cell.name))]
+        return design.starts[cell.name], [(v, when) for v, when in acting if when is not None]
+
+
+def random_shape(rng):
+    inner = rng.choice([0, 0, 1, 2])
+    return ClockedShape(
+        inputs=rng.randint(2, 3),
+        registered=rng.randint(1, 2),
+        plain=rng.randint(1, 3),
+        inner=inner,
+        states=rng.choice([0, 2, 3, 4] if inner else [0, 3, 4, 5]),
+        falling=rng.random() < 0.5,
+        reset=rng.choice([None, "asynchronous", "clock"]),
+        preset=rng.choice([None, None, "asynchronous", "clock"]),
+        enable_level=rng.choice([None, None, 0, 1]),
+        starts=rng.random() < 0.8,
+    )
+
+
+def differences(design, part, shape, states, text, rng):
+    """What some pin shows and should not, in some of many runs from power-up on."""
+    device, cases, low = read_device(text), SEQUENCES, design.active_low
+    rest = int(shape.falling)
+    points, steps, power_up = [], [], {}
+    for clock in range(CLOCKS):
+        before = points[-1] if points else [None] * cases
+        points.append([design.random_inputs(rng, b) for b in before])
+        levels = {
+            part.pin[name]: sum(
+                1 << k for k, p in enumerate(points[clock]) if p >> i & 1 != low[name]
+            )
+            for i, name in enumerate(design.input_names)
+        }
+        everywhere = (1 << cases) - 1
+        levels[part.pin["clk"]] = everywhere * rest
+        steps.append({pin: (everywhere, level) for pin, level in levels.items()})
+        steps.append({part.pin["clk"]: (everywhere, everywhere * (1 - rest))})
+    for key in device.cells:
+        power_up[key] = rng.getrandbits(cases)
+    found = run(device, states, steps, cases, power_up)
+    wrong = compared = 0
+    for case in range(cases):
+        follower = Follower(design, points[0][case])
+        for clock in range(CLOCKS):
+            follower.apply(points[clock][case])
+            for step in (2 * clock, 2 * clock + 1):
+                if step % 2:
+                    follower.clock()
+                for name, value in follower.wanted().items():
+                    level = found[step].pins[part.pin[name]].at(case)
+                    if value == Z or level == "Z":
+                        wrong += value != level
+                    elif value is None:
+                        assert level in "01"
+                        follower.observe(name, int(level) ^ low[name])
+                    else:
+                        compared += 1
+                        wrong += level != str(value ^ low[name])
+    return wrong, compared
+
+
+@pytest.mark.parametrize("seed", range(24))
+def test_a_part_with_a_row_for_every_point(seed):
+    rng = random.Random(f"clocked design {seed}")
+    shape = random_shape(rng)
+    design = random_clocked_design(rng, shape)
+    part = Part(rng, design, shape)
+    text, states = part.build()
+    device = read_device(text)
+    fuses, pins = device.role_counts()
+    assert set(fuses.values()) == set(pins.values()) == {1}
+    wrong, compared = differences(design, part, shape, states, text, rng)
+    assert not wrong
+    assert compared > CLOCKS
+
+
+def test_flipped_links_show():
+    """The comparison has teeth: most links of rows that are met matter."""
+    rng = random.Random("teeth")
+    shape = ClockedShape(inputs=2, registered=2, plain=1, reset="asynchronous")
+    design = random_clocked_design(rng, shape)
+    part = Part(rng, design, shape)
+    text, states = part.build()
+    chosen = rng.sample(range(len(states)), 30)
+    shown = 0
+    for fuse in chosen:
+        changed = [state ^ (number == fuse) for number, state in enumerate(states)]
+        shown += differences(design, part, shape, changed, text, random.Random(1))[0] > 0
+    assert shown >= len(chosen) / 3
+    assert differences(design, part, shape, states, text, random.Random(1))[0] == 0
