@@ -330,7 +330,7 @@ class _Writer:
 
     def never(self):
         rng, made = self.rng, self.made
-        if self.shape.inputs > 2 and rng.random() < 0.25:
+        if self.shape.inputs > 1 and rng.random() < 0.4:
             at_inputs = ClockedDesign(made.inputs, made.clock, [], [], [])
             text, where = _equation(rng, at_inputs, _fields(made.inputs), {}, depth=1)
             if sum(where) <= 0.4 * len(where):

@@ -7,11 +7,14 @@ what the oracle says of a part are held against each other.
 
 import random
 from dataclasses import dataclass
+from functools import cache
 
 import pytest
+from clocked_classes import CLOCKED_CLASSES, random_clocked_device
 from clocked_runs import ClockedRun
+from clocked_shapes import random_clocked_shape
 from oracles.device_description import read_device
-from random_clocked_designs import FREE, ClockedShape, random_clocked_design
+from random_clocked_designs import FREE, ClockedShape, Follower, random_clocked_design
 
 SEQUENCES, CLOCKS = 10, 30
 
@@ -256,17 +259,104 @@ def test_a_part_with_a_row_for_every_point(seed):
 
 
 def test_flipped_links_show():
-    """The comparison has teeth: most links of rows that are met matter."""
-    rng = random.Random("teeth")
+    """The comparison has teeth: many links matter, also in rows that are seldom met."""
     shape = ClockedShape(inputs=2, registered=2, plain=1, reset="asynchronous")
-    design = random_clocked_design(rng, shape)
-    part = Part(rng, design, shape)
-    text, states = part.build()
-    device = read_device(text)
-    chosen = rng.sample(range(len(states)), 18)
     shown = 0
-    for fuse in chosen:
-        changed = [state ^ (number == fuse) for number, state in enumerate(states)]
-        shown += differences(design, part, shape, changed, device, random.Random(1)) != []
-    assert shown >= len(chosen) / 3
-    assert differences(design, part, shape, states, device, random.Random(1)) == []
+    for seed in range(4):
+        rng = random.Random(f"teeth {seed}")
+        design = random_clocked_design(rng, shape)
+        part = Part(rng, design, shape)
+        text, states = part.build()
+        device = read_device(text)
+        assert differences(design, part, shape, states, device, random.Random(1)) == []
+        for fuse in rng.sample(range(len(states)), 8):
+            changed = [state ^ (number == fuse) for number, state in enumerate(states)]
+            shown += differences(design, part, shape, changed, device, random.Random(1)) != []
+    assert shown >= 8
+
+
+@cache
+def many_designs():
+    rngs = [random.Random(f"clocked design {seed}") for seed in range(80)]
+    return [random_clocked_design(rng, random_shape(rng)) for rng in rngs]
+
+
+# What comes about, and in how many of 80 designs at least.
+MARKS = [
+    pytest.param(lambda d: "register" in d.text, 80, id="registers"),
+    pytest.param(lambda d: d.machine, 40, id="state-tables"),
+    pytest.param(lambda d: d.inner, 25, id="inner-registers"),
+    pytest.param(lambda d: d.resets or d.presets, 30, id="resets-and-presets"),
+    pytest.param(lambda d: d.resets and d.presets, 8, id="both"),
+    pytest.param(lambda d: any(a.asynchronous for a in d.resets.values()), 15, id="asynchronous"),
+    pytest.param(lambda d: any(not a.asynchronous for a in d.resets.values()), 12, id="at-clock"),
+    pytest.param(lambda d: d.machine and d.machine.reset, 15, id="state-table-with-reset"),
+    pytest.param(lambda d: d.drives, 25, id="enables"),
+    pytest.param(lambda d: {0, 1} <= set(d.starts.values()), 15, id="starts"),
+    pytest.param(lambda d: None in d.starts.values(), 20, id="start-left-open"),
+    pytest.param(lambda d: "clk'" in d.text, 20, id="falling-edge"),
+    pytest.param(lambda d: d.clock.active_low, 12, id="active-low-clock"),
+    pytest.param(lambda d: any(d.never), 5, id="impossible-inputs"),
+    pytest.param(lambda d: 'codes = "free"' in d.text, 5, id="free-codes"),
+    pytest.param(lambda d: 'codes = "one-hot"' in d.text, 5, id="one-hot-codes"),
+    pytest.param(lambda d: "codes = {" in d.text, 5, id="codes-in-a-table"),
+    pytest.param(lambda d: 'unused = "start"' in d.text, 10, id="unused-codes"),
+    pytest.param(lambda d: None in {v for row in d.table.values() for v in row}, 20, id="open"),
+    pytest.param(
+        lambda d: (
+            any(
+                name in d.text.split("[logic]")[-1].split("=", 1)[-1] for name in d.registered_names
+            )
+            and "[logic]" in d.text
+        ),
+        40,
+        id="present-values",
+    ),
+]
+
+
+@pytest.mark.parametrize(("mark", "least"), MARKS)
+def test_what_designs_have(mark, least):
+    assert sum(bool(mark(design)) for design in many_designs()) >= least
+
+
+def test_the_same_seed_gives_the_same_design():
+    shape = ClockedShape(inner=2, states=4, reset="clock")
+    first, again = (random_clocked_design(random.Random(5), shape) for _ in range(2))
+    assert first.text == again.text
+    assert first.table == again.table
+
+
+@pytest.mark.parametrize("name", ["reset", "preset"])
+def test_a_follower_forgets_what_is_not_held(name):
+    """Without a start everything is open until a reset or preset closes it."""
+    shape = ClockedShape(inputs=2, registered=1, plain=1, starts=False, **{name: "asynchronous"})
+    seen = set()
+    for seed in range(40):
+        design = random_clocked_design(random.Random(seed), shape)
+        (output,) = design.registered_names
+        acting = (design.resets if name == "reset" else design.presets).get(output)
+        for point in range(design.input_points):
+            held = Follower(design, point).held[output]
+            acts = acting is not None and acting.where[point]
+            assert held == (int(name == "preset") if acts else None)
+            seen.add(held)
+    assert seen == {None, int(name == "preset")}
+
+
+@pytest.mark.parametrize("which", CLOCKED_CLASSES)
+def test_shapes_for_each_class_of_devices(which):
+    found = []
+    for seed in range(25):
+        rng = random.Random(f"{which} shape {seed}")
+        (text,) = random_clocked_device(rng, which).files.values()
+        device = read_device(text)
+        shape = random_clocked_shape(rng, device)
+        design = random_clocked_design(rng, shape)
+        assert len(design.registered_names) == shape.registered + shape.inner
+        assert len(design.output_names) <= len(device.cell_pins)
+        assert shape.falling == device.registers[0].falling
+        found.append(design)
+    assert sum(bool(design.registered or design.inner) for design in found) >= 15
+    assert sum(bool(design.machine) for design in found) >= 3
+    assert sum(bool(design.plain) for design in found) >= 15
