@@ -275,7 +275,7 @@ def _description(data) -> Description:
         control["term"]
         for of_cell in said.values()
         for control in (of_cell.get("reset"), of_cell.get("preset"))
-        if control is not None and "term" in control
+        if isinstance(control, dict) and "term" in control
     }
     sums = _or_array(data, rows, owned, controls, key_of, gates)
     cells = {}
@@ -415,7 +415,8 @@ def _register(mode, said, what):
             if mode[name] != "none":
                 raise UnreadableError(f"{what}: {name} = {mode[name]!r}")
             control = None
-        controls.append(None if control is None else _control(control, what))
+        acts = control is not None and control != "none"
+        controls.append(_control(control, what) if acts else None)
     power_up = None if power_up == "unknown" else power_up
     return Register(kind, tuple(inverted), clock["pin"], falling, power_up, *controls)
 
@@ -494,10 +495,11 @@ def _cell(kind, cell, rows, own, said, shared):
             enable = _enable(mode["enable"], rows)
         else:
             enable = _enable(cell.get("enable", kind.get("enable", "always")))
-        if mode["set"] in modes or len(mode["set"]) != len(cell.get("links", [])):
-            raise UnreadableError(f"cell {key}: setting {mode['set']!r}")
+        setting = mode["set"] if kind.get("bits") else mode.get("set", "")
+        if setting in modes or len(setting) != len(cell.get("links", [])):
+            raise UnreadableError(f"cell {key}: setting {setting!r}")
         carried = _carried(mode, key, pin, own)
-        modes[mode["set"]] = Mode(shows, terms, enable, carried, register, second)
+        modes[setting] = Mode(shows, terms, enable, carried, register, second)
     return Cell(key, pin, cell.get("name"), cell.get("links", []), modes, rows, gates)
 
 

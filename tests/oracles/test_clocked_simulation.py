@@ -273,6 +273,15 @@ PRESET_BY_CLOCK = (
             "0111",
             id="not-in-this-mode",
         ),
+        pytest.param(
+            [("bits = []", 'register = { preset = "none" }\nbits = []')],
+            rows(preset=B),
+            "000",
+            "000",
+            "011",
+            "000",
+            id="not-for-this-kind",
+        ),
         # Reset is q = 0: the pin shows its complement.
         pytest.param([AFTER], rows(TRUE, reset=A), "010", "001", "000", "101", id="complement"),
     ],
@@ -335,6 +344,12 @@ def test_a_register_whose_pin_is_an_input():
     levels = {1: "0101", 2: "0000", 3: "0000", 5: "0110"}
     sequence = [held({pin: signs[k] for pin, signs in levels.items()}) for k in range(4)]
     assert [x.q[5].high for x in run(read_device(text), states, sequence, 1)] == [0, 1, 1, 0]
+
+
+def test_a_setting_without_links_need_not_be_said():
+    text = changed(ONE, ('set = "", ', ""), ("bits = []\n", ""), (", links = []", ""))
+    levels = {1: "0101", 2: "0110", 3: "0000"}
+    assert trace(text, rows(A), levels)[5] == "0110"
 
 
 BYPASS = changed(
