@@ -8,15 +8,15 @@ from __future__ import annotations
 from dataclasses import dataclass, field
 from typing import TYPE_CHECKING
 
+from clocked_follower import Follower, Z
 from oracles.clocked_simulation import run
-from random_clocked_designs import Follower, Z
 
 if TYPE_CHECKING:
     import random
     from collections.abc import Mapping
 
+    from clocked_follower import ClockedDesign
     from oracles.device_description import Description
-    from random_clocked_designs import ClockedDesign
 
 
 @dataclass

@@ -11,10 +11,11 @@ from functools import cache
 
 import pytest
 from clocked_classes import CLOCKED_CLASSES, random_clocked_device
+from clocked_follower import Follower
 from clocked_runs import ClockedRun
 from clocked_shapes import random_clocked_shape
 from oracles.device_description import read_device
-from random_clocked_designs import FREE, ClockedShape, Follower, random_clocked_design
+from random_clocked_designs import FREE, ClockedShape, random_clocked_design
 
 SEQUENCES, CLOCKS = 10, 30
 
@@ -262,7 +263,7 @@ def test_flipped_links_show():
     """The comparison has teeth: many links matter, also in rows that are seldom met."""
     shape = ClockedShape(inputs=2, registered=2, plain=1, reset="asynchronous")
     shown = 0
-    for seed in range(4):
+    for seed in range(3):
         rng = random.Random(f"teeth {seed}")
         design = random_clocked_design(rng, shape)
         part = Part(rng, design, shape)
@@ -272,7 +273,7 @@ def test_flipped_links_show():
         for fuse in rng.sample(range(len(states)), 8):
             changed = [state ^ (number == fuse) for number, state in enumerate(states)]
             shown += differences(design, part, shape, changed, device, random.Random(1)) != []
-    assert shown >= 8
+    assert shown >= 6
 
 
 @cache

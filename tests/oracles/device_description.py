@@ -11,6 +11,14 @@ from dataclasses import dataclass
 from pathlib import Path
 
 from oracles.fuse_file import UnreadableError
+from oracles.register_description import (
+    Control,
+    Register,
+    gates_of,
+    only,
+    register_of,
+    registering,
+)
 
 Source = int | str
 
@@ -29,34 +37,6 @@ class Line:
     @property
     def inverse(self) -> "Line":
         return Line(self.kind, self.of, not self.complement)
-
-
-@dataclass(frozen=True)
-class Control:
-    """What resets or presets a register: ("row", row) or ("pin", pin, level that acts).
-
-    `asynchronous`: at once, else at the clock edge.
-    """
-
-    by: tuple
-    asynchronous: bool
-
-
-@dataclass(frozen=True)
-class Register:
-    """The register of a cell in one mode.
-
-    `kind` is ``d``, ``t``, ``jk`` or ``sr``; `inverted` says for each of its inputs, first j before
-    k and s before r, whether it takes the complement of its sum. `power_up` is 0, 1 or ``None``.
-    """
-
-    kind: str
-    inverted: tuple[bool, ...]
-    clock: int
-    falling: bool
-    power_up: int | None
-    reset: Control | None
-    preset: Control | None
 
 
 @dataclass(frozen=True)
@@ -227,12 +207,6 @@ def _laid_over(below, above):
     return merged
 
 
-def _only(table, allowed, what):
-    strange = set(table) - set(allowed.split())
-    if strange:
-        raise UnreadableError(f"{what}: {sorted(strange)} is not understood")
-
-
 def _numbers(value) -> list[int]:
     """Numbers and ranges: ``7``, ``"1..7"`` or a list of such."""
     found = []
@@ -243,13 +217,13 @@ def _numbers(value) -> list[int]:
 
 
 def _description(data) -> Description:
-    _only(
+    only(
         data,
         "name summary technology pins fuses ground power unconnected spare links and or kind drop "
         "set family signature timing register",
         "device file",
     )
-    _only(data["links"], "blank connected unused_term unused_enable unused_control", "[links]")
+    only(data["links"], "blank connected unused_term unused_enable unused_control", "[links]")
     words = data["and"]["columns"].split()
     cells_data = [(kind, cell) for kind in data["kind"].values() for cell in kind["cells"]]
     key_of = {}
@@ -267,10 +241,10 @@ def _description(data) -> Description:
     starts, step = _starts(data["and"], rows, "[and]")
     links = [[first + i * step for i in range(len(words))] for first in starts]
     for kind in data["kind"].values():
-        _only(kind, "bits modes cells enable unused register", "kind")
+        only(kind, "bits modes cells enable unused register", "kind")
     owned = {_key(cell): _owned(kind, cell) for kind, cell in cells_data}
-    said = {_key(cell): _registering(data, kind, cell) for kind, cell in cells_data}
-    gates = {_key(cell): _gates(kind) for kind, cell in cells_data}
+    said = {_key(cell): registering(data, kind, cell) for kind, cell in cells_data}
+    gates = {_key(cell): gates_of(kind) for kind, cell in cells_data}
     controls = {
         control["term"]
         for of_cell in said.values()
@@ -350,7 +324,7 @@ def _starts(section, count, what):
 
 def _owned(kind, cell):
     keys = "pin name links rows terms enable j k s r clock reset preset"
-    _only(cell, keys, f"cell {_key(cell)}")
+    only(cell, keys, f"cell {_key(cell)}")
     if "rows" in cell:
         return _numbers(cell["rows"])
     enable = cell.get("enable", kind.get("enable"))
@@ -358,78 +332,6 @@ def _owned(kind, cell):
     for gate in ("terms", "j", "k", "s", "r"):
         rows |= set(_numbers(cell.get(gate, [])))
     return sorted(rows)
-
-
-# --- registers ---
-
-INPUTS = {"d": ("d",), "t": ("t",), "jk": ("j", "k"), "sr": ("s", "r")}
-
-
-def _gates(kind):
-    """Names of the OR gates of a cell that has two."""
-    pairs = {_kind_of(mode) for mode in kind["modes"]}
-    if not pairs & {"jk", "sr"}:
-        return ()
-    if len(pairs - {None}) > 1 or None in pairs:
-        raise UnreadableError("a kind of cells with two OR gates in one mode and one in another")
-    return INPUTS[pairs.pop()]
-
-
-def _kind_of(mode):
-    named = {name for names in INPUTS.values() for name in names} & set(mode)
-    for kind, names in INPUTS.items():
-        if named == set(names):
-            return kind
-    if named:
-        raise UnreadableError(f"a register with the inputs {sorted(named)}")
-    return None
-
-
-def _registering(data, kind, cell):
-    """Clock, power-up, reset and preset of a cell: device-wide, of its kind, its own."""
-    over = {key: cell[key] for key in ("clock", "reset", "preset") if key in cell}
-    said = {**data.get("register", {}), **kind.get("register", {}), **over}
-    _only(said, "clock power_up reset preset", "register")
-    return said
-
-
-def _register(mode, said, what):
-    kind = _kind_of(mode)
-    if kind is None:
-        _only(mode, "set pin feedback columns terms enable", what)
-        return None
-    inverted = []
-    for name in INPUTS[kind]:
-        if mode[name] not in {"sum", "sum'"}:
-            raise UnreadableError(f"{what}: {name} = {mode[name]!r}")
-        inverted.append(mode[name] == "sum'")
-    clock, power_up = said["clock"], said["power_up"]
-    _only(clock, "pin edge", f"clock of {what}")
-    if power_up not in (0, 1, "unknown"):
-        raise UnreadableError(f"{what}: power_up = {power_up!r}")
-    falling = {"rising": False, "falling": True}[clock.get("edge", "rising")]
-    controls = []
-    for name in ("reset", "preset"):
-        control = said.get(name)
-        if name in mode:
-            if mode[name] != "none":
-                raise UnreadableError(f"{what}: {name} = {mode[name]!r}")
-            control = None
-        acts = control is not None and control != "none"
-        controls.append(_control(control, what) if acts else None)
-    power_up = None if power_up == "unknown" else power_up
-    return Register(kind, tuple(inverted), clock["pin"], falling, power_up, *controls)
-
-
-def _control(said, what):
-    _only(said, "term pin active when", f"reset or preset of {what}")
-    asynchronous = {"asynchronous": True, "clock": False}[said["when"]]
-    if ("term" in said) == ("pin" in said) or ("active" in said and "pin" not in said):
-        raise UnreadableError(f"{what}: reset or preset by {sorted(said)}")
-    if "term" in said:
-        return Control(("row", said["term"]), asynchronous)
-    level = {"high": 1, "low": 0}[said.get("active", "high")]
-    return Control(("pin", said["pin"], level), asynchronous)
 
 
 def _check_controls(cells, controls, sums):
@@ -449,7 +351,7 @@ def _or_array(data, rows, owned, controls, key_of, gates):
     if "or" not in data:
         return {}
     section = data["or"]
-    _only(section, "columns terms first_fuse term_step rows column_step", "[or]")
+    only(section, "columns terms first_fuse term_step rows column_step", "[or]")
     taken = controls.union(*owned.values())
     default = [row for row in range(rows) if row not in taken]
     terms = _numbers(section["terms"]) if "terms" in section else default
@@ -470,14 +372,14 @@ def _or_array(data, rows, owned, controls, key_of, gates):
 
 def _cell(kind, cell, rows, own, said, shared):
     key, pin = _key(cell), cell.get("pin")
-    gates, modes = _gates(kind), {}
+    gates, modes = gates_of(kind), {}
     strange = {"j", "k", "s", "r", *(["terms"] if gates else [])} & set(cell) - set(gates)
     if strange:
         raise UnreadableError(f"cell {key}: rows of {sorted(strange)}")
     for mode in kind["modes"]:
         what = f"mode of cell {key}"
-        _only(mode, "set pin feedback columns terms enable d t j k s r reset preset", what)
-        register = _register(mode, said, what)
+        only(mode, "set pin feedback columns terms enable d t j k s r reset preset", what)
+        register = register_of(mode, said, what)
         shows = mode["pin"] if pin is not None else mode.get("pin", "none")
         showable = {"none"} if gates else {"none", "sum", "sum'"}
         showable |= {"q", "q'"} if register is not None else set()
@@ -521,7 +423,7 @@ def _enable(said, rows=None):
         return ("always",)
     if isinstance(said, int):
         return ("row", said if rows is None else rows[said])
-    _only(said, "pin active", "enable")
+    only(said, "pin active", "enable")
     return ("pin", said["pin"], {"high": 1, "low": 0}[said.get("active", "high")])
 
 
@@ -555,7 +457,7 @@ def _carried(mode, key, pin, own):
 def _drop(section, rows):
     if section is None:
         return {}
-    _only(section, "dropped first_fuse term_step fuses terms", "[drop]")
+    only(section, "dropped first_fuse term_step fuses terms", "[drop]")
     terms = _numbers(section["terms"]) if "terms" in section else list(range(rows))
     fuses = section.get("fuses")
     if fuses is None:
@@ -567,7 +469,7 @@ def _drop(section, rows):
 def _signature(section):
     if section is None:
         return None
-    _only(section, "first_fuse bits order ones", "[signature]")
+    only(section, "first_fuse bits order ones", "[signature]")
     orders = {"most significant bit first": True, "least significant bit first": False}
     first = section["first_fuse"]
     return Signature(
