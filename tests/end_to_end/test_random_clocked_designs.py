@@ -269,10 +269,11 @@ def test_flipped_links_show():
         part = Part(rng, design, shape)
         text, states = part.build()
         device = read_device(text)
-        assert differences(design, part, shape, states, device, random.Random(1)) == []
+        run = ClockedRun(design, part.pin, falling=shape.falling, sequences=5, clocks=16)
+        assert run.differences(device, states, random.Random(1)) == []
         for fuse in rng.sample(range(len(states)), 8):
             changed = [state ^ (number == fuse) for number, state in enumerate(states)]
-            shown += differences(design, part, shape, changed, device, random.Random(1)) != []
+            shown += run.differences(device, changed, random.Random(1)) != []
     assert shown >= 6
 
 
