@@ -75,7 +75,12 @@ class _Kind:
 
 @dataclass
 class _Draft:
-    """A device as it grows: first pins, then columns, then cells with rows, then fuses."""
+    """A device as it grows: first pins, then columns, then cells with rows, then fuses.
+
+    `sums` holds the columns of the OR array: a cell, or a cell and one of its two gates. `register`
+    is what the device says of all registers, `controls` whether rows reset or preset, and
+    `other_pins` holds pins without lines that are no cell's.
+    """
 
     rng: random.Random
     free: list[int]
@@ -83,11 +88,14 @@ class _Draft:
     columns: list[str] = field(default_factory=list)
     rows: int = 0
     kinds: list[_Kind] = field(default_factory=list)
-    sums: list[_Cell] = field(default_factory=list)
+    sums: list[_Cell | tuple[_Cell, str]] = field(default_factory=list)
     shared: list[int] = field(default_factory=list)
     drop_all: bool = False
     mode_fuses: int = 0
     signature: int = 0
+    register: dict | None = None
+    controls: bool = False
+    other_pins: list[int] = field(default_factory=list)
 
     def own_columns(self, cell):
         return [word for word in self.columns if word.removesuffix("'") == str(cell.source)]
@@ -448,7 +456,7 @@ def _text(draft, name, setting):
     out += made.and_lines
     if draft.sums:
         out += ["", "[or]"]
-        words = [str(rng.choice([c.key, c.source])) for c in draft.sums]
+        words = [_sum_word(rng, entry) for entry in draft.sums]
         out.append(f'columns = "{" ".join(words)}"')
         if rng.random() < 0.3:
             out.append(f"terms = {_toml(_ranges(rng, draft.shared))}")
@@ -458,6 +466,9 @@ def _text(draft, name, setting):
         if drops != every or rng.random() < 0.3:
             out.append(f"terms = {_toml(_ranges(rng, drops))}")
         out += made.drop_lines
+    if draft.register:
+        out += ["", "[register]"]
+        out += [f"{key} = {_toml(value)}" for key, value in draft.register.items()]
     for index, kind in enumerate(draft.kinds):
         out += ["", *_kind_section(rng, f"k{index}", kind, made.links)]
     if draft.signature:
@@ -467,13 +478,21 @@ def _text(draft, name, setting):
     if rng.random() < 0.3:
         out += ["", "[timing]", f"tpd = {rng.choice([10, 15, 12.5])}"]
         out += [line for line in ("tfb = 8", "ten = 15", "tdis = 9") if rng.random() < 0.5]
+        if draft.register is not None:
+            clocked = ("tco = 12", "tsu = 10.5", "th = 0", "fmax = 40", "trst = 20")
+            out += [line for line in clocked if rng.random() < 0.7]
     return "\n".join(out) + "\n"
+
+
+def _sum_word(rng, entry):
+    cell, *gate = entry if isinstance(entry, tuple) else (entry,)
+    return ".".join([str(rng.choice([cell.key, cell.source])), *gate])
 
 
 def _pins_in_use(draft):
     """Pins beside the declared inputs and those that are still free."""
     cells = {cell.pin for kind in draft.kinds for cell in kind.cells if cell.pin is not None}
-    others = set()
+    others = set(draft.other_pins)
     for kind in draft.kinds:
         for table in (kind.keys, *kind.modes, *(cell.keys for cell in kind.cells)):
             if isinstance(table.get("enable"), dict):
@@ -485,7 +504,8 @@ def _pins_in_use(draft):
 
 def _links_section(rng, draft, drops):
     blank, connected = rng.randint(0, 1), rng.randint(0, 1)
-    own = any(cell.rows for kind in draft.kinds for cell in kind.cells if cell not in draft.sums)
+    shared = [entry[0] if isinstance(entry, tuple) else entry for entry in draft.sums]
+    own = any(cell.rows for kind in draft.kinds for cell in kind.cells if cell not in shared)
     ways = ["dead"]
     # A blank row must be 0 where nothing keeps it from a sum.
     if blank == connected or not own:
@@ -501,6 +521,10 @@ def _links_section(rng, draft, drops):
     ]
     if any(isinstance(table.get("enable"), int) for table in tables):
         out.append(f'unused_enable = "{rng.choice(["blank", "off", "on"])}"')
+    if draft.controls:
+        # A blank row that resets must be 0.
+        ways = ["off", "blank"] if blank == connected else ["off"]
+        out.append(f'unused_control = "{rng.choice(ways)}"')
     return out
 
 

@@ -57,6 +57,7 @@ def read_array(text: str) -> Array:
         or device.drop
         or device.mode_fuses
         or device.signature
+        or device.registers
     ):
         raise UnreadableError("not a plain shared OR array")
     return Array(

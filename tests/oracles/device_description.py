@@ -11,13 +11,24 @@ from dataclasses import dataclass
 from pathlib import Path
 
 from oracles.fuse_file import UnreadableError
+from oracles.register_description import (
+    Control,
+    Register,
+    gates_of,
+    only,
+    register_of,
+    registering,
+)
 
 Source = int | str
 
 
 @dataclass(frozen=True)
 class Line:
-    """What a column carries: the level at a pin, or the sum of a cell, or the complement."""
+    """What a column carries: the level at a pin, or the sum of a cell, or the complement.
+
+    `kind` is ``pin``, ``sum``, or ``q`` for the state of the register of a cell.
+    """
 
     kind: str
     of: Source
@@ -33,13 +44,17 @@ class Mode:
     """One setting of a cell: what its pin shows, when, of which rows, and what its columns carry.
 
     `enable` is ("always",), ("row", row) or ("pin", pin, level that enables). `terms` is ``None``
-    for a sum in the OR array. `columns` holds the columns of the cell that depend on its setting.
+    for a sum in the OR array; `second` are the rows of the second OR gate, ``None`` where there is
+    none or where it is in the OR array. `columns` holds the columns of the cell that depend on its
+    setting.
     """
 
     shows: str
     terms: tuple[int, ...] | None
     enable: tuple
     columns: dict[int, Line | None]
+    register: Register | None = None
+    second: tuple[int, ...] | None = None
 
 
 @dataclass(frozen=True)
@@ -50,6 +65,12 @@ class Cell:
     links: list[int]
     modes: dict[str, Mode]
     rows: list[int]
+    gates: tuple[str, ...] = ()
+
+    @property
+    def entries(self) -> tuple[Source, ...]:
+        """What its OR gates are called in the OR array: by its key, or by key and gate."""
+        return tuple(f"{self.key}.{gate}" for gate in self.gates) or (self.key,)
 
 
 @dataclass(frozen=True)
@@ -64,7 +85,8 @@ class Description:
     """Where the links of a device are and what they do.
 
     `columns` holds for each column the pin's line, ``None`` for one with no line, or the key of
-    the cell whose setting decides; `links[row][column]` and `sums[cell][row]` are fuses.
+    the cell whose setting decides; `links[row][column]` and `sums[entry][row]` are fuses, where an
+    entry is a cell's key, or ``"14.j"`` and the like where a cell has two OR gates.
     """
 
     name: str
@@ -108,6 +130,29 @@ class Description:
                 lines |= {line for line in mode.columns.values() if line is not None}
         return sorted({x.of for x in lines if x.kind == "pin"} - set(self.cell_pins))
 
+    @property
+    def registers(self) -> list[Register]:
+        """Those of all cells in all modes."""
+        modes = [mode for cell in self.cells.values() for mode in cell.modes.values()]
+        return [mode.register for mode in modes if mode.register is not None]
+
+    @property
+    def clock_pins(self) -> list[int]:
+        return sorted({register.clock for register in self.registers})
+
+    @property
+    def controls(self) -> list[Control]:
+        found = [c for register in self.registers for c in (register.reset, register.preset)]
+        return [control for control in found if control is not None]
+
+    @property
+    def control_pins(self) -> list[int]:
+        return sorted({c.by[1] for c in self.controls if c.by[0] == "pin"})
+
+    @property
+    def control_rows(self) -> list[int]:
+        return sorted({c.by[1] for c in self.controls if c.by[0] == "row"})
+
     def role_counts(self) -> tuple[Counter, Counter]:
         """How many uses every fuse has, and how many roles every pin: in a good file one each."""
         fuses = Counter(self.spare)
@@ -120,7 +165,7 @@ class Description:
         if self.signature is not None:
             fuses.update(self.signature.fuses)
         pins = Counter([*self.supplies, *self.unconnected, *self.cell_pins])
-        pins.update({*self.input_pins, *self.enable_pins})
+        pins.update({*self.input_pins, *self.enable_pins, *self.clock_pins, *self.control_pins})
         return fuses, pins
 
 
@@ -162,12 +207,6 @@ def _laid_over(below, above):
     return merged
 
 
-def _only(table, allowed, what):
-    strange = set(table) - set(allowed.split())
-    if strange:
-        raise UnreadableError(f"{what}: {sorted(strange)} is not understood")
-
-
 def _numbers(value) -> list[int]:
     """Numbers and ranges: ``7``, ``"1..7"`` or a list of such."""
     found = []
@@ -178,13 +217,13 @@ def _numbers(value) -> list[int]:
 
 
 def _description(data) -> Description:
-    _only(
+    only(
         data,
         "name summary technology pins fuses ground power unconnected spare links and or kind drop "
-        "set family signature timing",
+        "set family signature timing register",
         "device file",
     )
-    _only(data["links"], "blank connected unused_term unused_enable", "[links]")
+    only(data["links"], "blank connected unused_term unused_enable unused_control", "[links]")
     words = data["and"]["columns"].split()
     cells_data = [(kind, cell) for kind in data["kind"].values() for cell in kind["cells"]]
     key_of = {}
@@ -202,13 +241,22 @@ def _description(data) -> Description:
     starts, step = _starts(data["and"], rows, "[and]")
     links = [[first + i * step for i in range(len(words))] for first in starts]
     for kind in data["kind"].values():
-        _only(kind, "bits modes cells enable unused", "kind")
+        only(kind, "bits modes cells enable unused register", "kind")
     owned = {_key(cell): _owned(kind, cell) for kind, cell in cells_data}
-    sums = _or_array(data, rows, owned, key_of)
+    said = {_key(cell): registering(data, kind, cell) for kind, cell in cells_data}
+    gates = {_key(cell): gates_of(kind) for kind, cell in cells_data}
+    controls = {
+        control["term"]
+        for of_cell in said.values()
+        for control in (of_cell.get("reset"), of_cell.get("preset"))
+        if isinstance(control, dict) and "term" in control
+    }
+    sums = _or_array(data, rows, owned, controls, key_of, gates)
     cells = {}
     for kind, cell in cells_data:
         key = _key(cell)
-        cells[key] = _cell(kind, cell, owned[key], own.get(key, []), key in sums)
+        cells[key] = _cell(kind, cell, owned[key], own.get(key, []), said[key], set(sums))
+    _check_controls(cells, controls, sums)
 
     drop = _drop(data.get("drop"), rows)
     return Description(
@@ -275,57 +323,98 @@ def _starts(section, count, what):
 
 
 def _owned(kind, cell):
-    _only(cell, "pin name links rows terms enable", f"cell {_key(cell)}")
+    keys = "pin name links rows terms enable j k s r clock reset preset"
+    only(cell, keys, f"cell {_key(cell)}")
     if "rows" in cell:
         return _numbers(cell["rows"])
     enable = cell.get("enable", kind.get("enable"))
-    return sorted(
-        {*_numbers(cell.get("terms", [])), *([enable] if isinstance(enable, int) else [])}
-    )
+    rows = {enable} if isinstance(enable, int) else set()
+    for gate in ("terms", "j", "k", "s", "r"):
+        rows |= set(_numbers(cell.get(gate, [])))
+    return sorted(rows)
 
 
-def _or_array(data, rows, owned, key_of):
+def _check_controls(cells, controls, sums):
+    """A row that resets or presets belongs to no sum and no enable; a cell is no clock."""
+    used = {row for cell in cells.values() for row in cell.rows}
+    used |= {row for by_row in sums.values() for row in by_row}
+    if used & controls:
+        raise UnreadableError(f"rows {sorted(used & controls)} are controls and more")
+    pins = {cell.pin for cell in cells.values()}
+    for cell in cells.values():
+        for mode in cell.modes.values():
+            if mode.register is not None and mode.register.clock in pins:
+                raise UnreadableError(f"pin {mode.register.clock} is a clock and a cell")
+
+
+def _or_array(data, rows, owned, controls, key_of, gates):
     if "or" not in data:
         return {}
     section = data["or"]
-    _only(section, "columns terms first_fuse term_step rows column_step", "[or]")
-    taken = {row for of_cell in owned.values() for row in of_cell}
+    only(section, "columns terms first_fuse term_step rows column_step", "[or]")
+    taken = controls.union(*owned.values())
     default = [row for row in range(rows) if row not in taken]
     terms = _numbers(section["terms"]) if "terms" in section else default
     starts, step = _starts(section, len(terms), "[or]")
     sums = {}
     for index, word in enumerate(section["columns"].split()):
-        source, prime = _source(word)
-        if prime or source not in key_of or key_of[source] in sums:
+        name, _, gate = word.partition(".")
+        source, prime = _source(name)
+        entry = key_of.get(source)
+        if gate and entry is not None:
+            entry = f"{entry}.{gate}"
+        if prime or entry is None or entry in sums or gate not in (gates[key_of[source]] or ("",)):
             raise UnreadableError(f"[or] column {word}")
         first = [start + index * step for start in starts]
-        sums[key_of[source]] = dict(zip(terms, first, strict=True))
+        sums[entry] = dict(zip(terms, first, strict=True))
     return sums
 
 
-def _cell(kind, cell, rows, own, shared):
+def _cell(kind, cell, rows, own, said, shared):
     key, pin = _key(cell), cell.get("pin")
-    modes = {}
+    gates, modes = gates_of(kind), {}
+    strange = {"j", "k", "s", "r", *(["terms"] if gates else [])} & set(cell) - set(gates)
+    if strange:
+        raise UnreadableError(f"cell {key}: rows of {sorted(strange)}")
     for mode in kind["modes"]:
-        _only(mode, "set pin feedback columns terms enable", f"mode of cell {key}")
+        what = f"mode of cell {key}"
+        only(mode, "set pin feedback columns terms enable d t j k s r reset preset", what)
+        register = register_of(mode, said, what)
         shows = mode["pin"] if pin is not None else mode.get("pin", "none")
-        if shows not in {"sum", "sum'", "none"} or (pin is None and shows != "none"):
+        showable = {"none"} if gates else {"none", "sum", "sum'"}
+        showable |= {"q", "q'"} if register is not None else set()
+        if shows not in showable or (pin is None and shows != "none"):
             raise UnreadableError(f"cell {key}: a pin that shows {shows!r}")
-        if "terms" in mode:
-            terms = tuple(rows[i] for i in _numbers(mode["terms"]))
-        else:
-            terms = tuple(_numbers(cell["terms"])) if "terms" in cell else None
-        if (terms is None) != shared:
-            raise UnreadableError(f"cell {key}: an OR column or terms of its own, not both")
+        if mode.get("feedback", "none") not in {*showable, "pin"}:
+            raise UnreadableError(f"cell {key}: {mode['feedback']!r} fed back")
+        terms, second = _rows_of_gates(mode, cell, rows, gates, what)
+        for entry, own_rows in zip(
+            [f"{key}.{gate}" for gate in gates] or [key], (terms, second), strict=False
+        ):
+            if (own_rows is None) != (entry in shared):
+                raise UnreadableError(f"cell {key}: an OR column or terms of its own, not both")
         if "enable" in mode:
             enable = _enable(mode["enable"], rows)
         else:
-            said = cell.get("enable", kind.get("enable", "always"))
-            enable = _enable(said)
-        if mode["set"] in modes or len(mode["set"]) != len(cell.get("links", [])):
-            raise UnreadableError(f"cell {key}: setting {mode['set']!r}")
-        modes[mode["set"]] = Mode(shows, terms, enable, _carried(mode, key, pin, own))
-    return Cell(key, pin, cell.get("name"), cell.get("links", []), modes, rows)
+            enable = _enable(cell.get("enable", kind.get("enable", "always")))
+        setting = mode["set"] if kind.get("bits") else mode.get("set", "")
+        if setting in modes or len(setting) != len(cell.get("links", [])):
+            raise UnreadableError(f"cell {key}: setting {setting!r}")
+        carried = _carried(mode, key, pin, own)
+        modes[setting] = Mode(shows, terms, enable, carried, register, second)
+    return Cell(key, pin, cell.get("name"), cell.get("links", []), modes, rows, gates)
+
+
+def _rows_of_gates(mode, cell, rows, gates, what):
+    """Rows of the first and of the second OR gate; ``None`` where there are none of its own."""
+    if gates:
+        if "terms" in mode:
+            raise UnreadableError(f"{what}: terms of a cell with two OR gates")
+        first, second = (tuple(_numbers(cell[g])) if g in cell else None for g in gates)
+        return first, second
+    if "terms" in mode:
+        return tuple(rows[i] for i in _numbers(mode["terms"])), None
+    return (tuple(_numbers(cell["terms"])) if "terms" in cell else None), None
 
 
 def _enable(said, rows=None):
@@ -334,7 +423,7 @@ def _enable(said, rows=None):
         return ("always",)
     if isinstance(said, int):
         return ("row", said if rows is None else rows[said])
-    _only(said, "pin active", "enable")
+    only(said, "pin active", "enable")
     return ("pin", said["pin"], {"high": 1, "low": 0}[said.get("active", "high")])
 
 
@@ -356,6 +445,8 @@ def _carried(mode, key, pin, own):
     plain = {
         "sum": Line("sum", key),
         "sum'": Line("sum", key, complement=True),
+        "q": Line("q", key),
+        "q'": Line("q", key, complement=True),
         "pin": Line("pin", pin) if pin is not None else None,
     }[feedback]
     if plain is None:
@@ -366,7 +457,7 @@ def _carried(mode, key, pin, own):
 def _drop(section, rows):
     if section is None:
         return {}
-    _only(section, "dropped first_fuse term_step fuses terms", "[drop]")
+    only(section, "dropped first_fuse term_step fuses terms", "[drop]")
     terms = _numbers(section["terms"]) if "terms" in section else list(range(rows))
     fuses = section.get("fuses")
     if fuses is None:
@@ -378,7 +469,7 @@ def _drop(section, rows):
 def _signature(section):
     if section is None:
         return None
-    _only(section, "first_fuse bits order ones", "[signature]")
+    only(section, "first_fuse bits order ones", "[signature]")
     orders = {"most significant bit first": True, "least significant bit first": False}
     first = section["first_fuse"]
     return Signature(

@@ -52,7 +52,7 @@ class Level:
 
 @dataclass(frozen=True)
 class Simulation:
-    """Levels of all pins that the part or somebody else may drive, and the sum of each cell."""
+    """Levels of all pins that the part or somebody else may drive, and every sum by its entry."""
 
     pins: dict[int, Level]
     sums: dict[Source, Logic]
@@ -63,7 +63,8 @@ class Configured:
     """A device with its links set: what is left is rows, sums and pins.
 
     `rows[row]` holds the lines that the row is the AND of; ``None`` for a row that is 0 in any
-    case. Among the lines ``None`` stands for a column that carries nothing.
+    case. Among the lines ``None`` stands for a column that carries nothing. `terms` holds the rows
+    of each sum, by its entry.
     """
 
     device: Description
@@ -100,11 +101,12 @@ def configured(device: Description, states: list[int]) -> Configured:
         rows.append(None if cut or dead else sorted(joined, key=str))
     terms = {}
     for key, mode in modes.items():
-        if mode.terms is not None:
-            terms[key] = list(mode.terms)
-        else:
-            fuse_of = device.sums[key]
-            terms[key] = [row for row, f in fuse_of.items() if states[f] == device.connected]
+        for entry, own in zip(device.cells[key].entries, (mode.terms, mode.second), strict=False):
+            if own is not None:
+                terms[entry] = list(own)
+            else:
+                fuse_of = device.sums[entry]
+                terms[entry] = [row for row, f in fuse_of.items() if states[f] == device.connected]
     return Configured(device, modes, rows, terms)
 
 
@@ -131,11 +133,16 @@ def simulate(
 
 
 class _Run:
-    """Values as they are needed; what is being worked out stands on the way, to notice a ring."""
+    """Values as they are needed; what is being worked out stands on the way, to notice a ring.
 
-    def __init__(self, array: Configured, drivers, everywhere):
+    A register of which `state` does not speak holds nobody knows what.
+    """
+
+    def __init__(self, array: Configured, drivers, everywhere, state=None):
         self.array, self.drivers, self.everywhere = array, drivers, everywhere
+        self.state: Mapping[Source, Logic] = state or {}
         self.known: dict[Line, Logic] = {}
+        self.rows: dict[int, Logic] = {}
         self.levels: dict[int, Level] = {}
         self.way: list[Line] = []
         device = array.device
@@ -145,12 +152,15 @@ class _Run:
             raise UnreadableError(f"pins {sorted(drivers)} are driven from outside")
 
     def all(self) -> Simulation:
-        sums = {key: self.value(Line("sum", key)) for key in self.array.device.cells}
+        sums = {entry: self.value(Line("sum", entry)) for entry in self.array.terms}
         for pin in sorted({*self.cell_of_pin, *self.drivers}):
             self.value(Line("pin", pin))
         return Simulation(dict(sorted(self.levels.items())), sums)
 
     def value(self, line: Line) -> Logic:
+        if line.kind == "q":
+            held = self.state.get(line.of, Logic(0, 0))
+            return held.inverse if line.complement else held
         plain = Line(line.kind, line.of)
         if plain not in self.known:
             if plain in self.way:
@@ -163,6 +173,11 @@ class _Run:
         return found.inverse if line.complement else found
 
     def row(self, row: int) -> Logic:
+        if row not in self.rows:
+            self.rows[row] = self.product(row)
+        return self.rows[row]
+
+    def product(self, row: int) -> Logic:
         if self.array.rows[row] is None:
             return Logic(0, self.everywhere)
         high, low = self.everywhere, 0
@@ -217,7 +232,8 @@ class _Run:
         # A pin that is off in any case does not depend on the sum behind it.
         if drives.low == self.everywhere:
             return Logic(0, 0)
-        return self.value(Line("sum", key, complement=self.array.modes[key].shows == "sum'"))
+        shows = self.array.modes[key].shows
+        return self.value(Line(shows.removesuffix("'"), key, complement=shows.endswith("'")))
 
 
 def signature_text(device: Description, states: list[int]) -> str:

@@ -131,8 +131,15 @@ def test_other_size():
 @pytest.mark.parametrize(
     "change",
     [
-        pytest.param(("[and]", "[register]\npower_up = 0\n[and]"), id="registers"),
+        pytest.param(("[and]", "[register]\nclocks = 1\n[and]"), id="register-keys"),
         pytest.param(('pin = "sum\'"', 'pin = "q"'), id="register-on-a-pin"),
+        pytest.param(
+            (
+                'modes = [ { set = "0",',
+                'register = { clock = { pin = 1 }, power_up = 0 }\nmodes = [ {d="sum", set = "0",',
+            ),
+            id="registers",
+        ),
         pytest.param(("1 1' 2 2'", "1 1' 4 4'"), id="feedback"),
         pytest.param(('columns = "4 5"', 'columns = "4 2"'), id="sum-without-cell"),
     ],

@@ -532,7 +532,7 @@ def test_every_fuse_and_pin_of_these_devices_is_used_once(text):
 @pytest.mark.parametrize(
     ("text", "old", "new"),
     [
-        pytest.param(OWN, "[links]", "[register]\npower_up = 0\n[links]", id="registers"),
+        pytest.param(OWN, "[links]", "[register]\nclocks = 1\n[links]", id="register-keys"),
         pytest.param(OWN, 'pin = "sum\'", f', 'pin = "q", f', id="register-on-a-pin"),
         pytest.param(OWN, ', feedback = "pin"', "", id="feedback-not-said"),
         pytest.param(
