@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING, TypeVar
 from pla.behaviour.model import Inner, Input, Output
 from pla.logic import algebra
 from pla.report.behaviour_counts import OutputCounts, count_outputs
+from pla.report.clocked import register_table, state_tables
 from pla.report.delays import nanoseconds
 from pla.report.layout import WIDTH, broken, drawn
 from pla.report.table import Table
@@ -32,6 +33,7 @@ _FORMS = {
     "minterms": "minterm list",
     "logic": "equation",
     "address_map": "address map",
+    "state_table": "state table",
 }
 _REASONS = {
     "never": "impossible",
@@ -39,6 +41,7 @@ _REASONS = {
     "x": "rows with x",
     "dont_care": "dont_care",
     "elsewhere": "elsewhere",
+    "unused": "codes of no state",
     "disabled": "disabled",
 }
 
@@ -70,24 +73,44 @@ def behaviour_text(behaviour: Behaviour) -> str:
         disable_numparse=True,
         colalign=["left", "left", "right", "right", "right", "right", "left"],
     )
+    present = [i for i in behaviour.inputs if i.present_of is not None]
+    what = "Combinations of inputs and present values" if present else "Input combinations"
     lines = [
         title,
         "",
-        *_side("inputs", behaviour.inputs),
+        *_side("inputs", [i for i in behaviour.inputs if i.present_of is None]),
         *_side("outputs", behaviour.outputs),
         *(_side("inner", behaviour.inner) if behaviour.inner else ()),
+        *(_side("present", present) if present else ()),
         *_demands(behaviour),
         "",
-        f"Input combinations that ask for 1, for 0 and for nothing, of {total} in all"
+        f"{what} that ask for 1, for 0 and for nothing, of {total} in all"
         + ("." if plain else ";"),
         *([] if plain else ["each row is reduced to the smallest power of two that shows it."]),
         "",
         *(line.rstrip() for line in table.split("\n")),
         "",
         *(line for table in _more_tables(behaviour) for line in (*drawn(table).split("\n"), "")),
+        *(_clocked(behaviour) if present else ()),
         "No errors." if not behaviour.warnings else f"No errors, {_warnings(behaviour)}.",
     ]
     return "\n".join(lines)
+
+
+def _clocked(behaviour: Behaviour) -> Iterator[str]:
+    """Registers and state tables."""
+    yield filled(
+        "For a registered signal the table says what its next value is; the present value is "
+        "among the inputs, and its name means that one wherever it is looked at."
+    )
+    yield ""
+    yield drawn(register_table(behaviour, lambda bit: _described(bit, behaviour.file)))
+    yield ""
+    for table in state_tables(behaviour):
+        yield drawn(table)
+        yield ""
+        yield from (filled(remark) for remark in table.remarks)
+        yield ""
 
 
 def _described(bit: Output | Inner, design: str) -> str:
@@ -106,7 +129,8 @@ def _demands(behaviour: Behaviour) -> Iterator[str]:
 
 def _more_tables(behaviour: Behaviour) -> Iterator[Table]:
     """Inner signals, and what is special about pins; nothing if there is nothing."""
-    if behaviour.inner:
+    inner_signals = [inner for inner in behaviour.inner if inner.register is None]
+    if inner_signals:
         named_in: dict[str, list[str]] = {}
         for name, others in behaviour.named.items():
             for other in others:
@@ -120,7 +144,7 @@ def _more_tables(behaviour: Behaviour) -> Iterator[Table]:
                     _described(inner, behaviour.file),
                     ", ".join(named_in.get(inner.name, ["nothing"])),
                 )
-                for inner in behaviour.inner
+                for inner in inner_signals
             ),
             aligned="lll",
             wrapped=(0, 2),
