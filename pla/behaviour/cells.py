@@ -67,7 +67,7 @@ def output_cell(field: Field, text: str) -> Values:
     if text == "keep":
         raise Problem(
             "NOT-SUPPORTED-YET",
-            "'keep': outputs that are kept are not supported yet",
+            "'keep': kept outputs are not supported yet",
             "give a registered output a column for its present value, and say the next one",
         )
     if not text[:1].isdigit() or ".." in text:

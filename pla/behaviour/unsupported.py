@@ -14,12 +14,12 @@ MISPLACED = {"never_too": "it stands in [outputs], in the table of an output wit
 
 _NOT_YET: dict[str, dict[str, str]] = {
     "input": {},
-    "output": {"glitch_free": "glitch-free outputs", "keep": "outputs that are kept"},
+    "output": {"glitch_free": "glitch-free outputs", "keep": "kept outputs"},
     "inner": {
         "glitch_free": "glitch-free inner signals",
-        "keep": "inner signals that are kept",
+        "keep": "kept inner signals",
     },
-    "table": {"keep": "outputs that are kept"},
+    "table": {"keep": "kept outputs"},
 }
 
 
