@@ -12,11 +12,13 @@ from pla.report.delays import nanoseconds
 from pla.report.layout import WIDTH, broken, drawn
 from pla.report.table import Table
 from pla.report.text import filled, kept_together, one_line
+from pla.wording import spans
 
 if TYPE_CHECKING:
     from collections.abc import Iterator, Sequence
 
     from pla.behaviour.model import Behaviour, Enabling
+    from pla.report.clocked import Bits
 
 __all__ = ["behaviour_text"]
 
@@ -104,7 +106,7 @@ def _clocked(behaviour: Behaviour) -> Iterator[str]:
         "among the inputs, and its name means that one wherever it is looked at."
     )
     yield ""
-    yield drawn(register_table(behaviour, lambda bit: _described(bit, behaviour.file)))
+    yield drawn(register_table(behaviour, lambda bits: _all_described(bits, behaviour.file)))
     yield ""
     for table in state_tables(behaviour):
         yield drawn(table)
@@ -117,6 +119,15 @@ def _described(bit: Output | Inner, design: str) -> str:
     at = bit.described
     place = f"line {at.line}" if at.file == design else f"{at.file}:{at.line}"
     return f"{_FORMS[bit.form]}, {place}"
+
+
+def _all_described(bits: Bits, design: str) -> str:
+    """Where several bits are described, in one breath where the file and the form are the same."""
+    places = {(bit.form, bit.described.file) for bit in bits}
+    lines = sorted({bit.described.line for bit in bits if bit.described.line is not None})
+    if len(places) > 1 or len(lines) < 2 or bits[0].described.file != design:
+        return ", ".join(dict.fromkeys(_described(bit, design) for bit in bits))
+    return f"{_FORMS[bits[0].form]}, lines {spans(lines)}"
 
 
 def _demands(behaviour: Behaviour) -> Iterator[str]:

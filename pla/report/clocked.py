@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, TypeAlias
 
 from pla.report.notation import plural
 from pla.report.table import Table
@@ -14,7 +14,9 @@ if TYPE_CHECKING:
 
     from pla.behaviour.model import Behaviour, Enabling, Inner, Output, Registering, StateTable
 
-__all__ = ["RegisterGroup", "edge_of", "register_groups", "register_table", "state_tables"]
+__all__ = ["Bits", "RegisterGroup", "edge_of", "register_groups", "register_table", "state_tables"]
+
+Bits: TypeAlias = "tuple[Output | Inner, ...]"
 
 _STYLES = {
     "free": "free; until they are chosen they count in binary, other codes were not tried",
@@ -36,7 +38,7 @@ class RegisterGroup:
     """
 
     name: str
-    bits: tuple[Output | Inner, ...]
+    bits: Bits
     machine: StateTable | None
 
     @property
@@ -77,12 +79,12 @@ def edge_of(register: Registering) -> str:
     return "falling" if register.falling else "rising"
 
 
-def register_table(behaviour: Behaviour, described: Callable[[Output | Inner], str]) -> Table:
+def register_table(behaviour: Behaviour, described: Callable[[Bits], str]) -> Table:
     """One row a registered signal: clock, value at power-up, reset and preset.
 
     Args:
         behaviour: The design.
-        described: Says where the next value of a bit is given.
+        described: Says where the next values of some bits are given.
     """
     rows = []
     for group in register_groups(behaviour):
@@ -99,7 +101,7 @@ def register_table(behaviour: Behaviour, described: Callable[[Output | Inner], s
                 _start(group),
                 reset,
                 preset,
-                ", ".join(dict.fromkeys(map(described, group.bits))),
+                described(group.bits),
             )
         )
     return Table(

@@ -84,7 +84,7 @@ BAD = [
     ),
     pytest.param(
         lamp("start") + "[state_table]\nrows = ''\n",
-        (14, 2, "VALUE", "'state_table' is a table, expected a list of tables"),
+        (14, 1, "VALUE", "'state_table' is a table, expected a list of tables"),
         id="state-table",
     ),
     pytest.param(
