@@ -21,6 +21,7 @@ __all__ = [
     "CONTROLS",
     "REGISTER_KEYS",
     "RegisterText",
+    "check_clock",
     "check_register",
     "read_clocking",
     "read_registers",
@@ -84,6 +85,7 @@ class RegisterText:
 def check_register(table: Section, misspelt: Container[str]) -> bool:
     """Whether a declaration asks for a register; report keys that need one that is not there."""
     if "register" in table or "register" in misspelt:
+        check_clock(table, misspelt)
         return True
     key = next((key for key in REGISTER_KEYS if key in table), None)
     if key is not None:
@@ -95,6 +97,12 @@ def check_register(table: Section, misspelt: Container[str]) -> bool:
         )
         return True  # it was meant to be one, so its name may be named in its own equation
     return False
+
+
+def check_clock(table: Section, misspelt: Container[str]) -> None:
+    """Report that there is no clock, unless that was misspelt."""
+    if "clock" not in misspelt:
+        table.raw("clock", required=True, hint=_CLOCK_HINT)
 
 
 def read_registers(top: Section, signals: Signals) -> list[RegisterText]:
@@ -121,7 +129,7 @@ def read_registers(top: Section, signals: Signals) -> list[RegisterText]:
 
 def read_clocking(
     table: Section,
-    signal: Signal,
+    signal: Signal | None,
     signals: Signals,
     start: int | None,
     controls: tuple[Control, ...],
@@ -130,7 +138,7 @@ def read_clocking(
 
     Args:
         table: Where they stand.
-        signal: What is clocked.
+        signal: What is clocked; ``None`` if that cannot be told, which has been reported.
         signals: What is declared.
         start: What it holds at power-up.
         controls: Which of reset and preset there may be.
@@ -143,7 +151,7 @@ def read_clocking(
     wish: RegisterWish = table.choice("register", _WISHES, default="any")
     clock, falling = _read_clock(table, signals)
     found = [_read_control(table, kind, signals) for kind in controls]
-    if len(diagnostics.errors) > before or clock is None:
+    if len(diagnostics.errors) > before or clock is None or signal is None:
         return None
     return RegisterText(
         signal,
@@ -158,8 +166,6 @@ def read_clocking(
 
 def _read_clock(table: Section, signals: Signals) -> tuple[str | None, bool]:
     """Name of the clock, and whether the edge to 0 counts."""
-    if table.raw("clock", required=True, hint=_CLOCK_HINT) is None:
-        return None, False
     text = table.text("clock")
     if text is None:
         return None, False

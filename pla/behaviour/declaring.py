@@ -28,7 +28,7 @@ def check_name(section: Section, name: str, role: Role | Literal["state"], at: L
         )
         return False
     if name in RESERVED:
-        called = "an inner signal" if role == "inner" else f"an {role}"
+        called = {"inner": "an inner signal", "state": "a state"}.get(role, f"an {role}")
         section.error(
             "NAME-RESERVED",
             f"{name!r} is a reserved word and cannot name {called}",

@@ -5,7 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
-from pla.behaviour.clocking import REGISTER_KEYS
+from pla.behaviour.clocking import REGISTER_KEYS, check_clock
 from pla.behaviour.declaring import check_name
 from pla.behaviour.encode import codes_of, width_of
 from pla.behaviour.signals import Signal
@@ -46,6 +46,8 @@ class MachineHead:
         codes: For each state, highest bit first; ``None`` if they are free.
         width: How many bits hold the state.
         unused_start: In codes that no state has, everything is as in the state at power-up.
+        whole: Nothing is wrong with it. Otherwise there is only something to check: the states may
+            be missing (then there are none), the codes, or what holds the state.
     """
 
     section: Section
@@ -56,6 +58,7 @@ class MachineHead:
     codes: tuple[str, ...] | None
     width: int
     unused_start: bool
+    whole: bool
 
 
 def declare_states(
@@ -68,17 +71,19 @@ def declare_states(
     """The heads of all state tables, and outputs and inner signals with their states among them.
 
     A state that is declared as an output becomes registered; any other becomes an inner signal.
-    What is wrong goes to the section's diagnostics; such tables are left out.
+    What is wrong goes to the section's diagnostics.
     """
     heads = []
     outputs, inner = list(outputs), list(inner)
     seen: dict[str, Section] = {}
     for section in top.sections("state_table"):
         head = _read_head(section)
+        heads.append(replace(head, whole=False))
         name = section.data.get("of")
         if not isinstance(name, str):
             continue
         if name in seen:
+            heads[-1] = replace(head, states=(), whole=False)  # the rows are most likely the same
             section.error(
                 "NAME-TWICE",
                 f"two state tables are of {name!r}",
@@ -98,10 +103,10 @@ def declare_states(
             )
         elif earlier is not None:
             outputs[outputs.index(earlier)] = taken[name] = replace(earlier, registered=True)
-            if head is not None and _fits(head, earlier):
-                heads.append(head)
-        elif head is not None:
-            heads.append(head)
+            if _fits(head, earlier):
+                heads[-1] = head
+        elif head.whole:
+            heads[-1] = head
             first = sum(s.size for s in (*outputs, *inner))
             taken[name] = signal = _state_of(head, first)
             inner.append(signal)
@@ -133,7 +138,7 @@ def _state_of(head: MachineHead, first: int) -> Signal:
 
 
 def _fits(head: MachineHead, output: Signal) -> bool:
-    """Whether an output can hold the state; report what is against it."""
+    """Whether an output can hold the state of a head that is whole; report what is against it."""
     section = head.section
     path = ("outputs", output.name)
     table = section.file.data["outputs"][output.name]
@@ -145,7 +150,7 @@ def _fits(head: MachineHead, output: Signal) -> bool:
             section.file.key_at((*path, key)),
             f"leave it out here; the state table is at {section.where}",
         )
-    if output.size != head.width:
+    if head.whole and output.size != head.width:
         section.error(
             "STATE-WIDTH",
             f"the states of {head.name!r} take {_bits(head.width)} with these codes, but the "
@@ -153,17 +158,18 @@ def _fits(head: MachineHead, output: Signal) -> bool:
             section.at("of"),
             f"declare {head.name} with {_bits(head.width)}; it stands at {output.location}",
         )
-    return not keys and output.size == head.width
+    return head.whole and not keys and output.size == head.width
 
 
-def _read_head(section: Section) -> MachineHead | None:
+def _read_head(section: Section) -> MachineHead:
     diagnostics = section.diagnostics
     before = len(diagnostics.errors)
-    section.unknown_keys(_KEYS, _MEANT)
-    name = section.text("of", required=True)
+    meant = section.unknown_keys(_KEYS, _MEANT)
+    name = section.text("of", required="of" not in meant)
     if name is not None:
         check_name(section, name, "inner", section.at("of"))
-    section.raw("rows", required=True)
+    section.raw("rows", required="rows" not in meant)
+    check_clock(section, meant)
     section.flag("never_too")
     if section.data.get("never_too") is not None and "reset" not in section:
         section.error(
@@ -172,28 +178,36 @@ def _read_head(section: Section) -> MachineHead | None:
             section.key_at("never_too"),
             "leave it out",
         )
-    states = _read_states(section)
-    start = _read_start(section, states)
+    states = None if "states" in meant and "states" not in section else _read_states(section)
+    start = None if "start" in meant and "start" not in section else _read_start(section, states)
     found = _read_codes(section, states)
     unused = section.choice("unused", ("start", "x"))
     if found is not None and states is not None:
         _, codes, width = found
         left = (1 << width) - len(states)
-        if left and "unused" not in section:
-            many = "1 code of" if left == 1 else f"{left} codes of"
+        if left and "unused" not in section and "unused" not in meant:
+            many = "1 code" if left == 1 else f"{left} codes"
+            belong = "belongs" if left == 1 else "belong"
             section.error(
                 "UNUSED-CODES",
-                f"{many} {_bits(width)} belong to no state, and nothing says what happens there",
+                f"{many} of {_bits(width)} {belong} to no state, and nothing says what happens "
+                "there",
                 section.key_at("codes") if "codes" in section else section.key_at("states"),
                 'add unused = "start" (on to the state at power-up) or unused = "x" (whatever '
                 "takes fewest terms, a standstill included)",
             )
-    if len(diagnostics.errors) > before or name is None or states is None or start is None:
-        return None
-    if found is None:  # pragma: no cover - there was an error
-        return None
-    style, codes, width = found
-    return MachineHead(section, name, states, start, style, codes, width, unused == "start")
+    style, codes, width = found or ("free", None, 0)
+    return MachineHead(
+        section=section,
+        name=name or "",
+        states=states or (),
+        start=start or 0,
+        style=style,
+        codes=codes,
+        width=width,
+        unused_start=unused == "start",
+        whole=len(diagnostics.errors) == before,
+    )
 
 
 def _read_states(section: Section) -> tuple[str, ...] | None:

@@ -220,7 +220,6 @@ def _read_descriptions(
         from pla.behaviour.address_map import read_address_map  # noqa: PLC0415 - few designs need it
 
         found += [read_address_map(s, signals, claims, maps) for s in sections]
-    claims.incomplete |= len(signals.machines) < len(top.data.get("state_table", ()))
     if signals.machines:
         from pla.behaviour.state_table import read_state_table  # noqa: PLC0415 - likewise
 
@@ -232,7 +231,7 @@ def _read_state_clocks(signals: Signals) -> list[RegisterText]:
     """How the states of state tables are clocked; what they start with their codes will tell."""
     found = []
     for head in signals.machines:
-        signal = signals.by_name[head.name]
+        signal = signals.by_name[head.name] if head.whole else None
         found.append(read_clocking(head.section, signal, signals, None, ("reset",)))
     return [register for register in found if register is not None]
 

@@ -165,7 +165,7 @@ class Signals:
         outputs: In order of declaration.
         inner: In order of declaration; behind them the states of state tables.
         broken: Names whose declaration is wrong.
-        machines: The state tables whose heads are right.
+        machines: The heads of the state tables.
     """
 
     inputs: tuple[Signal, ...]
@@ -261,10 +261,13 @@ class Signals:
         if wanted is None or wanted == "input":
             signal = self.present.get(name, signal)
         if wanted is not None and (signal.role == "input") != (wanted != "output"):
+            hint = did_you_mean(name, self.names(wanted))
+            if wanted == "outside" and signal.registered:
+                hint = f"what a register holds does not come from outside; {hint}"
             raise Problem(
                 "NAME-ROLE",
                 f"{name!r} is {signal.called}, expected an {self._called(wanted)}",
-                did_you_mean(name, self.names(wanted)),
+                hint,
                 known=name in self.broken,
             )
         if high is None:

@@ -158,6 +158,8 @@ class _Rows:
             Problem: If it is there already, the state itself, or a registered output.
         """
         base = name.partition("[")[0]
+        if base == self.head.name and not self.head.whole:
+            raise Problem("HEADER", f"{name!r} holds no state", known=True)
         if not is_output and base == self.head.name:
             text = f"{name!r} is the state of this table, the first column tells it"
             raise Problem("HEADER", text, "leave the column out")

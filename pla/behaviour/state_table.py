@@ -45,6 +45,11 @@ def read_state_table(
         claims: Takes the state's bits and the outputs that it describes.
         machines: Takes the table, with codes, once it has been worked out.
     """
+    if not head.whole:
+        claims.incomplete = True
+        if head.states and "rows" in head.section:
+            read_state_rows(head, signals, claims)
+        return None
     state = signals.find(head.name, "output")
     claims.claim(state, head.section.key_at("of"), "state_table")
     text = read_state_rows(head, signals, claims)
