@@ -106,13 +106,13 @@ def _clocked(behaviour: Behaviour) -> Iterator[str]:
         "among the inputs, and its name means that one wherever it is looked at."
     )
     yield ""
-    yield drawn(register_table(behaviour, lambda bits: _all_described(bits, behaviour.file)))
-    yield ""
-    for table in state_tables(behaviour):
+    registers = register_table(behaviour, lambda bits: _all_described(bits, behaviour.file))
+    for table in (registers, *state_tables(behaviour)):
         yield drawn(table)
         yield ""
-        yield from (filled(remark) for remark in table.remarks)
-        yield ""
+        if table.remarks:
+            yield from (filled(remark) for remark in table.remarks)
+            yield ""
 
 
 def _described(bit: Output | Inner, design: str) -> str:

@@ -87,6 +87,7 @@ def register_table(behaviour: Behaviour, described: Callable[[Bits], str]) -> Ta
         described: Says where the next values of some bits are given.
     """
     rows = []
+    acts = any(r and (r.reset or r.preset) for r in (b.register for b in behaviour.registered))
     for group in register_groups(behaviour):
         register = group.register
         reset = _control(register.reset, at_once=register.reset_asynchronous)
@@ -118,6 +119,7 @@ def register_table(behaviour: Behaviour, described: Callable[[Bits], str]) -> Ta
         tuple(rows),
         aligned="lllllll",
         wrapped=(0, 4, 5, 6),
+        remarks=("A reset or preset acts at once, unless it says at the clock.",) if acts else (),
     )
 
 
@@ -180,7 +182,7 @@ def _start(group: RegisterGroup) -> str:
 def _control(control: Enabling | None, *, at_once: bool) -> str:
     if control is None:
         return "–"
-    return f"{one_line(control.text)} ({'at once' if at_once else 'at the clock'})"
+    return one_line(control.text) + ("" if at_once else ", at the clock")
 
 
 def _to_start(group: RegisterGroup) -> str:

@@ -685,6 +685,7 @@ WARNED = [
         "[[state_table]]",
         '[never]\nwhen = "limit"\n[[state_table]]',
         [
+            "14:11 STATE-UNREACHED nothing leads from 'opening', the state at power-up, to 'shut'",
             "14:30 STATE-UNREACHED nothing leads from 'opening', the state at power-up, to 'open'",
             "23:1 ROW-IMPOSSIBLE this row is never used: all its inputs are impossible by [never]",
         ],
