@@ -1,7 +1,8 @@
 """From what each description says to the function of the whole design.
 
 Last in the order of precedence come the enables: while an output does not drive its pin, nobody
-sees its value. Equations that name the output were worked out before that.
+sees its value. Equations that name the output were worked out before that. The next value of a
+registered output matters all the same: it may be seen after the clock edge, and is fed back.
 """
 
 from __future__ import annotations
@@ -25,7 +26,15 @@ if TYPE_CHECKING:
 
 __all__ = ["Assembled", "assemble"]
 
-_REASONS: tuple[Reason, ...] = ("never", "others", "x", "dont_care", "elsewhere", "disabled")
+_REASONS: tuple[Reason, ...] = (
+    "never",
+    "others",
+    "x",
+    "dont_care",
+    "elsewhere",
+    "unused",
+    "disabled",
+)
 
 
 @dataclass(frozen=True, slots=True)
@@ -76,7 +85,7 @@ def assemble(
             free[reason].append(_of(cover, outputs))
     for signal in signals.outputs:
         enable = enables.get(signal.name)
-        if enable is None:
+        if enable is None or signal.registered:
             continue
         mask = sum(1 << bit for bit in signal.positions)
         for side, cover in sets.items():

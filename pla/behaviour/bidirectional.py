@@ -94,6 +94,8 @@ def _holding(
                 "enable": (enable.on, enable.off),
             }
             for what, (on, off) in sets.items():
+                if what == "value" and signal.registered:
+                    continue  # the pin follows at the clock edge only
                 example = _change(on, off, position)
                 if example is None:
                     continue

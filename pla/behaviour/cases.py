@@ -8,6 +8,7 @@ from functools import partial
 from typing import TYPE_CHECKING
 
 from pla.behaviour.cells import input_cell, output_cell
+from pla.behaviour.columns import registered_column
 from pla.behaviour.description import Claims, Description
 from pla.behaviour.listing import Listing, ListingBuilder, Row, Values, resolve
 from pla.behaviour.problem import Problem
@@ -18,7 +19,7 @@ from pla.errors import Diagnostics, InputError
 from pla.textfile import read_text
 
 if TYPE_CHECKING:
-    from pla.behaviour.signals import Field, Signals
+    from pla.behaviour.signals import Field, Signals, Wanted
     from pla.behaviour.values import Masks
     from pla.tomlfile import Section
 
@@ -107,10 +108,11 @@ class _Table:
                 0 if names else len(names),
             )
         group_of = [g for g, group in enumerate(self.source.header) for _ in group]
+        groups = group_of if self.source.has_bars else None
         seen: dict[tuple[bool, int], str] = {}
         for index, name in enumerate(names):
             try:
-                column = self.column(name)
+                column = self.column(name, registered_column(index, names, groups, self.signals))
             except Problem as problem:
                 claims.incomplete = True
                 self.error(problem, -1, index)
@@ -148,14 +150,14 @@ class _Table:
             text = "the table has a header but no rows"
             self.error(Problem("TABLE-EMPTY", text), -1, 0)
 
-    def column(self, name: str) -> Field:
+    def column(self, name: str, wanted: Wanted | None) -> Field:
         if not name:
             raise Problem("HEADER", "a column has no name, expected an input or output")
         if name == _OTHERS:
             raise Problem("HEADER", "'others' starts a row, the first row names the columns")
         if not self.source.has_bars:
             _check_csv_name(name)
-        return self.signals.find(name)
+        return self.signals.find(name, wanted)
 
     def read_rows(self) -> None:
         sizes = [len(group) for group in self.source.header]

@@ -67,8 +67,8 @@ def output_cell(field: Field, text: str) -> Values:
     if text == "keep":
         raise Problem(
             "NOT-SUPPORTED-YET",
-            "'keep': registered outputs are not supported yet",
-            "this version plans combinational outputs",
+            "'keep': kept outputs are not supported yet",
+            "give a registered output a column for its present value, and say the next one",
         )
     if not text[:1].isdigit() or ".." in text:
         hint = "a don't care is a small x" if text == "X" else None

@@ -70,7 +70,7 @@ def read_condition(
         path: The value, from the top of the document.
         text: The value.
         signals: What is declared.
-        wanted: ``input`` if outputs and inner signals must not be named.
+        wanted: ``outside`` if only inputs from outside may be named.
     """
 
     def place(offset: int) -> Location:
@@ -119,7 +119,7 @@ def read_never(section: Section | None, signals: Signals) -> Cover | None:
     else:
         section.wrong("an equation in quotes, or a list of such", "when")
         return None
-    conditions = [read_condition(section, path, text, signals, "input") for path, text in entries]
+    conditions = [read_condition(section, path, text, signals, "outside") for path, text in entries]
     found = nothing
     for condition in conditions:
         sets = None if condition is None or signals.too_many else condition.value(_no_outputs)

@@ -18,7 +18,12 @@ if TYPE_CHECKING:
 
 __all__ = ["Claims", "Description", "Form", "Solver"]
 
-Form = Literal["cases", "minterms", "logic", "address_map"]
+Form = Literal["cases", "minterms", "logic", "address_map", "state_table"]
+
+_LATCH_HINT = (
+    'a clocked signal may name its present value: declare it with register = "D" and clock = "…"; '
+    "latches without a clock are not supported yet"
+)
 
 
 @dataclass(slots=True)
@@ -185,7 +190,9 @@ class Solver:
             "CYCLE",
             f"{what} depend on themselves without a register: {' -> '.join(names)}",
             at,
-            "an arrow points to what is named in an equation; break the ring at one of them",
+            _LATCH_HINT
+            if len(ring) == 1
+            else "an arrow points to what is named in an equation; break the ring at one of them",
         )
         for i, _ in ring:
             self.solved[i] = None

@@ -1,7 +1,7 @@
 """When three-state outputs drive their pins: reading and working out ``enable``.
 
 A bus fight is not a don't care. So an enable holds for impossible inputs too, unless the design
-says ``never_too``; and a signal that an enable names must be known for impossible inputs as well.
+says ``never_too``.
 """
 
 from __future__ import annotations
@@ -11,6 +11,7 @@ from typing import TYPE_CHECKING
 
 from pla.behaviour.conditions import read_condition
 from pla.behaviour.model import Enabling
+from pla.behaviour.switching import Switch, switched
 from pla.logic import algebra
 
 if TYPE_CHECKING:
@@ -18,7 +19,6 @@ if TYPE_CHECKING:
 
     from pla.behaviour.conditions import Condition
     from pla.behaviour.description import Solver
-    from pla.behaviour.equations import Sets
     from pla.behaviour.signals import Signal, Signals
     from pla.errors import Diagnostics, Location
     from pla.logic.cubes import Cover
@@ -89,51 +89,12 @@ def solve_enables(
     """
     found = {}
     for enable in enables:
-        ready = [solver.ready(bit, at) for bit, at in enable.condition.needs().items()]
-        if not all(ready):
-            continue
-        sets = enable.condition.value(solver.sets if enable.never_too else solver.whole_sets)
-        if sets is None:
-            continue
-        if enable.never_too:
-            on, off = (algebra.difference(cover, never) for cover in sets)
-        elif _report_unknown(enable, sets, never, solver, signals, diagnostics):
-            continue
-        else:
-            on, off = sets
-        on, off = algebra.compact(on.feeding(1)), algebra.compact(off.feeding(1))
-        if _check_use(enable, on, off, never, diagnostics):
-            found[enable.signal.name] = Enabling(on, off, enable.text, enable.location)
+        drives = f"{enable.signal.name} drives its pin"
+        switch = Switch(enable.condition, enable.location, enable.never_too, "ENABLE-OPEN", drives)
+        sets = switched(switch, never, solver, signals, diagnostics)
+        if sets is not None and _check_use(enable, *sets, never, diagnostics):
+            found[enable.signal.name] = Enabling(*sets, enable.text, enable.location)
     return found
-
-
-def _report_unknown(
-    enable: EnableText,
-    sets: Sets,
-    never: Cover,
-    solver: Solver,
-    signals: Signals,
-    diagnostics: Diagnostics,
-) -> bool:
-    """Report impossible inputs for which nobody says whether the output drives."""
-    unknown = algebra.difference(never, sets[0] + sets[1])
-    if not len(unknown):
-        return False
-    names = [signals.described_names[bit] for bit in solver.silent(enable.condition.needs())]
-    if not names:
-        return True  # one of them is too large, which was reported
-    cube = next(iter(unknown))
-    example = signals.show_point(cube.ones, cube.ones | cube.zeros)
-    shown = " and ".join(filter(None, (", ".join(names[:-1]), names[-1])))
-    diagnostics.error(
-        "ENABLE-OPEN",
-        f"whether {enable.signal.name} drives its pin is open for impossible inputs, for example "
-        f"{example}: the description of {shown} says nothing about them",
-        enable.location,
-        f"describe {shown} by an equation; or say never_too = true, if nothing else can drive the "
-        "line then",
-    )
-    return True
 
 
 def _check_use(

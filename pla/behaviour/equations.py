@@ -35,7 +35,7 @@ def check_tree(tree: Node, signals: Signals, wanted: Wanted | None = None) -> li
     Args:
         tree: The equation.
         signals: What is declared.
-        wanted: ``input`` if outputs and inner signals must not be named.
+        wanted: ``outside`` if only inputs from outside may be named.
     """
     found: list[Problem] = []
     _check(tree, signals, wanted, found)

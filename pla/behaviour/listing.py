@@ -22,12 +22,12 @@ if TYPE_CHECKING:
     from pla.behaviour.signals import Signals
     from pla.errors import Diagnostics, Location
 
-__all__ = ["Listing", "ListingBuilder", "Row", "Solved", "Values", "resolve"]
+__all__ = ["Listing", "ListingBuilder", "Row", "Solved", "Values", "possible", "resolve"]
 
 Values = tuple[int, int, int]
 """Masks of the outputs that are 1, 0, and don't care."""
 
-Reason = Literal["never", "others", "x", "dont_care", "elsewhere", "disabled"]
+Reason = Literal["never", "others", "x", "dont_care", "elsewhere", "unused", "disabled"]
 
 _MOST_SHOWN = 10
 _MOST_CUBES = 1 << 18
@@ -153,7 +153,7 @@ def resolve(
     """
     n = signals.n_inputs
     cubes = Cover(n, listing.ones, listing.zeros, np.ones(len(listing.ones), dtype=np.uint64))
-    cubes, owner = _possible(cubes, listing.owner, never)
+    cubes, owner = possible(cubes, listing.owner, never)
     _warn_of_idle_rows(listing, owner, diagnostics)
     values = np.array([row.values for row in listing.rows], dtype=np.uint64).reshape(-1, 3)
     good = _report_conflicts(listing, cubes, owner, values, signals, diagnostics)
@@ -189,7 +189,7 @@ def resolve(
     )
 
 
-def _possible(
+def possible(
     cubes: Cover, owner: np.ndarray[tuple[int], np.dtype[np.intp]], never: Cover
 ) -> tuple[Cover, np.ndarray[tuple[int], np.dtype[np.intp]]]:
     """The parts of the cubes outside [never], and whose they are."""

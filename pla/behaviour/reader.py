@@ -2,35 +2,33 @@
 
 from __future__ import annotations
 
-from itertools import repeat
 from pathlib import PurePath
 from types import MappingProxyType
 from typing import TYPE_CHECKING
 
 from pla.behaviour.assemble import assemble
 from pla.behaviour.bidirectional import report_holding
+from pla.behaviour.bits import inner_bits, input_bits, output_bits
 from pla.behaviour.cases import read_cases
+from pla.behaviour.clocking import read_clocking, read_registers
 from pla.behaviour.conditions import read_logic, read_never
 from pla.behaviour.declare import read_delay, read_signals
 from pla.behaviour.description import Claims, Description, Solver
 from pla.behaviour.enables import read_enables, solve_enables
+from pla.behaviour.idle import warn_of_idle_inner, warn_of_idle_inputs
 from pla.behaviour.minterms import read_minterms
-from pla.behaviour.model import Behaviour, Inner, Input, Output
+from pla.behaviour.model import Behaviour
 from pla.behaviour.naming import named_by
 from pla.behaviour.places import read_places
 from pla.behaviour.rings import report_rings
-from pla.behaviour.unsupported import refuse_unsupported
 from pla.errors import Diagnostics, by_place
-from pla.logic import algebra
 from pla.tomlfile import Section, TomlFile, read_toml
 
 if TYPE_CHECKING:
-    from collections.abc import Mapping
-
-    from pla.behaviour.model import Enabling
+    from pla.behaviour.clocking import RegisterText
+    from pla.behaviour.model import Enabling, Registering, StateTable
     from pla.behaviour.overlaps import AddressMap
     from pla.behaviour.signals import Signals
-    from pla.logic.function import Function
 
 __all__ = ["behaviour_of", "read_behaviour"]
 
@@ -47,6 +45,7 @@ _KEYS = (
     "minterms",
     "logic",
     "address_map",
+    "state_table",
     "place",
 )
 
@@ -80,8 +79,7 @@ def behaviour_of(file: TomlFile) -> Behaviour:
             "begin with a section [inputs] with lines such as: start = 1",
         )
         diagnostics.stop_on_error()
-    refused = refuse_unsupported(top, "file")
-    meant = top.unknown_keys((*_KEYS, *refused))
+    meant = top.unknown_keys(_KEYS)
     name = _title(top, "name", PurePath(file.file).stem)
     revision = _title(top, "revision", "")
     signature = _signature(top)
@@ -93,18 +91,32 @@ def behaviour_of(file: TomlFile) -> Behaviour:
         diagnostics.stop_on_error()
     claims = Claims(signals, diagnostics)
     never = read_never(top.section("never"), signals)
-    claims.incomplete = bool(refused) or _misses_descriptions(top)
+    claims.incomplete = _misses_descriptions(top)
     maps: list[AddressMap] = []
-    descriptions = _read_descriptions(top, signals, claims, maps)
+    machines: list[StateTable] = []
+    descriptions = _read_descriptions(top, signals, claims, maps, machines)
     enables = read_enables(top, signals)
+    clocked = read_registers(top, signals)
+    states = _read_state_clocks(signals)
     places = read_places(top.section("place"), signals)
     _report_undescribed(signals, claims, diagnostics)
     enablings: dict[str, Enabling] = {}
+    registers: dict[str, Registering] = {}
     whole = None
     if never is not None and "never" not in meant and not signals.too_many:
         solver = Solver(_supported(descriptions, signals), never, signals, diagnostics)
         solved = solver.run()
         enablings = solve_enables(enables, never, solver, signals, diagnostics)
+        if clocked or states:
+            from pla.behaviour.registers import (  # noqa: PLC0415 - few designs need it
+                solve_registers,
+                warn_of_races,
+                with_start_codes,
+            )
+
+            at_start = with_start_codes(states, machines)
+            registers = solve_registers(clocked, at_start, never, solver, signals, diagnostics)
+            warn_of_races(registers, signals, diagnostics)
         whole = assemble(solved, enablings, never, signals)
         known = report_holding(whole.outputs, enablings, signals, claims, diagnostics)
         report_rings(whole.outputs, enablings, never, signals, claims, known, diagnostics)
@@ -115,27 +127,33 @@ def behaviour_of(file: TomlFile) -> Behaviour:
     diagnostics.stop_on_error()
     if never is None or whole is None:  # pragma: no cover - there was an error
         raise AssertionError
-    _warn_of_idle_inputs(whole.outputs, enablings, signals, diagnostics)
+    warn_of_idle_inputs(whole, enablings, registers, signals, diagnostics)
     needs = [(d.outputs, tuple(d.needs)) for d in descriptions]
-    enable_needs = [(tuple(e.signal.positions), tuple(e.condition.needs())) for e in enables]
-    _warn_of_idle_inner([*needs, *enable_needs], signals, diagnostics)
+    switch_needs = [(tuple(e.signal.positions), tuple(e.condition.needs())) for e in enables]
+    switch_needs += [
+        (tuple(register.signal.positions), tuple(control.condition.needs()))
+        for register in (*clocked, *states)
+        for control in register.controls
+    ]
+    warn_of_idle_inner([*needs, *switch_needs], whole, enablings, registers, signals, diagnostics)
     return Behaviour(
         name=name,
         revision=revision,
         file=file.file,
-        inputs=_inputs(signals),
-        outputs=_outputs(signals, claims, enablings),
+        inputs=input_bits(signals),
+        outputs=output_bits(signals, claims, enablings, registers),
         function=whole.outputs,
         never=never,
         dont_cares=whole.dont_cares,
         places=MappingProxyType(places),
         warnings=tuple(sorted(diagnostics.warnings, key=by_place)),
-        inner=_inner(signals, claims),
+        inner=inner_bits(signals, claims, registers),
         inner_function=whole.inner,
-        named=MappingProxyType(named_by(needs, enable_needs, signals)),
+        named=MappingProxyType(named_by(needs, switch_needs, signals)),
         signature=signature,
         signature_at=None if signature is None else top.at("signature"),
         max_delay=max_delay,
+        machines=tuple(machines),
     )
 
 
@@ -143,7 +161,7 @@ def _misses_descriptions(top: Section) -> bool:
     """Whether a section that may describe outputs cannot be told, which has its own error."""
     unknown = any(isinstance(v, dict | list) for k, v in top.data.items() if k not in _KEYS)
     tables = [top.data.get(key, {}) for key in ("minterms", "logic")]
-    lists = [top.data.get(key, []) for key in ("cases", "address_map")]
+    lists = [top.data.get(key, []) for key in ("cases", "address_map", "state_table")]
     return (
         unknown
         or not all(isinstance(value, dict) for value in tables)
@@ -187,7 +205,11 @@ def _signature(top: Section) -> str | None:
 
 
 def _read_descriptions(
-    top: Section, signals: Signals, claims: Claims, maps: list[AddressMap]
+    top: Section,
+    signals: Signals,
+    claims: Claims,
+    maps: list[AddressMap],
+    machines: list[StateTable],
 ) -> list[Description]:
     found = [read_cases(section, signals, claims) for section in top.sections("cases")]
     minterms = top.section("minterms")
@@ -201,7 +223,20 @@ def _read_descriptions(
         from pla.behaviour.address_map import read_address_map  # noqa: PLC0415 - few designs need it
 
         found += [read_address_map(s, signals, claims, maps) for s in sections]
+    if signals.machines:
+        from pla.behaviour.state_table import read_state_table  # noqa: PLC0415 - likewise
+
+        found += [read_state_table(head, signals, claims, machines) for head in signals.machines]
     return [description for description in found if description is not None]
+
+
+def _read_state_clocks(signals: Signals) -> list[RegisterText]:
+    """How the states of state tables are clocked; what they start with their codes will tell."""
+    found = []
+    for head in signals.machines:
+        signal = signals.by_name[head.name] if head.whole else None
+        found.append(read_clocking(head.section, signal, signals, None, ("reset",)))
+    return [register for register in found if register is not None]
 
 
 def _report_undescribed(signals: Signals, claims: Claims, diagnostics: Diagnostics) -> None:
@@ -219,83 +254,3 @@ def _report_undescribed(signals: Signals, claims: Claims, diagnostics: Diagnosti
             signal.location,
             "describe it in [[cases]], [minterms], [logic] or [[address_map]]",
         )
-
-
-def _warn_of_idle_inputs(
-    function: Function,
-    enables: Mapping[str, Enabling],
-    signals: Signals,
-    diagnostics: Diagnostics,
-) -> None:
-    covers = [cover for enable in enables.values() for cover in (enable.on, enable.off)]
-    used = algebra.support(function.on, function.off, *covers)
-    for signal in signals.inputs:
-        bits = signal.positions
-        idle = [bit for bit in bits if not used >> bit & 1]
-        if not idle:
-            continue
-        names = ", ".join(signals.input_names[bit] for bit in idle)
-        diagnostics.warning(
-            "INPUT-UNUSED",
-            f"no output depends on {signal.name if len(idle) == len(bits) else names}",
-            signal.location,
-        )
-
-
-def _warn_of_idle_inner(
-    needs: list[tuple[tuple[int, ...], tuple[int, ...]]], signals: Signals, diagnostics: Diagnostics
-) -> None:
-    named = {bit for _, bits in needs for bit in bits}
-    for signal in signals.inner:
-        idle = [bit for bit in signal.positions if bit not in named]
-        if not idle:
-            continue
-        names = ", ".join(signals.described_names[bit] for bit in idle)
-        diagnostics.warning(
-            "INNER-UNUSED",
-            f"nothing names the inner signal {signal.name if len(idle) == signal.size else names}",
-            signal.location,
-        )
-
-
-def _inputs(signals: Signals) -> tuple[Input, ...]:
-    found = []
-    for signal in signals.inputs:
-        output = signals.by_name[signal.read_from] if signal.read_from else None
-        pins = output.bit_names() if output else repeat(None)
-        for name, pin in zip(signal.bit_names(), pins, strict=False):
-            found.append(Input(name, signal.active_low, signal.location, pin))
-    return tuple(found)
-
-
-def _outputs(
-    signals: Signals, claims: Claims, enables: Mapping[str, Enabling]
-) -> tuple[Output, ...]:
-    found = []
-    for signal in signals.outputs:
-        read = signals.by_name[signal.reads].bit_names() if signal.reads else repeat(None)
-        bits = zip(signal.positions, signal.bit_names(), read, strict=False)
-        for bit, name, reads in bits:
-            described, form = claims.places[bit]
-            found.append(
-                Output(
-                    name=name,
-                    active_low=signal.active_low,
-                    impossible=signal.impossible,
-                    location=signal.location,
-                    described=described,
-                    form=form,
-                    enable=enables.get(signal.name),
-                    reads=reads,
-                    max_delay=signal.max_delay,
-                )
-            )
-    return tuple(found)
-
-
-def _inner(signals: Signals, claims: Claims) -> tuple[Inner, ...]:
-    return tuple(
-        Inner(name, signal.location, *claims.places[bit])
-        for signal in signals.inner
-        for bit, name in zip(signal.positions, signal.bit_names(), strict=True)
-    )

@@ -15,14 +15,16 @@ if TYPE_CHECKING:
     from collections.abc import Iterator
     from fractions import Fraction
 
+    from pla.behaviour.machines import MachineHead
     from pla.errors import Location
 
 __all__ = ["RESERVED", "Field", "Role", "Signal", "Signals", "Wanted", "split_name"]
 
 Role = Literal["input", "output", "inner"]
 
-Wanted = Literal["input", "output"]
-"""What a name is wanted for: to be looked at, or to be described, as inner signals are, too."""
+Wanted = Literal["input", "outside", "output"]
+"""What a name is wanted for: to be looked at, present values included; to be looked at and to come
+from outside; or to be described, as inner signals are, too."""
 
 RESERVED = ("in", "not", "and", "or", "xor", "others")
 
@@ -52,6 +54,10 @@ class Signal:
         read_from: For an input that is the level at an output's pin, the output.
         reads: For such an output, the input.
         max_delay: The longest delay of an output, in ns.
+        registered: It is clocked; a name that is looked at then means the present value.
+        present_of: For an input that is the present value of a registered signal of the same name,
+            that name.
+        asynchronous: An input that may change close to a clock edge.
     """
 
     name: str
@@ -67,6 +73,9 @@ class Signal:
     read_from: str | None = None
     reads: str | None = None
     max_delay: Fraction | None = None
+    registered: bool = False
+    present_of: str | None = None
+    asynchronous: bool = False
 
     @property
     def called(self) -> str:
@@ -151,20 +160,34 @@ class Signals:
     """All signals of a design.
 
     Attributes:
-        inputs: In order of declaration, behind them those that are read from bidirectional pins.
+        inputs: In order of declaration, behind them those that are read from bidirectional pins,
+            and last the present values of registered signals.
         outputs: In order of declaration.
-        inner: In order of declaration.
+        inner: In order of declaration; behind them the states of state tables.
         broken: Names whose declaration is wrong.
+        machines: The heads of the state tables.
     """
 
     inputs: tuple[Signal, ...]
     outputs: tuple[Signal, ...]
     inner: tuple[Signal, ...] = ()
     broken: frozenset[str] = field(default_factory=frozenset)
+    machines: tuple[MachineHead, ...] = ()
 
     @cached_property
     def by_name(self) -> dict[str, Signal]:
-        return {s.name: s for s in (*self.described, *self.inputs)}
+        """The declared signals; present values are in `present`."""
+        return {s.name: s for s in (*self.described, *self.outside)}
+
+    @cached_property
+    def present(self) -> dict[str, Signal]:
+        """The present values of registered signals, by the names of these."""
+        return {s.name: s for s in self.inputs if s.present_of is not None}
+
+    @property
+    def outside(self) -> tuple[Signal, ...]:
+        """Inputs that come from outside."""
+        return tuple(s for s in self.inputs if s.present_of is None)
 
     @property
     def described(self) -> tuple[Signal, ...]:
@@ -199,8 +222,10 @@ class Signals:
 
     def names(self, wanted: Wanted | None = None) -> list[str]:
         """Names to choose from, for messages."""
-        inputs = () if wanted == "output" else self.inputs
-        return [s.name for s in (*inputs, *(() if wanted == "input" else self.described))]
+        if wanted == "input":
+            return [s.name for s in self.inputs]
+        inputs = () if wanted == "output" else self.outside
+        return [s.name for s in (*inputs, *(() if wanted == "outside" else self.described))]
 
     def find(self, text: str, wanted: Wanted | None = None) -> Field:
         """What a written name stands for.
@@ -233,11 +258,16 @@ class Signals:
                 did_you_mean(name, self.names(wanted)),
                 known=name in self.broken,
             )
-        if wanted is not None and (signal.role == "input") != (wanted == "input"):
+        if wanted is None or wanted == "input":
+            signal = self.present.get(name, signal)
+        if wanted is not None and (signal.role == "input") != (wanted != "output"):
+            hint = did_you_mean(name, self.names(wanted))
+            if wanted == "outside" and signal.registered:
+                hint = f"what a register holds does not come from outside; {hint}"
             raise Problem(
                 "NAME-ROLE",
                 f"{name!r} is {signal.called}, expected an {self._called(wanted)}",
-                did_you_mean(name, self.names(wanted)),
+                hint,
                 known=name in self.broken,
             )
         if high is None:
@@ -272,8 +302,9 @@ class Signals:
 
     def _called(self, wanted: Wanted | None) -> str:
         """What there may be, in words: ``input or output``."""
-        words: list[str] = [wanted] if wanted else ["input", "output"]
-        if self.inner and wanted != "input":
+        looked_at = wanted in ("input", "outside")
+        words = ["input"] if looked_at else ["output"] if wanted else ["input", "output"]
+        if self.inner and not looked_at:
             words.append("inner signal")
         return " or ".join(filter(None, (", ".join(words[:-1]), words[-1])))
 

@@ -12,28 +12,14 @@ __all__ = ["MISPLACED", "refuse_unsupported"]
 MISPLACED = {"never_too": "it stands in [outputs], in the table of an output with an enable"}
 """For keys of descriptions that belong elsewhere, the hint."""
 
-_NOT_YET = {
-    "file": {"state_table": "state tables"},
-    "input": {"asynchronous": "asynchronous inputs"},
-    "output": {
-        "register": "registered outputs",
-        "clock": "registered outputs",
-        "reset": "registered outputs",
-        "preset": "registered outputs",
-        "start": "registered outputs",
-        "glitch_free": "glitch-free outputs",
-        "keep": "registered outputs",
-    },
+_NOT_YET: dict[str, dict[str, str]] = {
+    "input": {},
+    "output": {"glitch_free": "glitch-free outputs", "keep": "kept outputs"},
     "inner": {
-        "register": "registered inner signals",
-        "clock": "registered inner signals",
-        "reset": "registered inner signals",
-        "preset": "registered inner signals",
-        "start": "registered inner signals",
         "glitch_free": "glitch-free inner signals",
-        "keep": "registered inner signals",
+        "keep": "kept inner signals",
     },
-    "table": {"keep": "registered outputs"},
+    "table": {"keep": "kept outputs"},
 }
 
 
@@ -42,7 +28,7 @@ def refuse_unsupported(section: Section, kind: str) -> tuple[str, ...]:
 
     Args:
         section: Where to look.
-        kind: ``file``, ``input``, ``output``, ``inner`` or ``table``.
+        kind: ``input``, ``output``, ``inner`` or ``table``.
     """
     refused = tuple(key for key in _NOT_YET[kind] if key in section)
     for key in refused:

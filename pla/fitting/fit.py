@@ -7,6 +7,7 @@ from itertools import combinations, islice
 from typing import TYPE_CHECKING
 
 from pla.errors import Diagnostic
+from pla.fitting.clocked import refuse_registers
 from pla.fitting.crowding import listed
 from pla.fitting.delays import late_outputs
 from pla.fitting.minima import Minima
@@ -56,7 +57,9 @@ def fit(
 
     Raises:
         InputError: If a place names a pin that cannot carry its signal.
+        RefusalError: If the design has registers.
     """
+    refuse_registers(behaviour)
     places = settled_places(behaviour, device)
     known = minima or Minima()
     folded = known.netlist(behaviour)

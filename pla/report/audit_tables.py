@@ -27,6 +27,7 @@ _REASONS = {
     "others": "others",
     "x": "x in a row",
     "dont_care": "dont_care",
+    "unused": "codes of no state",
     "elsewhere": "elsewhere",
 }
 

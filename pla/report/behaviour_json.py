@@ -6,6 +6,7 @@ from typing import TYPE_CHECKING, Any
 
 from pla.logic import algebra
 from pla.report.behaviour_counts import count_outputs
+from pla.report.clocked_json import clocked_document
 from pla.report.delays import plain_number
 
 if TYPE_CHECKING:
@@ -19,8 +20,8 @@ __all__ = ["behaviour_json"]
 def behaviour_json(behaviour: Behaviour) -> dict[str, Any]:
     """Names in order, and for each output where its freedom comes from; counts are exact.
 
-    Keys about inner signals, enables, bidirectional pins, signature and delays stand only in the
-    documents of designs that have any.
+    Keys about inner signals, enables, bidirectional pins, registers, asynchronous inputs, signature
+    and delays stand only in the documents of designs that have any.
     """
     outputs = zip(behaviour.outputs, count_outputs(behaviour), strict=True)
     document = {
@@ -55,7 +56,8 @@ def behaviour_json(behaviour: Behaviour) -> dict[str, Any]:
         },
         "warnings": [w.as_json() for w in behaviour.warnings],
     }
-    return document | {key: value for key, value in _more(behaviour) if value}
+    document |= {key: value for key, value in _more(behaviour) if value}
+    return document | clocked_document(behaviour)
 
 
 def _more(behaviour: Behaviour) -> Iterator[tuple[str, Any]]:
@@ -85,6 +87,7 @@ def _more(behaviour: Behaviour) -> Iterator[tuple[str, Any]]:
         },
     )
     yield "reads", {o.name: o.reads for o in behaviour.outputs if o.reads}
+    yield "asynchronous", [i.name for i in behaviour.inputs if i.asynchronous]
     yield "signature", behaviour.signature
     yield "max_delay", behaviour.max_delay and plain_number(behaviour.max_delay)
     yield (

@@ -7,15 +7,18 @@ from typing import TYPE_CHECKING, TypeVar
 from pla.behaviour.model import Inner, Input, Output
 from pla.logic import algebra
 from pla.report.behaviour_counts import OutputCounts, count_outputs
+from pla.report.clocked import register_table, state_tables
 from pla.report.delays import nanoseconds
 from pla.report.layout import WIDTH, broken, drawn
 from pla.report.table import Table
 from pla.report.text import filled, kept_together, one_line
+from pla.wording import spans
 
 if TYPE_CHECKING:
     from collections.abc import Iterator, Sequence
 
     from pla.behaviour.model import Behaviour, Enabling
+    from pla.report.clocked import Bits
 
 __all__ = ["behaviour_text"]
 
@@ -32,6 +35,7 @@ _FORMS = {
     "minterms": "minterm list",
     "logic": "equation",
     "address_map": "address map",
+    "state_table": "state table",
 }
 _REASONS = {
     "never": "impossible",
@@ -39,6 +43,7 @@ _REASONS = {
     "x": "rows with x",
     "dont_care": "dont_care",
     "elsewhere": "elsewhere",
+    "unused": "codes of no state",
     "disabled": "disabled",
 }
 
@@ -70,30 +75,59 @@ def behaviour_text(behaviour: Behaviour) -> str:
         disable_numparse=True,
         colalign=["left", "left", "right", "right", "right", "right", "left"],
     )
+    present = [i for i in behaviour.inputs if i.present_of is not None]
+    what = "Combinations of inputs and present values" if present else "Input combinations"
     lines = [
         title,
         "",
-        *_side("inputs", behaviour.inputs),
+        *_side("inputs", [i for i in behaviour.inputs if i.present_of is None]),
         *_side("outputs", behaviour.outputs),
         *(_side("inner", behaviour.inner) if behaviour.inner else ()),
+        *(_side("present", present) if present else ()),
         *_demands(behaviour),
         "",
-        f"Input combinations that ask for 1, for 0 and for nothing, of {total} in all"
+        f"{what} that ask for 1, for 0 and for nothing, of {total} in all"
         + ("." if plain else ";"),
         *([] if plain else ["each row is reduced to the smallest power of two that shows it."]),
         "",
         *(line.rstrip() for line in table.split("\n")),
         "",
         *(line for table in _more_tables(behaviour) for line in (*drawn(table).split("\n"), "")),
+        *(_clocked(behaviour) if present else ()),
         "No errors." if not behaviour.warnings else f"No errors, {_warnings(behaviour)}.",
     ]
     return "\n".join(lines)
+
+
+def _clocked(behaviour: Behaviour) -> Iterator[str]:
+    """Registers and state tables."""
+    yield filled(
+        "For a registered signal the table says what its next value is; the present value is "
+        "among the inputs, and its name means that one wherever it is looked at."
+    )
+    yield ""
+    registers = register_table(behaviour, lambda bits: _all_described(bits, behaviour.file))
+    for table in (registers, *state_tables(behaviour)):
+        yield drawn(table)
+        yield ""
+        if table.remarks:
+            yield from (filled(remark) for remark in table.remarks)
+            yield ""
 
 
 def _described(bit: Output | Inner, design: str) -> str:
     at = bit.described
     place = f"line {at.line}" if at.file == design else f"{at.file}:{at.line}"
     return f"{_FORMS[bit.form]}, {place}"
+
+
+def _all_described(bits: Bits, design: str) -> str:
+    """Where several bits are described, in one breath where the file and the form are the same."""
+    places = {(bit.form, bit.described.file) for bit in bits}
+    lines = sorted({bit.described.line for bit in bits if bit.described.line is not None})
+    if len(places) > 1 or len(lines) < 2 or bits[0].described.file != design:
+        return ", ".join(dict.fromkeys(_described(bit, design) for bit in bits))
+    return f"{_FORMS[bits[0].form]}, lines {spans(lines)}"
 
 
 def _demands(behaviour: Behaviour) -> Iterator[str]:
@@ -106,7 +140,8 @@ def _demands(behaviour: Behaviour) -> Iterator[str]:
 
 def _more_tables(behaviour: Behaviour) -> Iterator[Table]:
     """Inner signals, and what is special about pins; nothing if there is nothing."""
-    if behaviour.inner:
+    inner_signals = [inner for inner in behaviour.inner if inner.register is None]
+    if inner_signals:
         named_in: dict[str, list[str]] = {}
         for name, others in behaviour.named.items():
             for other in others:
@@ -120,7 +155,7 @@ def _more_tables(behaviour: Behaviour) -> Iterator[Table]:
                     _described(inner, behaviour.file),
                     ", ".join(named_in.get(inner.name, ["nothing"])),
                 )
-                for inner in behaviour.inner
+                for inner in inner_signals
             ),
             aligned="lll",
             wrapped=(0, 2),

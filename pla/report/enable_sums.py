@@ -18,7 +18,14 @@ if TYPE_CHECKING:
 
     from pla.behaviour.model import Behaviour, Enabling
 
-__all__ = ["EnableSum", "enable_sums", "enables_document", "enables_table", "folded_sentence"]
+__all__ = [
+    "EnableSum",
+    "enable_sums",
+    "enables_document",
+    "enables_table",
+    "folded_sentence",
+    "smallest_sum",
+]
 
 
 @dataclass(frozen=True, slots=True)
@@ -49,10 +56,16 @@ def enable_sums(behaviour: Behaviour) -> tuple[EnableSum, ...]:
         EnableSum(
             tuple(names[key]),
             enable.text,
-            minimize(Function.of_outputs(n, [(enable.on, enable.off)]), [Polarity(True, False)]),
+            smallest_sum(enable, n),
         )
         for key, enable in enables.items()
     )
+
+
+def smallest_sum(switch: Enabling, n_inputs: int) -> Minimum:
+    """The smallest sum that is 1 while something is switched on."""
+    function = Function.of_outputs(n_inputs, [(switch.on, switch.off)])
+    return minimize(function, [Polarity(True, False)])
 
 
 def enables_table(behaviour: Behaviour, sums: tuple[EnableSum, ...]) -> Table:

@@ -88,7 +88,10 @@ def _under(
         keys = [i.fed_by if i.pin is None else i.pin for i in plan.inputs]
         keys += [o.cell.key if o.pin is None else o.pin for o in plan.outputs]
         yield "pin", *blank, *("" if key is None else str(key) for key in keys)
-    yield "active", *blank, *("L" if low else "H" for low in lows)
+    # What a register holds has no pin of its own.
+    inside = [i.present_of is not None for i in behaviour.inputs] + [False] * len(behaviour.outputs)
+    marks = ("" if held else "L" if low else "H" for low, held in zip(lows, inside, strict=True))
+    yield "active", *blank, *marks
     senses = ("C" if complemented else "T" for complemented in minimum.complemented)
     yield "sum", *blank, *("",) * len(behaviour.inputs), *senses
 
@@ -108,6 +111,13 @@ def _conventions(
         "All values are asserted values: 1 means that the signal is asserted, whatever level its "
         f"pin has then. Active: {level}{'' if lows else ', asserted is a high level on the pin'}."
     )
+    present = [i.name for i in behaviour.inputs if i.present_of is not None]
+    if present:
+        word = "value is" if len(present) == 1 else "values are"
+        yield (
+            f"Of {listed(present)} the present {word} among the inputs and the next among the "
+            "outputs."
+        )
     complement = (
         "; C: it is the complement, and the output is asserted where no term of its sum is 1"
         if any(minimum.complemented)

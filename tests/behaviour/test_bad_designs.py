@@ -83,8 +83,8 @@ BAD = [
         id="inner",
     ),
     pytest.param(
-        lamp("start") + "[[state_table]]\nrows = ''\n",
-        (14, 3, "NOT-SUPPORTED-YET", "state tables are not supported yet"),
+        lamp("start") + "[state_table]\nrows = ''\n",
+        (14, 1, "VALUE", "'state_table' is a table, expected a list of tables"),
         id="state-table",
     ),
     pytest.param(
@@ -147,8 +147,8 @@ BAD = [
         id="active",
     ),
     pytest.param(
-        "[inputs]\na = { asynchronous = true }\n[outputs]\nf = 1\n[logic]\nf = 'a'",
-        (2, 7, "NOT-SUPPORTED-YET", "asynchronous inputs are not supported yet"),
+        "[inputs]\na = { asynchronous = 1 }\n[outputs]\nf = 1\n[logic]\nf = 'a'",
+        (2, 22, "VALUE", "'asynchronous' is the number 1, expected true or false"),
         id="asynchronous",
     ),
     pytest.param(
@@ -164,10 +164,16 @@ BAD = [
     *(
         pytest.param(
             f"[inputs]\na = 1\n[outputs]\nf = {{ {key} = 1 }}\n[logic]\nf = 'a'",
-            (4, 7, "NOT-SUPPORTED-YET", f"{key!r}: "),
+            (4, 7, code, f"{key!r}{rest}"),
             id=f"output-{key}",
         )
-        for key in ("register", "clock", "reset", "preset", "start", "glitch_free")
+        for key, code, rest in (
+            ("glitch_free", "NOT-SUPPORTED-YET", ": "),
+            *(
+                (key, "REGISTER-MISSING", " without 'register'")
+                for key in ("clock", "reset", "reset_when", "preset", "preset_when", "start")
+            ),
+        )
     ),
     pytest.param(
         "[inputs]\na = 1\n[outputs]\nf = '7:4'\n[logic]\nf = 'a'",
@@ -479,7 +485,7 @@ BAD = [
     ),
     pytest.param(
         table("0 0 | keep 1\nothers | x x"),
-        (12, 7, "NOT-SUPPORTED-YET", "'keep': registered outputs are not supported yet"),
+        (12, 7, "NOT-SUPPORTED-YET", "'keep': kept outputs are not supported yet"),
         id="cell-keep",
     ),
     pytest.param(
@@ -746,7 +752,7 @@ f = "one"
         (1, "KEY-UNKNOWN"),
         (3, "WIDTH"),
         (4, "KEY-UNKNOWN"),
-        (6, "NOT-SUPPORTED-YET"),
+        (6, "KEY-MISSING"),
         (9, "EQUATION-SYNTAX"),
         (9, "NAME-UNKNOWN"),
         (13, "NUMBER-RANGE"),
@@ -855,8 +861,8 @@ ALL_ROWS = ROWS.replace("1 - | 0", "1 - | 0\nothers | x")
         pytest.param(
             SMALL.replace("f = 1", "f = { register = 'D' }\ng = 1")
             + "[logic]\nf = 'f + low'\ng = 'f high'\n",
-            "5:7 NOT-SUPPORTED-YET 'register': registered outputs are not supported yet",
-            "this version plans combinational outputs",
+            "5:5 KEY-MISSING [outputs.f] has no 'clock'",
+            'add clock = "clk", the name of an input, or "clk\'" for its falling edge',
             id="register-fed-back",
         ),
         pytest.param(

@@ -57,7 +57,7 @@ ONE = [
             "this version plans combinational outputs",
             id=f"inner-{key}",
         )
-        for key, what in (("register", "registered"), ("glitch_free", "glitch-free"))
+        for key, what in (("keep", "kept"), ("glitch_free", "glitch-free"))
     ),
     pytest.param(
         inner("{ bit = 1 }"),

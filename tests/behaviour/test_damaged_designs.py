@@ -40,9 +40,60 @@ WHOLE = WHOLE.replace(
     "[logic]\n",
     "[logic]\nwide = \"jam' + step[1]\"\n'data[0]' = 'jam back[1]'\n'data[1]' = 'wide step[0]'\n",
 )
+CLOCKED = """\
+[inputs]
+clk = 1
+go = { asynchronous = true }
+clear = { active = "low" }
+step = 2
+[outputs]
+lamp = { register = "any", clock = "clk'", reset = "clear", start = 1 }
+mode = 2
+busy = { register = "JK", clock = "clk", preset = "go clear'", reset = "clear" }
+[inner]
+count = { bits = 2, register = "T", clock = "clk", reset = "mode == 1", reset_when = "clock" }
+[never]
+when = "step == 3"
+[logic]
+lamp = "busy + count[0] lamp'"
+[[cases]]
+rows = '''
+count go | count busy
+0..2 1 | 0b1x 1
+others | x 0'''
+[[state_table]]
+of = "mode"
+clock = "clk"
+states = ["idle", "run", "halt"]
+start = "idle"
+codes = { idle = "00", run = "10", halt = "01" }
+unused = "x"
+reset = "clear"
+rows = '''
+state | go step count | then | open
+idle | 1 0..1 - | run | 1
+idle | others | idle | 0
+run | - - 2..3 | halt | x
+halt | - 2 0b1- | idle | 1
+others | halt | 0'''
+[[state_table]]
+of = "gate"
+clock = "clk"
+states = ["shut", "wide"]
+start = "shut"
+rows = '''
+state | mode | then
+shut | 1..2 | wide
+- | others | shut
+wide | 0b1- | wide
+wide | 1 | shut'''
+"""
+CLOCKED = CLOCKED.replace("mode = 2\n", "mode = 2\nopen = 1\n", 1)
 SCRAPS = [
     *("", " ", "\n", "0", "1", "x", "-", "'", '"', "[", "]", "{", "}", "|", "=", ",", "..", ":"),
     *("others", "step", "wide", "back", "reads", "enable", "[inner]\n", "start", "0b1", "0x"),
+    *("mode", "count", "clk", "then", "idle", "start", "unused", "codes", "register", "clock"),
+    *("[[state_table]]\n", "wide", "state", "D", "free", "reset"),
     *("999", "true", "[never]\n", "when", "not", "+", "é"),
 ]
 
@@ -52,14 +103,23 @@ def test_whole_design():
     assert len(behaviour.outputs) == 12
 
 
+def test_clocked_design():
+    behaviour = behaviour_of(parse_toml(CLOCKED, "d.toml"))
+    assert [bit.name for bit in behaviour.registered] == [
+        *("lamp", "mode[1]", "mode[0]", "busy"),
+        *("count[1]", "count[0]", "gate"),
+    ]
+
+
 damage = st.tuples(st.integers(0, len(WHOLE) - 1), st.integers(0, 12), st.sampled_from(SCRAPS))
+whole = st.sampled_from([WHOLE, CLOCKED, CLOCKED])
 
 
-@settings(max_examples=200, deadline=None)
-@given(st.lists(damage, min_size=1, max_size=4))
-def test_any_damage_is_explained(damages):
-    text = WHOLE
-    for start, length, scrap in damages:
+@settings(max_examples=300, deadline=None)
+@given(whole, st.lists(damage, min_size=1, max_size=4))
+def test_any_damage_is_explained(text, damages):
+    for place, length, scrap in damages:
+        start = place % len(text)
         text = text[:start] + scrap + text[start + length :]
     try:
         behaviour = behaviour_of(parse_toml(text, "d.toml"))
@@ -77,10 +137,10 @@ def test_any_damage_is_explained(damages):
     assert behaviour.function.conflict() is None
 
 
-@settings(max_examples=100, deadline=None)
-@given(st.lists(st.integers(0, WHOLE.count("\n")), min_size=1, max_size=6), st.booleans())
-def test_lost_and_doubled_lines_are_explained(numbers, doubled):
-    lines = WHOLE.split("\n")
+@settings(max_examples=200, deadline=None)
+@given(whole, st.lists(st.integers(0, WHOLE.count("\n")), min_size=1, max_size=6), st.booleans())
+def test_lost_and_doubled_lines_are_explained(text, numbers, doubled):
+    lines = text.split("\n")
     for number in numbers:
         at = number % len(lines)
         lines[at : at + 1] = [lines[at]] * 2 if doubled else []

@@ -137,6 +137,26 @@ def test_help_imports_nothing_heavy():
     assert done.stdout.splitlines()[-1] == b"[]"
 
 
+CLOCKED = ("address-latch", "bus-arbiter", "feeder-guard")
+
+
+@pytest.mark.parametrize("name", CLOCKED)
+def test_every_clocked_example_is_minimized(name, tmp_path, capsys):
+    head = (EXAMPLES / f"{name}.toml").read_text(encoding="utf-8").split("\nname = ")[0]
+    assert head.endswith(f"\n#   fuseplan terms examples/{name}.toml")
+    design = str(EXAMPLES / f"{name}.toml")
+    assert run(["check", design]) == 0
+    assert run(["terms", design, "--require-proof"]) == 0
+    assert capsys.readouterr().err == ""
+    folder = tmp_path / name
+    for command in (["budget"], ["plan", "--device", "shared-14x40x8", "-o", str(folder)]):
+        assert run([command[0], design, *command[1:]]) == 1
+        out, err = capsys.readouterr()
+        assert out == ""
+        assert "registers are planned by a later version [REGISTERS]" in err
+    assert not folder.exists()
+
+
 def test_every_example_is_planned_or_refused(tmp_path, capsys):
     """The examples are what a user tries first; each with the device that its README row suits."""
     wanted = {
@@ -154,7 +174,7 @@ def test_every_example_is_planned_or_refused(tmp_path, capsys):
         "cold-store": ("swap-8x4", 0),
         "weigher-port": ("own-9x5", 0),
     }
-    assert {path.stem for path in EXAMPLES.glob("*.toml")} == set(wanted)
+    assert {path.stem for path in EXAMPLES.glob("*.toml")} == {*wanted, *CLOCKED}
     for name, (device, expected) in wanted.items():
         folder = tmp_path / name
         command = f"fuseplan plan examples/{name}.toml --device {device} -o out/{name}"
