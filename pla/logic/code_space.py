@@ -76,7 +76,7 @@ class Space:
         return sorted_bits(self.moved(codes, 0) if self.mirrored else codes, self.bits)
 
     def size(self) -> int:
-        """How many representatives there are at most (a few more than there are)."""
+        """How many there are, or fewer: some codes are left as they are by an order of bits."""
         free = self.mirrored or self.start_code is not None
         chosen = perm((1 << self.bits) - free, self.n_states - free)
         return chosen // (factorial(self.bits) if self._any_order else 1)
