@@ -9,7 +9,7 @@ from pla.device.words import beside, mend_pin, said_in
 from pla.wording import did_you_mean
 
 if TYPE_CHECKING:
-    from collections.abc import Iterable, Iterator, Mapping, Sequence
+    from collections.abc import Collection, Iterator, Mapping, Sequence
 
     from pla.device.arrays import ReadAndArray
     from pla.device.cells import RawCell, ReadKind
@@ -60,11 +60,12 @@ def check_names(
             )
 
 
-def _mend_name(name: str, cells: Iterable[str]) -> str:
+def _mend_name(name: str, cells: Collection[str]) -> str:
     """A hint for a column that is named after no cell."""
-    known = did_you_mean(name, cells)
-    as_pin = mend_pin(name)
-    return known if as_pin is None or known.startswith("did you mean") else f"{known}; {as_pin}"
+    known, as_pin = did_you_mean(name, cells), mend_pin(name)
+    if as_pin is None or known.startswith("did you mean"):
+        return known
+    return f"{known}; {as_pin}" if cells else as_pin
 
 
 def check_roles(

@@ -62,8 +62,9 @@ def report_extra_columns(
     excess = sum(len(claim.fuses) for claim in claims) - fuses
     reads: _Reads = (and_array,) if or_array is None else (and_array, or_array)
     for read, group in zip(reads, ("AND", "OR"), strict=False):
+        # In a single row nothing tells a column too many from another slip.
         extra, rest = divmod(excess, len(read.array.rows))
-        if rest or not 0 < extra <= min(_SHOWN, _width(read.array) - 1):
+        if rest or len(read.array.rows) < 2 or not 0 < extra <= min(_SHOWN, _width(read.array) - 1):
             continue
         kept = (c.fuses[: -extra if c.group == group else None] for c in claims)
         if not _each_once(fuses, chain.from_iterable(kept)):
