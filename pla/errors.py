@@ -84,6 +84,7 @@ class Diagnostic:
             "column": at.column if at else None,
             "code": self.code,
             "message": self.message,
+            "hint": self.hint,
         }
 
 

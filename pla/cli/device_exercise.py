@@ -147,7 +147,8 @@ def _judge(device: str, readings: str, *, as_json: bool) -> int:
             f"the readings are of part {sheet.part}, and the exercise of {array.name} has "
             f"{len(made.parts)}"
         )
-        raise InputError([Diagnostic("SHEET-OTHER", message, Location(readings))])
+        hint = "judge the sheet with the device file from which the part was made"
+        raise InputError([Diagnostic("SHEET-OTHER", message, Location(readings), hint)])
     own = made.parts[sheet.part - 1]
     found = find_slips(sheet, own)
     if not found.count:

@@ -6,9 +6,11 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 from pla.device.consistency import FuseClaim
+from pla.device.layers import LayeredFile
 from pla.device.limits import CELL_LATER, KIND_LATER, known_keys
 from pla.device.modes import read_enable, read_modes, read_states
 from pla.device.words import beside, read_row_numbers, rows_in_words, spans, usable_name
+from pla.wording import did_you_mean
 
 if TYPE_CHECKING:
     from collections.abc import Iterator
@@ -141,6 +143,8 @@ def read_kinds(
 def _read_kind(
     name: str, kind: Section, count: int | None, at_count: Location | None
 ) -> ReadKind | None:
+    if _misnamed(name, kind):
+        return None
     known_keys(kind, ["bits", "modes", "cells", "enable", "unused"], KIND_LATER)
     bits = _read_bits(kind)
     enable = read_enable(kind, count) if "enable" in kind else None
@@ -148,7 +152,13 @@ def _read_kind(
     listed = kind.data.get("cells")
     good = isinstance(listed, list) and len(sections) == len(listed)
     if listed == []:
-        kind.error("KIND-EMPTY", f"{kind.title} has no cells", kind.at("cells"))
+        hint = None
+        if isinstance(kind.file, LayeredFile) and name in kind.file.base_kinds:
+            hint = (
+                "kinds cannot be taken away: put the cells that stay into a kind of their own in "
+                f"{kind.file.layers[1].file}"
+            )
+        kind.error("KIND-EMPTY", f"{kind.title} has no cells", kind.at("cells"), hint)
     pins_needed = any("pin" in section for section in sections) or not sections
     modes = read_modes(kind, bits, pins_needed)
     cells: list[RawCell] = []
@@ -164,6 +174,24 @@ def _read_kind(
     if bits is None or modes is None or not good or not cells:
         return None
     return ReadKind(name, kind, bits, tuple(modes), tuple(cells), unused)
+
+
+def _misnamed(name: str, kind: Section) -> bool:
+    """Report a kind that would change one of an extended file, which has none of this name."""
+    file = kind.file
+    if not isinstance(file, LayeredFile) or len(file.layers) < 2 or "cells" in kind:
+        return False
+    known = file.base_kinds
+    if name in known:
+        return False
+    kind.error(
+        "KIND-UNKNOWN",
+        f"{kind.title} has no cells, and {file.layers[1].file}, which this file extends, has no "
+        f"kind {name!r}",
+        None,
+        did_you_mean(name, known),
+    )
+    return True
 
 
 def _read_cell(

@@ -11,7 +11,7 @@ from dataclasses import dataclass
 from itertools import chain
 from typing import TYPE_CHECKING
 
-from pla.device.words import beside, order, spans
+from pla.device.words import beside, order, spans, spare_list
 
 if TYPE_CHECKING:
     from collections.abc import Callable, Collection, Sequence
@@ -26,8 +26,6 @@ __all__ = [
     "each_once",
     "spans",
 ]
-
-_SHOWN = 8
 
 
 @dataclass(frozen=True, slots=True)
@@ -68,10 +66,12 @@ def check_fuses(
     at_count: Location,
     diagnostics: Diagnostics,
     explained: Collection[int] = (),
+    said_in: str = "",
 ) -> None:
     """Report fuses used twice, fuses without a use, and fuses that the device does not have.
 
     Of the fuses without a use those in `explained` are left out: they were reported elsewhere.
+    `said_in` names the file that would have to declare them spare, if that is not plain.
     """
     used = list(chain.from_iterable(claim.fuses for claim in claims))
     before = len(diagnostics.found)
@@ -80,12 +80,12 @@ def check_fuses(
     idle = sorted(set(range(count)).difference(used, explained))
     if idle:
         has, them = ("has", "it does nothing") if len(idle) == 1 else ("have", "they do nothing")
-        example = spans(idle).partition(",")[0]
+        spare = chain.from_iterable(c.fuses for c in claims if c.group.startswith("spare "))
         diagnostics.error(
             "FUSE-GAP",
             f"{len(idle)} of {count} fuses {has} no use: {spans(idle)}",
             at_count,
-            f'if {them}, say so, as in spare = ["{example}"]'
+            f"if {them}, say so: spare = {spare_list({*spare, *idle})}{said_in}"
             if len(diagnostics.found) == before
             else "correct the other fuse numbers first: some of them may belong here",
         )
@@ -135,9 +135,16 @@ def _report_overlaps(claims: Sequence[FuseClaim], diagnostics: Diagnostics) -> N
 
 
 def check_pins(
-    count: int, claims: Sequence[PinClaim], at_count: Location, diagnostics: Diagnostics
+    count: int,
+    claims: Sequence[PinClaim],
+    at_count: Location,
+    diagnostics: Diagnostics,
+    said_in: str = "",
 ) -> None:
-    """Report pins with two roles, pins without one, and pins that the device does not have."""
+    """Report pins with two roles, pins without one, and pins that the device does not have.
+
+    `said_in` names the file that would have to declare them unconnected, if that is not plain.
+    """
     first: dict[int, PinClaim] = {}
     for claim in claims:
         if not 1 <= claim.pin <= count:
@@ -156,19 +163,29 @@ def check_pins(
                 "PIN-TWICE",
                 f"pin {claim.pin} is {one.role}{beside(one.where(), other.where())} {again}",
                 other.where(),
-                "a pin has one role",
+                _one_role(one, other),
             )
     idle = [pin for pin in range(1, count + 1) if pin not in first]
     if idle:
         has = "has" if len(idle) == 1 else "have"
-        shown = ", ".join(map(str, idle[:_SHOWN])) + (", …" if len(idle) > _SHOWN else "")
+        listed = sorted({*idle, *(c.pin for c in claims if c.role == "unconnected")})
         diagnostics.error(
             "PIN-IDLE",
             f"{len(idle)} of {count} pins {has} no role: {spans(idle)}; "
             "expected an input column, a cell or a supply",
             at_count,
-            f"if nothing is connected there, say unconnected = [{shown}]",
+            f"if nothing is connected there, say unconnected = {listed}{said_in}",
         )
+
+
+def _one_role(one: PinClaim, other: PinClaim) -> str:
+    base = one.where().file
+    if one.role == other.role == "an output" and base != other.where().file:
+        return (
+            "kinds cannot be taken away: where files that extend others need another split, put "
+            "these cells into a kind of their own in the extended file"
+        )
+    return "a pin has one role"
 
 
 def _likewise(more: int) -> str:

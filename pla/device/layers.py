@@ -7,16 +7,16 @@ gave it, so that errors point there.
 from __future__ import annotations
 
 import os
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING, Any
 
 from pla.errors import Diagnostic, InputError
 from pla.textfile import read_text
 from pla.tomltext import TomlFile, parse_toml
-from pla.wording import kind_of
+from pla.wording import did_you_mean, kind_of
 
 if TYPE_CHECKING:
-    from collections.abc import Mapping
+    from collections.abc import Mapping, Sequence
 
     from pla.errors import Location
     from pla.tomlindex import Path
@@ -58,6 +58,17 @@ class LayeredFile(TomlFile):
         given = [layer.data["family"] for layer in self.layers if "family" in layer.data]
         return given[0] if given else self.layers[-1].data.get("name")
 
+    @property
+    def base_kinds(self) -> tuple[str, ...]:
+        """The kinds of cell in the files that are extended."""
+        return tuple(_merged(self.layers[1:]).get("kind", ()))
+
+    @property
+    def repeats_set(self) -> bool:
+        """Whether the file has a [set] with which the mode is that of the file it extends."""
+        given = "set" in self.layers[0].data and len(self.layers) > 1
+        return given and bool(self.data["set"] == _merged(self.layers[1:]).get("set"))
+
     def _giver(self, path: Path) -> tuple[TomlFile, Path]:
         """The first layer that has the path, or as much of it as any has; and that much."""
         while path:
@@ -88,15 +99,39 @@ def layered(file: TomlFile) -> LayeredFile:
             _refuse("EXTENDS-CIRCLE", f"the file extends itself: {names}", at)
         if len(layers) > MAX_LEVELS:
             _refuse("EXTENDS-DEPTH", f"more than {MAX_LEVELS} files extend one another", at)
-        layers.append(parse_toml(read_text(base, named_at=at).text, base))
+        layers.append(parse_toml(_text_of(base, layers[-1]), base))
         seen.append(real)
-    data: dict[str, Any] = {}
-    for layer in reversed(layers):
-        data = _laid_over(data, layer.data)
-        data.pop("extends", None)
-        if layer is not file:
-            data.pop("name", None)
+    data = _merged(layers)
+    if "name" not in file.data:
+        data.pop("name", None)
     return LayeredFile(data, file.source, file.index, tuple(layers))
+
+
+def _text_of(base: str, file: TomlFile) -> str:
+    """The text of the file that another extends."""
+    try:
+        return read_text(base, named_at=file.at(("extends",))).text
+    except InputError as fault:
+        raise InputError(
+            replace(d, hint=_near(base, file)) if d.code == "NO-SUCH-FILE" else d
+            for d in fault.diagnostics
+        ) from None
+
+
+def _near(base: str, file: TomlFile) -> str:
+    """A hint: the files that are where a missing one was looked for."""
+    folder, name = os.path.split(base)
+    where = f"it was looked for in {folder or 'the folder of this file'}"
+    try:
+        found = sorted(os.listdir(folder or "."))  # noqa: PTH208 - only names are wanted
+    except OSError:
+        return f"{where}, which cannot be read"
+    own = os.path.realpath(file.file)
+    paths = {n: os.path.join(folder, n) for n in found if n.endswith(".toml")}  # noqa: PTH118
+    names = [n for n, path in paths.items() if os.path.realpath(path) != own]
+    if not names:
+        return f"{where}, where no other .toml file is"
+    return f"{where}: {did_you_mean(name, names)}"
 
 
 def _base_of(file: TomlFile) -> str:
@@ -111,6 +146,15 @@ def _base_of(file: TomlFile) -> str:
 
 def _refuse(code: str, message: str, at: Location) -> None:
     raise InputError([Diagnostic(code, message, at)])
+
+
+def _merged(layers: Sequence[TomlFile]) -> dict[str, Any]:
+    """What files say together, each laid over the next; without ``extends``."""
+    data: dict[str, Any] = {}
+    for layer in reversed(layers):
+        data = _laid_over(data, layer.data)
+        data.pop("extends", None)
+    return data
 
 
 def _laid_over(under: Mapping[str, Any], over: Mapping[str, Any]) -> dict[str, Any]:

@@ -7,7 +7,7 @@ from typing import TYPE_CHECKING, Any, cast
 
 from pla.device.limits import MODE_LATER, REGISTERS, SHOWS_LATER, known_keys, not_yet
 from pla.device.model import ALWAYS, Enable
-from pla.device.words import MAX_TERMS, mend_line, read_row_numbers, split_words, word_of
+from pla.device.words import MAX_TERMS, mend_line, mend_pin, read_row_numbers, split_words, word_of
 
 if TYPE_CHECKING:
     from pla.device.model import Carries, Column, Shows
@@ -195,7 +195,7 @@ def _read_columns(section: Section) -> tuple[Column | None, ...] | None:
             good = False
             hint = None
             if line is not None:
-                hint = "what a cell feeds back is said with 'feedback'"
+                hint = mend_pin(word) or "what a cell feeds back is said with 'feedback'"
             section.error(
                 "COLUMN",
                 f"column {index} of {section.title} is {word!r}, expected a pin such as 5, its "

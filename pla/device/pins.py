@@ -5,11 +5,11 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from pla.device.consistency import PinClaim, check_pins
-from pla.device.words import beside
+from pla.device.words import beside, mend_pin, said_in
 from pla.wording import did_you_mean
 
 if TYPE_CHECKING:
-    from collections.abc import Iterator, Mapping, Sequence
+    from collections.abc import Collection, Iterator, Mapping, Sequence
 
     from pla.device.arrays import ReadAndArray
     from pla.device.cells import RawCell, ReadKind
@@ -56,8 +56,16 @@ def check_names(
                 f"column {index} of [and] is {and_array.array.columns[index]}, but no cell is "
                 f"named {source!r}",
                 and_array.at_column(index),
-                did_you_mean(source, first),
+                _mend_name(source, first),
             )
+
+
+def _mend_name(name: str, cells: Collection[str]) -> str:
+    """A hint for a column that is named after no cell."""
+    known, as_pin = did_you_mean(name, cells), mend_pin(name)
+    if as_pin is None or known.startswith("did you mean"):
+        return known
+    return f"{known}; {as_pin}" if cells else as_pin
 
 
 def check_roles(
@@ -84,7 +92,7 @@ def check_roles(
         ),
         *(claim for claim in _enable_claims(kinds) if claim.pin not in lines),
     ]
-    check_pins(pins, claims, top.at("pins"), top.diagnostics)
+    check_pins(pins, claims, top.at("pins"), top.diagnostics, said_in(top.file))
 
 
 def _supply_claims(top: Section, supplies: Mapping[str, tuple[int, ...]]) -> Iterator[PinClaim]:

@@ -22,7 +22,7 @@ from pla.device.model import Device
 from pla.device.pins import check_names, check_roles, keys_of, warn_of_single_lines
 from pla.device.resolve import resolve
 from pla.device.rows import check_columns, check_owners, check_unused, free_rows
-from pla.device.words import MAX_TERMS, beside
+from pla.device.words import MAX_TERMS, beside, said_in
 from pla.errors import Diagnostic, Diagnostics, InternalError, by_place
 from pla.tomlfile import Section, read_toml
 
@@ -103,6 +103,14 @@ class _Reader:
         or_array = self._or_array(cells, all_kinds)
         drop = read_drop(top, self.count, self.at_count)
         mode_fuses = read_mode_fuses(top)
+        if self.file.repeats_set:
+            base = self.file.layers[1].file
+            diagnostics.warning(
+                "SET-SAME",
+                f"[set] says what {base} says: a fuse file cannot tell the two modes apart",
+                top.at("set"),
+                "a fuse that selects the mode differs; a variant in the same mode needs no [set]",
+            )
         signature = read_signature(top)
         timing = read_timing(top)
         if any(d.code == LATER for d in diagnostics.found):
@@ -253,20 +261,30 @@ class _Reader:
         or_array: ReadOrArray | None,
         others: list[FuseClaim],
     ) -> None:
-        if self._too_many(fuses, and_array, or_array):
-            return
         claims = [*and_array.claims(), *(or_array.claims() if or_array else ()), *others]
-        if each_once(fuses, claims):
+        if sum(len(claim.fuses) for claim in claims) == fuses and each_once(fuses, claims):
             return
         from pla.device.spacing import (  # noqa: PLC0415 - rarely needed
+            report_extra_columns,
             report_missing_columns,
             report_wrong_steps,
         )
 
+        if report_extra_columns(fuses, and_array, or_array, claims):
+            return
+        if self._too_many(fuses, and_array, or_array):
+            return
         if report_wrong_steps(fuses, and_array, or_array, claims):
             return
         explained = report_missing_columns(fuses, and_array, or_array, claims)
-        check_fuses(fuses, claims, self.top.at("fuses"), self.diagnostics, explained)
+        check_fuses(
+            fuses,
+            claims,
+            self.top.at("fuses"),
+            self.diagnostics,
+            explained,
+            said_in(self.file),
+        )
 
     def _too_many(self, fuses: int, and_array: ReadAndArray, or_array: ReadOrArray | None) -> bool:
         """Report arrays that alone have more links than the device has fuses."""

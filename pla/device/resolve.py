@@ -220,10 +220,11 @@ class _Resolver:
         number = len(raw.rows)
         has = f"{number} row{'' if number == 1 else 's'}" if number else "no rows of its own"
         said = raw.at_rows if number else raw.where
+        verb = "do" if rows.startswith("rows ") else "does"
         self._fault(
             mode,
             "ROW-OUTSIDE",
-            f"{rows} in {key!r} of {_titled(mode)} does not exist for {raw}: it has {has}"
+            f"{rows} in {key!r} of {_titled(mode)} {verb} not exist for {raw}: it has {has}"
             f"{beside(said, mode.section.at(key))}",
             mode.section.at(key),
             "rows in a mode count within the rows of the cell, from 0",

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
-from pla.device.words import beside, named, order, rows_in_words, spans
+from pla.device.words import beside, mend_pin, named, order, rows_in_words, spans
 
 if TYPE_CHECKING:
     from collections.abc import Callable, Mapping, Sequence
@@ -92,11 +92,13 @@ def check_columns(
             names = [k for k in known if isinstance(k, str)]
             there = ", ".join(filter(None, [pins, *names])) or "none"
             add = f"pin = {key}" if isinstance(key, int) else f'name = "{key}"'
+            as_pin = None if isinstance(key, int) else mend_pin(key)
             diagnostics.error(
                 "SUM-NO-CELL",
                 f"OR column {column} is for {named(key)}, {has}; cells are on: {there}",
                 at,
-                f"add {{ {add}, … }} to the cells of a [kind.NAME]",
+                f"add {{ {add}, … }} to the cells of a [kind.NAME]"
+                f"{f'; {as_pin}' if as_pin else ''}",
             )
 
 

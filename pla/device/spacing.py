@@ -11,7 +11,7 @@ from itertools import chain, count
 from typing import TYPE_CHECKING, TypeAlias, TypeVar, cast
 
 from pla.device.model import Column
-from pla.device.words import named, spans
+from pla.device.words import named, said_in, spans, spare_list
 
 if TYPE_CHECKING:
     from collections.abc import Collection, Iterator, Sequence
@@ -24,7 +24,7 @@ if TYPE_CHECKING:
     _Reads: TypeAlias = tuple[_Read, ...]
     _Array: TypeAlias = AndArray | OrArray
 
-__all__ = ["report_missing_columns", "report_wrong_steps"]
+__all__ = ["report_extra_columns", "report_missing_columns", "report_wrong_steps"]
 
 _A = TypeVar("_A", "AndArray", "OrArray")
 _SHOWN = 4
@@ -49,6 +49,39 @@ def report_wrong_steps(
     return _report_mendable(fuses, reads, claims, clash) or _report_too_small(reads)
 
 
+def report_extra_columns(
+    fuses: int, and_array: ReadAndArray, or_array: ReadOrArray | None, claims: Sequence[FuseClaim]
+) -> bool:
+    """Report columns of an array without which each fuse would have exactly one use.
+
+    `claims` are those of the arrays and of everything else.
+
+    Returns:
+        Whether something was reported. What else clashes is then a consequence.
+    """
+    excess = sum(len(claim.fuses) for claim in claims) - fuses
+    reads: _Reads = (and_array,) if or_array is None else (and_array, or_array)
+    for read, group in zip(reads, ("AND", "OR"), strict=False):
+        # In a single row nothing tells a column too many from another slip.
+        extra, rest = divmod(excess, len(read.array.rows))
+        if rest or len(read.array.rows) < 2 or not 0 < extra <= min(_SHOWN, _width(read.array) - 1):
+            continue
+        kept = (c.fuses[: -extra if c.group == group else None] for c in claims)
+        if not _each_once(fuses, chain.from_iterable(kept)):
+            continue
+        read.section.error(
+            "COLUMNS-EXTRA",
+            f"{_width(read.array)} columns of {read.section.title} are {extra} too many: "
+            f"{_clash(fuses, claims)}; with {_width(read.array) - extra} each of the {fuses} fuses "
+            "has one use",
+            read.section.at("columns"),
+            f"perhaps {'a column' if extra == 1 else f'{extra} columns'} too many: compare them "
+            "with the logic diagram",
+        )
+        return True
+    return False
+
+
 def report_missing_columns(
     fuses: int, and_array: ReadAndArray, or_array: ReadOrArray | None, claims: Sequence[FuseClaim]
 ) -> set[int]:
@@ -63,6 +96,7 @@ def report_missing_columns(
         return set()
     idle = set(range(fuses)).difference(chain.from_iterable(claim.fuses for claim in claims))
     explained: set[int] = set()
+    declared = any(claim.group.startswith("spare ") for claim in claims)
     alternate = or_array is not None and _alternate(and_array.array, or_array.array)
     pairs: list[tuple[_Read, _Read | None]] = [(and_array, or_array)]
     if or_array is not None:
@@ -87,7 +121,7 @@ def report_missing_columns(
             f"{each} fuse{'s' if each > 1 else ''} of each row ha{'ve' if each > 1 else 's'} "
             f"no use: {spans(sorted(behind))}",
             read.section.at("columns"),
-            _missing(read, and_array) + _as_spare(behind),
+            _missing(read, and_array) + _as_spare(read, behind, also=declared),
         )
     return explained
 
@@ -104,12 +138,13 @@ def _missing(read: _Read, and_array: ReadAndArray) -> str:
     return f"perhaps a column is missing: {', '.join(pins)}{', …' if len(single) > _SHOWN else ''}"
 
 
-def _as_spare(idle: Collection[int]) -> str:
-    first, *more = sorted(idle)
-    second = f', "{more[0]}"' if more else ""
+def _as_spare(read: _Read, fuses: Collection[int], *, also: bool) -> str:
+    """What to do if they are spare; `also` if the file has such fuses already."""
+    them = spare_list(fuses, most=2)
     return (
         "; only if the data sheet says that these fuses do nothing: "
-        f'spare = ["{first}"{second}{", …" if len(more) > 1 else ""}]'
+        f"{f'add {them[1:-1]} to spare' if also else f'spare = {them}'}"
+        f"{said_in(read.section.file)}"
     )
 
 

@@ -6,6 +6,7 @@ import re
 from typing import TYPE_CHECKING
 
 from pla import wording
+from pla.device.layers import LayeredFile
 from pla.device.model import Column
 
 if TYPE_CHECKING:
@@ -13,18 +14,21 @@ if TYPE_CHECKING:
 
     from pla.device.model import Source
     from pla.errors import Location
-    from pla.tomlfile import Section
+    from pla.tomlfile import Section, TomlFile
 
 __all__ = [
     "MAX_TERMS",
     "beside",
     "mend_line",
+    "mend_pin",
     "named",
     "order",
     "read_row_numbers",
     "read_step",
     "rows_in_words",
+    "said_in",
     "spans",
+    "spare_list",
     "split_words",
     "usable_name",
     "word_of",
@@ -63,6 +67,12 @@ def mend_line(word: str) -> str | None:
     if "," in word:
         return "separate columns by blanks"
     return None
+
+
+def mend_pin(word: str) -> str | None:
+    """A hint for a pin that has letters in front of its number."""
+    match = re.fullmatch(r"[A-Za-z]{1,4}_?([1-9][0-9]*'?)", word)
+    return f"a pin is written as a plain number: {match[1]}" if match else None
 
 
 def split_words(section: Section) -> list[tuple[str, int]] | None:
@@ -128,6 +138,19 @@ def read_row_numbers(
 def spans(numbers: Iterable[int]) -> str:
     """Ascending numbers as ``3, 5..7``; no more than eight such parts."""
     return wording.spans(numbers, _SHOWN)
+
+
+def spare_list(fuses: Iterable[int], most: int = 24) -> str:
+    """Fuses as the value of ``spare``; no more than `most` ranges."""
+    texts = wording.spans(sorted(fuses)).split(", ")
+    shown = [f'"{text}"' for text in texts[:most]]
+    return f"[{', '.join(shown)}{', …' if len(texts) > len(shown) else ''}]"
+
+
+def said_in(file: TomlFile) -> str:
+    """The file that has to say what a hint proposes, where another one is extended."""
+    extends = isinstance(file, LayeredFile) and len(file.layers) > 1
+    return f", in {file.file}" if extends else ""
 
 
 def rows_in_words(rows: Iterable[int]) -> str:

@@ -142,8 +142,8 @@ def _telling_table(exercised: Exercised, number: int, made: Exercise) -> Table:
     lead = (
         f"{counted(made.tried, 'slip')} in the device file {'was' if made.tried == 1 else 'were'} "
         f"tried, one at a time: {count} {'shows' if count == 1 else 'show'} at this part{before}. "
-        "A single odd reading is measured again first. The table says where slips show: look up "
-        "the places at which your readings differ, and suspect those slips first. Where "
+        "If a single reading is odd, measure it again first. The table says where slips show: look "
+        "up the places at which your readings differ, and suspect those slips first. Where "
         "several are in the file at once, readings differ in more places."
     )
     remarks = []

@@ -123,6 +123,7 @@ def test_wrong_design(tmp_path, capsys):
                 "column": 10,
                 "code": "NAME-UNKNOWN",
                 "message": "there is no input or output 'b'",
+                "hint": "valid are: a, f",
             }
         ],
     }

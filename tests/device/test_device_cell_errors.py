@@ -634,6 +634,31 @@ HINTS = [
     pytest.param(
         [("unused_enable", "unused_enables")], "did you mean 'unused_enable'?", id="near-key"
     ),
+    pytest.param(
+        [("3' 7 7'", "3' X7 7'")],
+        "valid are: s, b; a pin is written as a plain number: 7",
+        id="pin-with-a-letter",
+    ),
+    pytest.param(
+        [('columns = "3\' ."', 'columns = "X3\' ."')],
+        "a pin is written as a plain number: 3'",
+        id="pin-with-a-letter-in-a-mode",
+    ),
+    pytest.param(
+        [('columns = "s b"', 'columns = "s b X8"')],
+        "; a pin is written as a plain number: 8",
+        id="pin-with-a-letter-in-or",
+    ),
+    pytest.param(
+        [("pins = 12", "pins = 13"), ("[10, 11]", "[10]")],
+        "say unconnected = [10, 11, 13]",
+        id="unconnected-keeps-what-is-listed",
+    ),
+    pytest.param(
+        [("fuses = 178", "fuses = 180"), ('"176..177"', '"176"')],
+        'say so: spare = ["176..179"]',
+        id="spare-names-all",
+    ),
     pytest.param([("active = ", "activ = ")], "did you mean 'active'?", id="near-key-of-an-enable"),
 ]
 

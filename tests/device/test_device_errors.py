@@ -308,7 +308,7 @@ CASES = [
     pytest.param(
         [("1 1' 2 2' 5 5'", "1 1' 2 2' 5 5' .")],
         [
-            "24:14 FUSE-OVERLAP fuse 6 is AND row 0 column 6 with no line (line 18 of the file) and OR row 0 column 0 for pin 6; likewise 3 more fuses"
+            "16:11 COLUMNS-EXTRA 7 columns of [and] are 1 too many: fuse 6 would be both AND row 0 column 6 with no line and OR row 0 column 0 for pin 6; with 6 each of the 36 fuses has one use"
         ],
         id="and-none",
     ),
@@ -780,7 +780,7 @@ HINTS = [
     pytest.param([("ground = 4", "grounds = 4")], "did you mean 'ground'?", id="near-key"),
     pytest.param([("5 5'", "5 /5")], "write 5' for the complement", id="slash"),
     pytest.param([("5 5'", "5, 5'")], "separate columns by blanks", id="comma"),
-    pytest.param([("fuses = 36", "fuses = 37")], 'spare = ["36"]', id="gap"),
+    pytest.param([("fuses = 36", "fuses = 37")], 'spare = ["34..36"]', id="gap"),
     pytest.param([("unconnected = [3]\n", "")], "unconnected = [3]", id="idle-pin"),
     pytest.param([('"6 7"', '"6 5"')], "add 7 to the columns of [or]", id="no-sum"),
     pytest.param([("[links]", "[linked]")], "add [links]", id="no-links"),

@@ -165,6 +165,73 @@ def test_errors_stand_in_the_file_that_gave_the_value(text, expected, folder):
     assert shown(caught.value, folder) == expected
 
 
+HINTS = [
+    pytest.param(
+        CHILD + "pins = 13\n",
+        "if nothing is connected there, say unconnected = [10, 11, 13], in child.toml",
+        id="unconnected",
+    ),
+    pytest.param(
+        CHILD + "fuses = 180\n",
+        'if they do nothing, say so: spare = ["176..179"], in child.toml',
+        id="spare",
+    ),
+    pytest.param(
+        CHILD + '[kind.Own]\nunused = "01"\n',
+        "did you mean 'own'?",
+        id="kind-misspelt",
+    ),
+    pytest.param(
+        CHILD
+        + '[kind.more]\nmodes = [ { pin = "sum" } ]\ncells = [ { pin = 8, terms = "4..6" } ]\n',
+        "kinds cannot be taken away: where files that extend others need another split, put these "
+        "cells into a kind of their own in the extended file",
+        id="kind-split",
+    ),
+    pytest.param(
+        CHILD + "[kind.gated]\ncells = []\n",
+        "kinds cannot be taken away: put the cells that stay into a kind of their own in full.toml",
+        id="kind-emptied",
+    ),
+    pytest.param(
+        'name = "child"\nextends = "fulll.toml"\n',
+        "it was looked for in the folder: did you mean 'full.toml'?",
+        id="file-misspelt",
+    ),
+    pytest.param(
+        'name = "child"\nextends = "there/full.toml"\n',
+        "it was looked for in there, which cannot be read",
+        id="folder-misspelt",
+    ),
+]
+
+
+@pytest.mark.parametrize(("text", "hint"), HINTS)
+def test_errors_say_how_to_mend_them(text, hint, folder):
+    with pytest.raises(InputError) as caught:
+        read_device(written(folder, text))
+    hints = [
+        (d.hint or "").replace(f"{folder}/", "").replace(str(folder), "the folder")
+        for d in caught.value.diagnostics
+    ]
+    assert hint in hints
+
+
+def test_a_folder_without_another_device_file(tmp_path):
+    path = written(tmp_path, 'name = "child"\nextends = "full.toml"\n')
+    with pytest.raises(InputError) as caught:
+        read_device(path)
+    (found,) = caught.value.diagnostics
+    assert found.hint == f"it was looked for in {tmp_path}, where no other .toml file is"
+
+
+def test_a_mode_that_is_that_of_the_other_file(folder):
+    (warning,) = read_device(written(folder, CHILD + "[set]\n159 = 1\n")).warnings
+    assert (warning.code, warning.location.line) == ("SET-SAME", 3)
+    assert read_device(written(folder, CHILD + "[set]\n159 = 0\n")).warnings == ()
+    assert read_device(written(folder, CHILD + 'summary = "a variant"\n')).warnings == ()
+
+
 def test_a_circle_of_two_names_both(folder):
     written(folder, 'name = "b"\nextends = "a.toml"\n', "b.toml")
     path = written(folder, 'name = "a"\nextends = "b.toml"\n', "a.toml")

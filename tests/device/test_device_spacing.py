@@ -179,10 +179,20 @@ def test_a_step_that_cannot_be_right_is_found_without_an_or_array():
     )
 
 
+@pytest.mark.parametrize("name", [UPRIGHT, OWN, APART, ALTERNATE])
+def test_a_pair_of_columns_too_many_is_one_error(name):
+    with pytest.raises(InputError) as caught:
+        device_from(parse_toml(spoilt(name, ('columns = "', "columns = \"99 99' ", 0)), "x.toml"))
+    (found,) = [d for d in caught.value.diagnostics if not d.code.startswith("PIN")]
+    assert found.code == "COLUMNS-EXTRA"
+    assert "are 2 too many: fuse " in found.message
+    assert found.hint == "perhaps 2 columns too many: compare them with the logic diagram"
+
+
 def test_fuses_past_the_last_row_are_no_forgotten_column():
     (found,) = refused(spoilt(APART, (r"fuses = \d+", "fuses = 700", 0)))
     assert found.message == "76 of 700 fuses have no use: 624..699"
-    assert found.hint == 'if they do nothing, say so, as in spare = ["624..699"]'
+    assert found.hint == 'if they do nothing, say so: spare = ["624..699"]'
 
 
 def test_gaps_beside_wrong_numbers_are_not_said_to_be_spare():

@@ -327,7 +327,7 @@ def test_wrong_calls(arguments, words, tmp_path, capsys, monkeypatch):
     assert set(found) == {"errors", "schema_version"}
     assert found["errors"]
     for error in found["errors"]:
-        assert set(error) == {"file", "line", "column", "code", "message"}
+        assert set(error) == {"file", "line", "column", "code", "message", "hint"}
     assert list(tmp_path.iterdir()) == []
 
 

@@ -122,7 +122,7 @@ def check_levels(plan, states):
     rng = random.Random(1)
     drivers = {}
     for pin, remark in remarks.items():
-        if "tie to ground or power" in remark:
+        if "tie to ground or power" in remark or "tie it through a resistor" in remark:
             drivers[pin] = (everywhere, rng.getrandbits(points) << points)
         elif "tie to" in remark:
             drivers[pin] = (everywhere, everywhere * ("tie to power" in remark))
@@ -153,6 +153,11 @@ def check_levels(plan, states):
 
 def check_idle_pins(device, remarks, drivers, found, everywhere):
     """Pins of cells that carry no signal do what the pin list says."""
+    for pin, remark in remarks.items():
+        if "not driven by the programmed part" in remark:
+            # With a level from outside, one from the part would be contention somewhere.
+            mask, high = drivers[pin]
+            assert (found[pin].high, found[pin].low) == (high, mask & ~high)
     for pin in set(device.cell_pins) & set(remarks) - set(drivers):
         level, remark = found[pin], remarks[pin]
         if "the part does not drive it" in remark:

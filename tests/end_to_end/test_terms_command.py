@@ -103,7 +103,8 @@ def test_errors_of_a_design_in_json(tmp_path, capsys):
     code, found = call_json(capsys, "terms", design)
     assert code == 2
     assert set(found) == {"errors", "schema_version"}
-    assert [set(e) for e in found["errors"]] == [{"file", "line", "column", "code", "message"}] * 2
+    keys = {"file", "line", "column", "code", "message", "hint"}
+    assert [set(e) for e in found["errors"]] == [keys] * 2
     assert [(e["file"], e["line"], e["column"]) for e in found["errors"]] == [
         (str(design), 7, 8),
         (str(design), 8, 9),

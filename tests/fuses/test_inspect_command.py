@@ -184,7 +184,7 @@ def test_refused_file_in_json(capsys, tmp_path):
     assert document["errors"][0]["file"].endswith("a.jed")
     assert [w["code"] for w in document["warnings"]] == ["UNKNOWN-FIELD"]
     for entry in document["errors"] + document["warnings"]:
-        assert sorted(entry) == ["code", "column", "file", "line", "message"]
+        assert sorted(entry) == ["code", "column", "file", "hint", "line", "message"]
     assert (document["design"], document["notes"], document["default"]) == ("x", ["a"], 0)
     for key in ("fuses", "pins", "links", "fuse_checksum", "fuse_checksum_given", "devices"):
         assert document[key] is None
