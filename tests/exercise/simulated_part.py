@@ -22,6 +22,7 @@ class _Settling(_Run):
         while True:
             before = dict(self.known)
             for line in lines:
+                self.rows.clear()
                 self.known[line] = self.sum(line.of) if line.kind == "sum" else self.read(line.of)
             if self.known == before:
                 return self.levels
