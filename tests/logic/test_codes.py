@@ -7,12 +7,12 @@ from dataclasses import replace
 from itertools import permutations
 
 import pytest
+from coded_machines import fewest_terms as fewest_terms_of_any_codes
+from coded_machines import machine_of, truth_table
 from hypothesis import given, settings
 from hypothesis import strategies as st
 from making import COMPLEMENT, FREE, TRUE, function_of, random_table, wrong_points
 from oracles import cover_search
-from state_machines import fewest_terms as fewest_terms_of_any_codes
-from state_machines import machine_of, truth_table
 from state_tables import GENERATED, TRADE, unstructured
 
 from pla.logic import limited

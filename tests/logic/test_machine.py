@@ -6,8 +6,8 @@ import random
 from dataclasses import replace
 
 import pytest
+from coded_machines import machine_of, truth_table
 from making import values_of
-from state_machines import machine_of, truth_table
 from state_tables import GENERATED, TRADE, unstructured
 
 from pla.logic.cubes import Cover, Cube
