@@ -310,12 +310,6 @@ class Timing:
     ten: Fraction | None = None
     tdis: Fraction | None = None
 
-    def delay(self, passes: int) -> Fraction | None:
-        """From an input to an output after so many passes through the array."""
-        if self.tpd is None:
-            return None
-        return self.tpd + (passes - 1) * (self.tfb if self.tfb is not None else self.tpd)
-
 
 @dataclass(frozen=True, slots=True)
 class Block:

@@ -13,11 +13,11 @@ if TYPE_CHECKING:
     from pla.fitting.model import Plan
     from pla.logic.cubes import Cube
 
-__all__ = ["Ways", "late_outputs"]
+__all__ = ["LongestWays", "late_outputs"]
 
 
 @dataclass(frozen=True)
-class Ways:
+class LongestWays:
     """The ways from the inputs to the outputs of a plan.
 
     A signal that is fed back lengthens the way of whatever reads it, and so does the level at a
@@ -133,7 +133,7 @@ class Ways:
 
 def late_outputs(plan: Plan) -> list[tuple[str, Fraction, Fraction]]:
     """Outputs that may take longer than the design allows: name, longest time, what is allowed."""
-    design, worst = plan.design, Ways(plan).worst
+    design, worst = plan.design, LongestWays(plan).worst
     found = []
     for j, output in enumerate(design.outputs):
         allowed = output.max_delay if output.max_delay is not None else design.max_delay

@@ -6,7 +6,7 @@ from dataclasses import replace
 from typing import TYPE_CHECKING, Literal
 
 from pla.device.model import Line
-from pla.fitting.delays import Ways
+from pla.fitting.delays import LongestWays
 from pla.fitting.model import PlacedEnable, PlacedInput, PlacedOutput, Plan
 from pla.fitting.offers import column_pair, fed_lines
 from pla.fitting.scenario import Switch
@@ -37,7 +37,7 @@ def plan_of(layout: Layout) -> Plan:
         modes,
         tuple(_tied(layout)),
     )
-    return replace(plan, passes=Ways(plan).passes)
+    return replace(plan, passes=LongestWays(plan).passes)
 
 
 def _modes(layout: Layout) -> dict[Source, Mode]:

@@ -5,7 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
-from pla.fitting.delays import Ways
+from pla.fitting.delays import LongestWays
 from pla.report.table import Table
 
 if TYPE_CHECKING:
@@ -51,7 +51,7 @@ def output_delays(plan: Plan) -> tuple[OutputDelay, ...]:
 def _delay_of(plan: Plan, placed: PlacedOutput) -> OutputDelay:
     design, timing = plan.design, plan.device.timing
     output = design.outputs[placed.index]
-    passes, ways = _passes(plan, placed), Ways(plan)
+    passes, ways = _passes(plan, placed), LongestWays(plan)
     asked = output.max_delay if output.max_delay is not None else design.max_delay
     enabled = disabled = None
     if placed.enable is not None:

@@ -217,9 +217,3 @@ def test_drop_links_listed_one_by_one():
 
 def test_times_are_exact():
     assert device(("tpd = 12.5", "tpd = 0.1")).timing.tpd == Fraction(1, 10)
-
-
-def test_delay_of_several_passes():
-    assert FULL.timing.delay(1) == Fraction("12.5")
-    assert FULL.timing.delay(3) == Fraction("32.5")
-    assert device(("tfb = 10\n", "")).timing.delay(2) == 25

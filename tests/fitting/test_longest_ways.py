@@ -5,7 +5,7 @@ from fractions import Fraction
 from small_devices import design, proven
 
 from pla.device.catalogue import find_device
-from pla.fitting.delays import Ways
+from pla.fitting.delays import LongestWays
 from pla.fitting.fit import fit
 
 # varied-11x5: tpd 20, tfb 15, ten 20 ns.
@@ -37,13 +37,13 @@ def test_a_level_read_at_a_driven_pin_comes_a_pass_later(tmp_path):
     assert found.fits
     assert proven(found.plan)
     assert found.plan.passes == (2, 1, 3)
-    assert Ways(found.plan).worst == (40, 20, 60)
+    assert LongestWays(found.plan).worst == (40, 20, 60)
 
 
 def test_outputs_that_never_drive_at_once_do_not_wait_for_each_other(tmp_path):
     found = fitted(tmp_path, second="e'")
     assert found.plan.passes == (1, 1, 2)
-    assert Ways(found.plan).worst == (20, 20, 40)
+    assert LongestWays(found.plan).worst == (20, 20, 40)
 
 
 def test_a_way_by_pins_counts_against_max_delay(tmp_path):
@@ -54,7 +54,7 @@ def test_a_way_by_pins_counts_against_max_delay(tmp_path):
 
 def test_an_enable_that_reads_a_pin_waits_for_it(tmp_path):
     found = fitted(tmp_path, second="e s")
-    ways = Ways(found.plan)
+    ways = LongestWays(found.plan)
     assert ways.switched(1, Fraction(20)) == 20
     waits = fit(
         design(
@@ -63,7 +63,7 @@ def test_an_enable_that_reads_a_pin_waits_for_it(tmp_path):
         ),
         find_device("varied-11x5"),
     )
-    assert Ways(waits.plan).switched(2, Fraction(20)) == 40
+    assert LongestWays(waits.plan).switched(2, Fraction(20)) == 40
 
 
 def test_a_device_without_figures_leaves_max_delay_unchecked_and_says_so(tmp_path):
